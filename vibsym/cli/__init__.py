@@ -1,0 +1,1 @@
+"""The command line: parse, call, hand the result to the report."""

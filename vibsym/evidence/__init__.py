@@ -1,0 +1,1 @@
+"""The measured side: band lists, coincidences, screening and assignment."""

@@ -1,0 +1,1 @@
+"""Point groups: operations, classes, species and the reduction of any basis. No atoms."""

@@ -1,0 +1,1 @@
+"""Prediction: which bands a structure allows. No measured data."""

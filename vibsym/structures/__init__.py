@@ -1,0 +1,1 @@
+"""Structures: reading them, finding their point group and the frame of its axes. No vibrations."""

@@ -1,0 +1,1 @@
+"""Vibrations of one structure: displacements, internal coordinates, normal modes. No spectra."""
