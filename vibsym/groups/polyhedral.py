@@ -46,35 +46,39 @@ def _operation(kind: str, axis: str, turn: str) -> np.ndarray:
 
 def _closure(generators: np.ndarray) -> np.ndarray:
     """Multiply until nothing new appears; entries are snapped so that no rounding piles up."""
-    elements = _distinct(generators)
-    while True:
-        products = _distinct(np.einsum("aij,bjk->abik", elements, elements).reshape(-1, 3, 3))
-        if len(products) == len(elements):
-            return products
-        elements = products
+    elements = frontier = _distinct(generators)
+    while len(frontier):
+        products = _distinct(np.concatenate([elements, np.einsum("aij,bjk->abik", generators, frontier).reshape(-1, 3, 3)]))
+        known = np.isin(_keys(products), _keys(elements))
+        elements, frontier = products, products[~known]
+    return elements
 
 
 _EXACT = np.unique([sign * value for value in (0, 0.5, 1, PHI / 2, (PHI - 1) / 2) for sign in (-1, 1)])
+_BETWEEN = (_EXACT[1:] + _EXACT[:-1]) / 2
+_POWERS = len(_EXACT) ** np.arange(9)
+
+
+def _keys(matrices: np.ndarray) -> np.ndarray:
+    """A whole number for each matrix, the same for matrices that differ by rounding."""
+    return np.searchsorted(_BETWEEN, matrices.reshape(-1, 9)) @ _POWERS
 
 
 def _distinct(matrices: np.ndarray) -> np.ndarray:
     """Entries of these groups are 0, ±1, ±1/2, ±φ/2, ±1/(2φ): snap to them, then keep one of each matrix."""
-    index = np.abs(matrices.reshape(len(matrices), 9, 1) - _EXACT).argmin(axis=2)
-    weights = len(_EXACT) ** np.arange(9)
-    _, first = np.unique(index @ weights, return_index=True)
-    return _EXACT[index[first]].reshape(-1, 3, 3)
+    _, first = np.unique(_keys(matrices), return_index=True)
+    return _EXACT[np.searchsorted(_BETWEEN, matrices[first])]
 
 
 def _classes(elements: np.ndarray, representatives: np.ndarray) -> list[np.ndarray]:
     """Indices of the elements conjugate to each representative."""
-    weights = np.array([1.0, 0.7320508, 0.4472136, 0.3027756, 0.2360680, 0.1622777, 0.1458980, 0.1231056, 0.0901699])
-    keys = elements.reshape(-1, 9) @ weights
+    keys = _keys(elements)
     members = []
     for representative in representatives:
-        conjugates = np.einsum("aij,jk,alk->ail", elements, representative, elements).reshape(-1, 9) @ weights
-        member = np.unique(np.abs(keys[:, None] - conjugates[None, :]).argmin(axis=0))
-        same = np.flatnonzero(np.abs(elements - representative).max(axis=(1, 2)) < 1e-9)
-        members.append(np.concatenate([same, member[member != same[0]]]))
+        conjugates = _keys(np.einsum("aij,jk,alk->ail", elements, representative, elements))
+        member = np.flatnonzero(np.isin(keys, conjugates))
+        first = np.flatnonzero(keys == _keys(representative[None]))
+        members.append(np.concatenate([first, member[member != first[0]]]))
     return members
 
 
