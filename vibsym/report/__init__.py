@@ -1,1 +1,27 @@
-"""Results to text: terminal, JSON, CSV, Markdown. Functions from a result to a string."""
+"""Results to text: terminal, JSON, CSV, Markdown. Functions from a result to a string.
+
+A *view* is a module with three functions of a result and the options of its page:
+`parts(result, **options)` the page, `rows(result, **options)` the CSV rows, `as_object(result, **options)` the JSON
+object.  `render` sets one or several results in any format.
+"""
+
+FORMATS = ("table", "json", "csv", "markdown")
+
+
+def render(results, view, form: str = "table", width: int = 80, colour: bool = False, **options) -> str:
+    """Return results as text: a page, a JSON line or CSV rows each."""
+    if form == "json":
+        from vibsym.report.json import set_json
+
+        return set_json([view.as_object(result, **options) for result in results])
+    if form == "csv":
+        from vibsym.report.csv import set_csv
+
+        return set_csv([row for result in results for row in view.rows(result, **options)])
+    if form == "markdown":
+        from vibsym.report.markdown import set_markdown
+
+        return "\n".join(set_markdown(view.parts(result, **options)) for result in results)
+    from vibsym.report.terminal import set_page
+
+    return "\n\n".join(set_page(view.parts(result, **options), width, colour) for result in results)

@@ -1,0 +1,35 @@
+"""`vibsym expect`: the bands that infrared and Raman spectra of a structure can show."""
+
+import click
+
+from vibsym.cli import options
+from vibsym.cli.reading import finish, results_of
+
+
+@click.command("expect")
+@options.structures_argument
+@options.output_options
+@options.tolerance_option
+@options.as_option
+@options.axes_option
+@options.reading_options
+@options.working_option
+@options.light_option
+def command(structures, form, output, tolerance, as_group, axes, frame, bonds, no_bonds, average_masses, working, light):
+    """Tell which infrared and Raman bands each STRUCTURE can show.
+
+    A STRUCTURE is an XYZ or MDL mol file, or - for standard input.
+
+    \b
+    Examples:
+      vibsym samples try-it
+      vibsym expect try-it/cylinder-gas-bf3.xyz
+      vibsym expect try-it/cylinder-gas-bf3.xyz --working
+      vibsym expect try-it/*.xyz --format csv --output bands.csv
+    """
+    from vibsym.report import expectation as view
+    from vibsym.spectra.expectation import expect
+
+    results, failures = results_of(structures, frame, bonds, no_bonds, average_masses,
+                                   lambda structure: expect(structure, tolerance, as_group=as_group, axes=axes))
+    finish(results, failures, view, form, output, working=working, light=light)

@@ -1,0 +1,46 @@
+"""`vibsym group`: the ladder of groups that a structure approaches."""
+
+import click
+
+from vibsym.cli import options
+from vibsym.cli.reading import finish, results_of
+from vibsym.errors import VibsymError
+
+
+@click.command("group")
+@options.structures_argument
+@options.output_options
+@options.tolerance_option
+@options.as_option
+@options.reading_options
+@options.write_option
+def command(structures, form, output, tolerance, as_group, frame, bonds, no_bonds, average_masses, write):
+    """Show the point group of each STRUCTURE and the higher groups that it nearly has.
+
+    Each rung of the ladder stands with its deviation (the largest shift of an atom), its band counts and the atoms
+    that spoil the next one.
+
+    \b
+    Examples:
+      vibsym samples try-it
+      vibsym group try-it/loose-cage.xyz
+      vibsym group try-it/loose-cage.xyz --write symmetrised.xyz
+    """
+    from vibsym.report import climb as view
+    from vibsym.spectra.climb import climb
+
+    results, failures = results_of(structures, frame, bonds, no_bonds, average_masses,
+                                   lambda structure: climb(structure, tolerance))
+    chosen = [result.rung_of(as_group) if as_group else result.suggested for result in results]
+    if write is not None and not failures:
+        if len(chosen) != 1:
+            raise VibsymError(f"--write {write}: one structure at a time; {len(chosen)} were given")
+        _save(write, chosen[0])
+    finish(results, failures, view, form, output)
+
+
+def _save(path: str, symmetry) -> None:
+    from vibsym.cli.delivery import write_file
+    from vibsym.structures.writing import write_xyz
+
+    write_file(path, write_xyz(symmetry.symmetrised))

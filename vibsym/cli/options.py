@@ -1,0 +1,53 @@
+"""Options that several commands share, one decorator each; they mean the same everywhere.
+
+Values are taken as text or numbers and checked by the library, so that a wrong value is one line and exit code 1; only
+what click refuses without reading anything leaves with 2.
+"""
+
+import click
+
+from vibsym.report import FORMATS
+
+structures_argument = click.argument("structures", nargs=-1, required=True, metavar="STRUCTURE...")
+structure_argument = click.argument("structure", metavar="STRUCTURE")
+
+tolerance_option = click.option(
+    "--tolerance", type=float, default=0.02, show_default=True, metavar="Å",
+    help="Largest distance of an atom from its place in the group.")
+as_option = click.option(
+    "--as", "as_group", metavar="GROUP", help="Make the analysis in this group of the ladder (vibsym group shows it).")
+axes_option = click.option(
+    "--axes", metavar="CHOICE", help="The other choice of axes where labels depend on it, e.g. other or x,z,y.")
+working_option = click.option(
+    "--working", is_flag=True, help="Write the count out: class by class, then species by species.")
+light_option = click.option(
+    "--light", type=click.Choice(("plane", "natural")), default="plane", show_default=True,
+    help="Light of the Raman measurement; decides the ratio of a depolarised line (3/4 or 6/7).")
+write_option = click.option(
+    "--write", metavar="FILE", help="Save the symmetrised structure of the suggested rung (or of --as) as XYZ.")
+
+
+def output_options(command):
+    """Add --format and --output."""
+    for option in (
+        click.option("--output", metavar="FILE",
+                     help="Write to this file what stdout would hold; nothing is written if anything failed."),
+        click.option("--format", "form", type=click.Choice(FORMATS), default="table", show_default=True,
+                     help="How the result is set."),
+    ):
+        command = option(command)
+    return command
+
+
+def reading_options(command):
+    """Add what tells how a structure is read: --frame, --bond, --no-bond, --average-masses."""
+    for option in (
+        click.option("--average-masses", is_flag=True,
+                     help="Standard atomic weights instead of the most abundant isotopes; never changes the group."),
+        click.option("--no-bond", "no_bonds", multiple=True, metavar="I-J", help="Atoms I and J are not bonded."),
+        click.option("--bond", "bonds", multiple=True, metavar="I-J", help="Atoms I and J are bonded."),
+        click.option("--frame", default="1", show_default=True, metavar="N|all",
+                     help="Which structure of a file that holds several."),
+    ):
+        command = option(command)
+    return command

@@ -1,0 +1,84 @@
+"""Structures from the command line: read each file, make each result, and tell of those that failed.
+
+One unreadable structure does not stop the others; it is told on standard error and the exit code is 1.
+"""
+
+import sys
+from collections.abc import Callable, Iterator
+from dataclasses import replace
+
+import click
+
+from vibsym.errors import VibsymError
+
+LONG_WORK = 20  # structures; from here on a terminal shows a progress bar
+
+
+def read_structures(path: str, frame: str = "1", bonds=(), no_bonds=(), average_masses: bool = False) -> list:
+    """Return the structures of one argument, with the bonds and masses asked for."""
+    from vibsym.structures.reading import read, read_all
+
+    found = read_all(path) if frame == "all" else [read(path, _frame_number(frame))]
+    return [_prepared(structure, bonds, no_bonds, average_masses) for structure in found]
+
+
+def results_of(paths, frame: str, bonds, no_bonds, average_masses: bool, make: Callable) -> tuple[list, int]:
+    """Return the results of all structures that could be read, and how many failed."""
+    results, failures = [], 0
+    for path in _with_progress(paths):
+        try:
+            for structure in read_structures(path, frame, bonds, no_bonds, average_masses):
+                results.append(make(structure))
+        except VibsymError as error:
+            failures += 1
+            click.echo(f"Error: {error}", err=True)
+    return results, failures
+
+
+def finish(results: list, failures: int, view, form: str, output: str | None, **options) -> None:
+    """Deliver the results; after a failure write no file and leave with status 1."""
+    from vibsym.cli.delivery import deliver
+
+    if results and not (failures and output is not None):
+        deliver(results, view, form, output, **options)
+    if failures:
+        if output is not None:
+            click.echo(f"Error: {output} was not written because a structure failed", err=True)
+        sys.exit(1)
+
+
+def _prepared(structure, bonds, no_bonds, average_masses: bool):
+    if bonds or no_bonds:
+        from vibsym.structures.bonds import find_bonds
+
+        add, remove = ([_pair(text, len(structure)) for text in texts] for texts in (bonds, no_bonds))
+        structure = replace(structure, bonds=find_bonds(structure, add, remove))
+    return structure.with_average_masses() if average_masses else structure
+
+
+def _frame_number(text: str) -> int:
+    if not text.isascii() or not text.isdigit() or int(text) < 1:
+        raise VibsymError(f"--frame {text}: give the number of a frame, counted from 1, or all")
+    return int(text)
+
+
+def _pair(text: str, atoms: int) -> tuple[int, int]:
+    """Return `1-5` as a pair of places counted from 0."""
+    numbers = text.split("-")
+    if len(numbers) != 2 or not all(number.isascii() and number.isdigit() for number in numbers):
+        raise VibsymError(f"bond '{text}': write two atom numbers, as in 1-5")
+    first, second = (int(number) for number in numbers)
+    for number in (first, second):
+        if not 1 <= number <= atoms:
+            raise VibsymError(f"bond '{text}': there is no atom {number}; the structure has atoms 1 to {atoms}")
+    if first == second:
+        raise VibsymError(f"bond '{text}': an atom is not bonded to itself")
+    return first - 1, second - 1
+
+
+def _with_progress(paths) -> Iterator[str]:
+    if len(paths) < LONG_WORK or not sys.stderr.isatty():
+        yield from paths
+        return
+    with click.progressbar(paths, file=sys.stderr, label="structures") as bar:
+        yield from bar

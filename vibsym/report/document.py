@@ -1,0 +1,48 @@
+"""The parts a page is made of, before it is known whether it will be read on a terminal or as Markdown.
+
+A view turns a result into a list of these parts; `terminal` and `markdown` set them.  So formats cannot disagree.
+"""
+
+from typing import NamedTuple
+
+
+class Title(NamedTuple):
+    """The head of a page: what it is about, and on the same line whatever belongs to it."""
+
+    text: str
+    aside: str = ""
+
+
+class Paragraph(NamedTuple):
+    """Running text; `strong` for the one statement the eye should meet first."""
+
+    text: str
+    strong: bool = False
+
+
+class Facts(NamedTuple):
+    """Name and value, one pair a line, under an optional heading."""
+
+    pairs: tuple[tuple[str, str], ...]
+    heading: str = ""
+
+
+class Table(NamedTuple):
+    """Columns under their heads; `right` names the columns set flush right.
+
+    Too wide a table is broken between columns and the first one repeated; with `flow` the last column is broken inside
+    instead (it holds a list of words).
+    """
+
+    head: tuple[str, ...]
+    rows: tuple[tuple[str, ...], ...]
+    right: frozenset[int] = frozenset()
+    heading: str = ""
+    flow: bool = False
+
+
+class Listing(NamedTuple):
+    """A list of sentences under a heading."""
+
+    items: tuple[str, ...]
+    heading: str = ""

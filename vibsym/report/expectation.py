@@ -1,0 +1,130 @@
+"""The page, the row and the object of what to expect (`vibsym expect`).
+
+Counts first, then the species with their activity, then how the axes lie and what to beware of.
+"""
+
+from vibsym.groups.symbols import typeset
+from vibsym.report.document import Facts, Listing, Paragraph, Table, Title
+from vibsym.report.wording import (
+    NOTHING,
+    about_structure,
+    count_text,
+    found_within,
+    functions_text,
+    gamma_plain,
+    gamma_text,
+    group_text,
+)
+from vibsym.spectra.expectation import Expectation
+
+# Depolarisation ratio of a Raman line that is not totally symmetric, by the light used.
+RATIO = {"plane": "3/4", "natural": "6/7"}
+CUBIC = ("T", "Td", "Th", "O", "Oh", "I", "Ih")
+
+
+def parts(result: Expectation, working: bool = False, light: str = "plane", **_) -> list:
+    """Return the page."""
+    page = [Title(about_structure(result.structure)), Paragraph(_group_line(result))]
+    if len(result.structure.symbols) == 1:
+        page.append(Paragraph("One atom: it has no vibrations, so there are no bands to expect.", strong=True))
+        return [*page, *_representations(result), *_beware(result)]
+    page.append(Paragraph(_counts(result), strong=True))
+    page += [_species_table(result), Paragraph(_ratio_line(result, light))]
+    page += _representations(result)
+    if working:
+        from vibsym.report.working import working_parts
+
+        page += working_parts(result.displacements)
+    return [*page, *_axes(result), *_beware(result), *_next_rung(result)]
+
+
+def rows(result: Expectation, **_) -> list[dict]:
+    """Return the CSV row: Γ as text, counts as columns."""
+    symmetry, group = result.symmetry, result.symmetry.group
+    row = {"source": result.structure.source, "formula": result.structure.formula,
+           "atoms": len(result.structure.symbols), "point_group": group.symbol, "order": group.order,
+           "tolerance": symmetry.tolerance, "deviation": round(float(symmetry.deviation), 6), "chiral": group.chiral,
+           "centrosymmetric": group.centrosymmetric}
+    if result.found is not None:
+        row["found"] = result.found.group.symbol
+    gammas = {"gamma_3n": result.gamma_3n, "gamma_translation": result.gamma_translation,
+              "gamma_rotation": result.gamma_rotation, "gamma_vib": result.gamma_vib}
+    row |= {name: gamma_plain(gamma) for name, gamma in gammas.items()}
+    row |= result.counts.to_dict()
+    row |= {f"axis_{name}": result.axes.words.get(name, "") for name in "xyz"}
+    return [row | {"exchange": "; ".join(result.axes.exchange)}]
+
+
+def as_object(result: Expectation, working: bool = False, **_) -> dict:
+    """Return the JSON object; `--working` adds the table of the count."""
+    answer = result.to_dict()
+    if working:
+        from vibsym.vibrations.working import working as written_out
+
+        answer["working"] = written_out(result.displacements).to_dict()
+    return answer
+
+
+def _group_line(result: Expectation) -> str:
+    group = result.symmetry.group
+    order = "infinite order" if group.infinite else f"order {group.order}"
+    line = f"Point group {group_text(group.symbol)}, {order}, {found_within(result.symmetry)}"
+    if result.found is not None:
+        line += (f"\nAnalysed in this group of the ladder; the structure itself has "
+                 f"{group_text(result.found.group.symbol)}, {found_within(result.found)}")
+    return line
+
+
+def _counts(result: Expectation) -> str:
+    counts = result.counts
+    return (f"{count_text(result.vibrations, 'vibration')} in {count_text(counts.fundamentals, 'fundamental')}\n"
+            f"Infrared at most {counts.infrared}, Raman at most {counts.raman} ({counts.polarised} polarised), "
+            f"in both {counts.coincident}, silent {counts.silent}")
+
+
+def _species_table(result: Expectation) -> Table:
+    table = []
+    for species, modes in result.species:
+        if modes:
+            polarised = "polarised" if species.totally_symmetric else "depolarised"
+            functions = [functions_text(each, species.degeneracy) for each in (species.linear, species.quadratic)]
+            table.append((typeset(species.label), str(modes), "active" if species.infrared else NOTHING,
+                          polarised if species.raman else NOTHING, "active" if species.hyper_raman else NOTHING,
+                          "; ".join(filter(None, functions))))
+    head = ("species", "modes", "infrared", "Raman", "hyper-Raman", "transforms like")
+    return Table(head, tuple(table), right=frozenset({1}), flow=True)
+
+
+def _ratio_line(result: Expectation, light: str) -> str:
+    limit = RATIO[light]
+    polarised = "ρ = 0" if result.symmetry.group.symbol in CUBIC else f"ρ below {limit}"
+    others = [typeset(species.label) for species, modes in result.species if not modes]
+    line = f"A degenerate set is one band. Polarised: {polarised}, depolarised: ρ = {limit} ({light} light)."
+    return line + (f"\nNo vibrations in {', '.join(others)}." if others else "")
+
+
+def _representations(result: Expectation) -> list:
+    return [Facts((("Γ3N", gamma_text(result.gamma_3n)), ("Γtranslation", gamma_text(result.gamma_translation)),
+                   ("Γrotation", gamma_text(result.gamma_rotation)), ("Γvib", gamma_text(result.gamma_vib))),
+                  "Representations")]
+
+
+def _axes(result: Expectation) -> list:
+    pairs = tuple((name, words) for name, words in result.axes.words.items())
+    if result.axes.exchange:
+        swaps = ", ".join(typeset(each).replace("<->", "↔") for each in result.axes.exchange)
+        pairs += (("other", f"the other choice of axes (--axes) exchanges {swaps}"),)
+    return [Facts(pairs, "Axes")] if pairs else []
+
+
+def _beware(result: Expectation) -> list:
+    return [Listing(result.notes, "Beware")] if result.notes else []
+
+
+def _next_rung(result: Expectation) -> list:
+    rung = result.next_rung
+    if rung is None:
+        return []
+    symmetry = rung.symmetry
+    return [Paragraph(f"Next rung: {typeset(symmetry.group.symbol)} within {symmetry.deviation:.3f} Å "
+                      "(vibsym group shows the ladder)")]

@@ -1,0 +1,155 @@
+"""What to expect: the species of the vibrations of a structure and the bands they allow.
+
+`expect` is the main job of vibsym in one call.  The counts come at once; the words for the axes, the next rung of the
+ladder and the cautions are computed when they are asked for.
+"""
+
+from dataclasses import dataclass, replace
+from functools import cached_property
+
+from vibsym.errors import VibsymError
+from vibsym.spectra.activity import Counts, SpeciesRow, count_bands, species_rows
+from vibsym.structures.structure import Structure, structure_of
+from vibsym.structures.symmetry import Symmetry
+from vibsym.vibrations.cartesian import Displacements, displacements
+
+DEFAULT_TOLERANCE = 0.02  # Å
+
+
+@dataclass(frozen=True)
+class Expectation:
+    """Γ3N, Γvib and the number of bands of a structure in its group.
+
+    `found` is the symmetry within the tolerance when the analysis was made in another group of the ladder (`as_group`).
+    """
+
+    symmetry: Symmetry
+    displacements: Displacements
+    found: Symmetry | None = None
+
+    @property
+    def structure(self) -> Structure:
+        """The structure as read."""
+        return self.symmetry.structure
+
+    @property
+    def gamma_3n(self) -> dict[str, int]:
+        """Species of all displacements."""
+        return self.displacements.gamma_3n
+
+    @property
+    def gamma_translation(self) -> dict[str, int]:
+        """Species of the translations."""
+        return self.displacements.gamma_translation
+
+    @property
+    def gamma_rotation(self) -> dict[str, int]:
+        """Species of the rotations."""
+        return self.displacements.gamma_rotation
+
+    @property
+    def gamma_vib(self) -> dict[str, int]:
+        """Species of the vibrations."""
+        return self.displacements.gamma_vib
+
+    @cached_property
+    def species(self) -> tuple[SpeciesRow, ...]:
+        """Every species of a finite group, of an infinite one those that occur."""
+        return species_rows(self.gamma_vib, self.symmetry.group)
+
+    @cached_property
+    def counts(self) -> Counts:
+        """How many fundamentals there are, and how many each spectrum can show at most."""
+        return count_bands(self.gamma_vib, self.symmetry.group)
+
+    @property
+    def vibrations(self) -> int:
+        """3N less translations and rotations; a doubly degenerate set counts two here."""
+        return round(float(self.displacements.chi_vib[0]))
+
+    @cached_property
+    def axes(self):
+        """Where the axes point, in words, and what the other choice would exchange (`AxisChoice`)."""
+        from vibsym.structures.axes import axis_words
+
+        return axis_words(self.symmetry)
+
+    @cached_property
+    def next_rung(self):
+        """The next higher group that the structure approaches (`Rung`), or None."""
+        from vibsym.structures.ladder import ladder
+
+        if self.found is not None or self.symmetry.group.infinite:
+            return None
+        above = [rung for rung in ladder(self.structure, self.symmetry.tolerance).rungs
+                 if rung.symmetry.deviation > self.symmetry.tolerance]
+        return above[0] if above else None
+
+    @cached_property
+    def notes(self) -> tuple[str, ...]:
+        """What to beware of: one sentence each."""
+        from vibsym.spectra.cautions import cautions
+
+        return cautions(self)
+
+    def to_dict(self) -> dict:
+        """Return the result for JSON (keys in table order)."""
+        answer = {"structure": self.structure.to_dict(), "point_group": point_group_object(self.symmetry)}
+        if self.found is not None:
+            answer["found"] = point_group_object(self.found)
+        return answer | {
+            "gamma_3n": dict(self.gamma_3n), "gamma_translation": dict(self.gamma_translation),
+            "gamma_rotation": dict(self.gamma_rotation), "gamma_vib": dict(self.gamma_vib),
+            "species": [row.to_dict() for row in self.species], "counts": self.counts.to_dict(),
+            "axes": dict(self.axes.words), "exchange": list(self.axes.exchange), "notes": list(self.notes)}
+
+
+def expect(source, tolerance: float = DEFAULT_TOLERANCE, *, as_group: str | None = None,
+           axes: str | None = None) -> Expectation:
+    """Return what infrared and Raman spectra of a structure can show.
+
+    `source` is a `Structure`, a `Symmetry`, or any object that offers chemical symbols and positions; `tolerance` in Å.
+    With `as_group` the analysis is made in that group of the ladder, with `axes` in the other choice of axes.
+    """
+    if isinstance(source, Symmetry):
+        return Expectation(source, displacements(source))
+    symmetry, found = symmetry_of(structure_of(source), tolerance, as_group, axes)
+    return Expectation(symmetry, displacements(symmetry), found)
+
+
+def symmetry_of(structure: Structure, tolerance: float, as_group: str | None = None,
+                axes: str | None = None) -> tuple[Symmetry, Symmetry | None]:
+    """Return the symmetry to work in, and the one within the tolerance if `as_group` asks for another.
+
+    The groups that can be asked for are those of the ladder.
+    """
+    from vibsym.structures.finder import find_symmetry
+
+    found = find_symmetry(structure, tolerance, axes=None if as_group else axes)
+    if as_group is None:
+        return found, None
+    from vibsym.groups.pointgroup import point_group
+    from vibsym.structures.ladder import ladder
+
+    chosen = rung_named(ladder(structure, tolerance), point_group(as_group).symbol, structure)
+    if axes:
+        chosen = find_symmetry(structure, chosen.tolerance, axes=axes)
+    return replace(chosen, structure=structure), found
+
+
+def rung_named(ladder, symbol: str, structure: Structure) -> Symmetry:
+    """Return the rung of a group (canonical symbol); an error names those that there are."""
+    for rung in ladder.rungs:
+        if rung.symmetry.group.symbol == symbol:
+            return rung.symmetry
+    reached = ", ".join(f"{rung.symmetry.group.symbol} ({rung.symmetry.deviation:.3f} Å)" for rung in ladder.rungs)
+    raise VibsymError(f"{structure.source or structure.formula}: {symbol} is not on the ladder of this structure, "
+                      f"which holds {reached}")
+
+
+def point_group_object(symmetry: Symmetry) -> dict:
+    """Return the `point_group` object of every JSON answer; the order of an infinite group is null."""
+    group = symmetry.group
+    return {"symbol": group.symbol, "order": group.order, "tolerance": symmetry.tolerance,
+            "deviation": round(float(symmetry.deviation), 6), "chiral": group.chiral,
+            "centrosymmetric": group.centrosymmetric}
