@@ -1,9 +1,9 @@
 """Which point group a set of matrices is: its Schoenflies symbol and the frame that turns it into standard orientation.
 
-The matrices form a group exactly (a subset of the operations of a known group, say); no atoms and no tolerance are involved.
-The highest axis gives the family, twofold axes across it the D groups, planes the suffix (the flow chart of every textbook:
-F. A. Cotton, Chemical Applications of Group Theory, ch. 3).  Where the orientation leaves a choice (which plane is σv, which
-twofold axis is z), `standard_frames` returns one frame for each choice and leaves it to the caller.
+The matrices form a group exactly (a subset of the operations of a known group, say); no atoms and no tolerance are
+involved.  The highest axis gives the family, twofold axes across it the D groups, planes the suffix (the flow chart of
+every textbook: F. A. Cotton, Chemical Applications of Group Theory, ch. 3).  Where the orientation leaves a choice (which
+plane is σv, which twofold axis is z), `standard_frames` returns one frame for each and leaves the choice to the caller.
 """
 
 from itertools import permutations
@@ -19,8 +19,8 @@ CLOSE = 1e-6
 def identify(matrices: np.ndarray) -> tuple[str, np.ndarray]:
     """Return (symbol, frame) of a finite group given by all its (h, 3, 3) matrices.
 
-    `frame` (3, 3) has the standard axes x, y, z as rows (a proper rotation): frame @ R @ frame.T runs over the matrices of
-    `point_group(symbol)`.
+    `frame` (3, 3) has the standard axes x, y, z as rows (a proper rotation): frame @ R @ frame.T runs over the matrices
+    of `point_group(symbol)`.
 
     >>> symbol, frame = identify(np.array([np.eye(3), np.diag([-1, 1, -1]), np.diag([-1, 1, 1]), np.diag([1, 1, -1])]))
     >>> symbol, np.abs(frame[2]).tolist()
@@ -31,7 +31,7 @@ def identify(matrices: np.ndarray) -> tuple[str, np.ndarray]:
 
 
 def standard_frames(matrices: np.ndarray) -> tuple[str, list[np.ndarray]]:
-    """Return the symbol and one frame for each choice that the standard orientation leaves (labels may differ between them).
+    """Return the symbol and one frame for each choice of axes that may change labels.
 
     C2v, Cnv with even n: two (σv and σv' exchanged); D2, D2h: six; Dn, Dnh with even n: two; every other group: one.
     """
@@ -51,7 +51,7 @@ def standard_frames(matrices: np.ndarray) -> tuple[str, list[np.ndarray]]:
 
 
 def operation_places(group: PointGroup, matrices: np.ndarray, frame: np.ndarray) -> np.ndarray | None:
-    """Return (h,) where each operation of `group` stands among `matrices` once these are turned into `frame`; None: it does not."""
+    """Return (h,) where each operation of `group` stands among `matrices` turned into `frame`; None: they do not fit."""
     turned = np.einsum("ab,hbc,dc->had", frame, matrices, frame).reshape(len(matrices), 9)
     if len(turned) != group.order:
         return None
@@ -153,14 +153,15 @@ class _Elements:
 
 
 def _axis(rotation: np.ndarray, cosine: float) -> np.ndarray:
-    """Unit vector along the axis of a proper rotation; its first component that is not zero is positive. Zero for the identity."""
+    """Unit vector along the axis of a rotation, its last component that is not zero positive; zero for the identity."""
     if cosine > 1 - CLOSE:
         return np.zeros(3)
     if cosine < -1 + CLOSE:                                # half turn: R = 2 nn' - 1
         square = (rotation + np.eye(3)) / 2
         axis = square[:, int(np.argmax(np.diag(square)))]
     else:
-        axis = np.array([rotation[2, 1] - rotation[1, 2], rotation[0, 2] - rotation[2, 0], rotation[1, 0] - rotation[0, 1]])
+        turned = rotation - rotation.T
+        axis = np.array([turned[2, 1], turned[0, 2], turned[1, 0]])
     axis = axis / np.linalg.norm(axis)
     lead = axis[np.abs(axis) > CLOSE][-1]
     return axis if lead > 0 else -axis
