@@ -1,0 +1,164 @@
+"""Finding the point group of a structure at a tolerance.
+
+A structure has group G at tolerance t when its deviation from G, the largest distance of an atom from its group-averaged position with
+the elements placed by least squares, is at most t (Å). The largest such group is sought: candidate operations (`candidates.py`), the
+closed sets among them (`subsets.py`), their best placement (`placement.py`), symbol and standard frame (`identify.py`), axes by the
+ladder of choice (`settings.py`). Single atoms and linear molecules are exact cases (`linear.py`).
+"""
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from vibsym.errors import VibsymError
+from vibsym.groups.pointgroup import point_group
+from vibsym.structures.candidates import Operations, find_operations
+from vibsym.structures.distances import closest_pair
+from vibsym.structures.identify import identified
+from vibsym.structures.linear import image_permutations, line_frame, linear_placements
+from vibsym.structures.placement import Placement, place
+from vibsym.structures.settings import chosen_setting, free_frame
+from vibsym.structures.structure import structure_of
+from vibsym.structures.subsets import closed_subsets, consistent, product_table
+from vibsym.structures.symmetry import Symmetry
+
+DEFAULT_TOLERANCE = 0.02       # Å
+LARGEST_TOLERANCE = 0.5        # Å
+
+
+@dataclass(frozen=True)
+class Centred:
+    """A structure about its centroid: points (N, 3), kinds (N,), centroid (3,), shortest distance between atoms (Å)."""
+
+    structure: object
+    points: np.ndarray
+    kinds: np.ndarray
+    centroid: np.ndarray
+    shortest: float
+
+
+def find_symmetry(structure, tolerance: float = DEFAULT_TOLERANCE, axes: str | None = None, bonds=None) -> Symmetry:
+    """Return the largest point group within `tolerance` (Å) of a structure, with its standard frame.
+
+    `axes` makes another choice of axes where there is one ("swap", or for C2v, D2, D2h an order such as "yxz"); `bonds` (B, 2) are
+    used by the ladder of choice, by default those of `find_bonds`.
+    """
+    centred = centre(structure_of(structure))
+    tolerance = legal_tolerance(tolerance, centred.shortest)
+    found = line_within(centred, tolerance)
+    if found is None:
+        found = largest_group(centred, tolerance)
+    return symmetry_of(centred, found, tolerance, axes, bonds)
+
+
+def centre(structure) -> Centred:
+    """Return the structure about its centroid, where least squares puts the point common to all elements."""
+    positions = np.asarray(structure.positions, dtype=float)
+    centroid = positions.mean(axis=0)
+    return Centred(structure, positions - centroid, np.asarray(structure.kinds), centroid, closest_pair(positions)[2])
+
+
+def legal_tolerance(tolerance, shortest: float) -> float:
+    """Return the tolerance as a number, or raise: it must lie between zero and the smaller of 0.5 Å and half the shortest distance."""
+    try:
+        value = float(tolerance)
+    except (TypeError, ValueError):
+        raise VibsymError(f"the tolerance '{tolerance}' is not a number; give a length in Å such as 0.02") from None
+    most = min(LARGEST_TOLERANCE, 0.5 * shortest)
+    if not value > 0:
+        raise VibsymError(f"the tolerance {value:g} Å is not above zero; give a length in Å such as 0.02")
+    if value > most + 1e-12:
+        why = "0.5 Å" if most == LARGEST_TOLERANCE else f"{most:.3f} Å, half the shortest distance between atoms"
+        raise VibsymError(f"the tolerance {value:g} Å is too large; here it can be at most {why}")
+    return value
+
+
+def line_within(centred: Centred, tolerance: float):
+    """Return the linear placement or the single atom within the tolerance, else None."""
+    points = centred.points
+    if len(points) == 1:
+        return "Kh", np.zeros((1, 3)), np.array([0.0, 0.0, 1.0]), None
+    placements = linear_placements(points, centred.kinds)
+    if np.sqrt(((points - placements[-1][1]) ** 2).sum(axis=1)).max() > tolerance:
+        return None
+    for placement in placements:
+        if np.sqrt(((points - placement[1]) ** 2).sum(axis=1)).max() <= tolerance:
+            return placement
+    return placements[-1]
+
+
+def largest_group(centred: Centred, tolerance: float) -> Placement:
+    """Return the placement of the group of highest order (then smallest deviation) within the tolerance."""
+    operations = find_operations(centred.points, centred.kinds, tolerance, centred.shortest)
+    table = product_table(operations)
+    if table.min() >= 0:
+        whole = placed(centred, operations, table)
+        if whole is not None and whole.deviation <= tolerance:
+            return whole
+    return _largest_subset(centred, operations, table, tolerance)
+
+
+def placed(centred: Centred, operations: Operations, table) -> Placement | None:
+    """Return the placement of a closed set of operations, None when the permutations of all atoms do not multiply alike."""
+    if not consistent(operations, table):
+        return None
+    return place(centred.points, operations.permutations, operations.signs, operations.matrices, table)
+
+
+def place_subset(centred: Centred, operations: Operations, table, members) -> Placement | None:
+    """Return the placement of the closed subset `members` (indices)."""
+    members = np.sort(np.asarray(members))
+    inside = np.full(len(table), -1)
+    inside[members] = np.arange(len(members))
+    return placed(centred, operations.chosen(members), inside[table[np.ix_(members, members)]])
+
+
+def _largest_subset(centred, operations, table, tolerance):
+    """Try the closed subsets; the sum of squared shifts never falls from a group to a larger one, so it prunes safely."""
+    known = {}
+
+    def accept(members):
+        placement = place_subset(centred, operations, table, members)
+        if placement is None:
+            return False
+        known[frozenset(members)] = placement
+        return float(np.sqrt((placement.shifts ** 2).mean())) <= tolerance
+
+    best = None
+    for members in closed_subsets(table, accept=accept):
+        placement = known.get(frozenset(members)) or place_subset(centred, operations, table, members)
+        if placement is None or placement.deviation > tolerance:
+            continue
+        if best is None or (placement.order, -placement.deviation) > (best.order, -best.deviation):
+            best = placement
+    return best
+
+
+def symmetry_of(centred: Centred, found, tolerance: float, axes: str | None = None, bonds=None) -> Symmetry:
+    """Return the Symmetry of a placement: symbol, standard frame with the chosen axes, origin at the centre of mass."""
+    structure = centred.structure
+    if isinstance(found, Placement):
+        group, frame, order = identified(found.matrices, found.signs)
+        permutations, averaged, shifts = found.permutations[order], found.averaged, found.shifts
+    else:
+        symbol, averaged, axis, turn = found
+        group, frame = point_group(symbol), line_frame(axis)
+        permutations = image_permutations(symbol, turn, len(structure))
+        difference = centred.points - averaged
+        shifts = np.sqrt((difference * difference).sum(axis=1))
+    frame = free_frame(group.symbol, frame, averaged, structure)
+    frame, order, decided = chosen_setting(group, frame, averaged, structure, axes, bonds)
+    if order is not None:
+        permutations = permutations[order]
+    local = averaged @ frame.T
+    centre_of_mass = mass_centre(local, structure.masses, group.image.matrices if len(structure) > 1 else None)
+    return Symmetry(structure, group, tolerance, float(shifts.max()), centred.centroid + centre_of_mass @ frame, frame,
+                    local - centre_of_mass, permutations, shifts, axes, decided)
+
+
+def mass_centre(positions, masses, matrices):
+    """Return the centre of mass (dummy atoms have none) of (N, 3) positions, put exactly on every element of the group."""
+    weights = np.where(masses > 0, masses, 0.0)
+    total = weights.sum()
+    centre = weights @ positions / total if total > 0 else np.zeros(3)
+    return centre if matrices is None else matrices.mean(axis=0) @ centre

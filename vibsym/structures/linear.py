@@ -1,0 +1,57 @@
+"""Linear molecules and single atoms: C∞v, D∞h and Kh as what they are, not as large n.
+
+A structure is linear when every atom lies within the tolerance of the least-squares axis. It is D∞h when the atoms also map onto
+themselves end for end; the deviation is the largest distance of an atom from its place on the averaged line.
+"""
+
+import numpy as np
+
+from vibsym.groups.pointgroup import point_group
+from vibsym.structures.identify import completed
+
+
+def principal_line(points):
+    """Return the unit vector of the line through the origin with the least sum of squared distances from (N, 3) points."""
+    return np.linalg.svd(points, full_matrices=False)[2][0]
+
+
+def on_a_line(points, axis):
+    """Return the (N, 3) feet of the points on the line."""
+    return np.outer(points @ axis, axis)
+
+
+def end_for_end(points, kinds, axis):
+    """Return the (N,) permutation that turns the line around, None when the kinds do not allow it."""
+    order = np.argsort(points @ axis, kind="stable")
+    if not np.array_equal(kinds[order], kinds[order[::-1]]):
+        return None
+    permutation = np.empty(len(points), dtype=np.intp)
+    permutation[order] = order[::-1]
+    return permutation
+
+
+def linear_placements(points, kinds):
+    """Return [(symbol, averaged positions, axis, permutation of the turn or None)], D∞h first where the kinds allow it."""
+    axis = principal_line(points)
+    found = []
+    turn = end_for_end(points, kinds, axis)
+    if turn is not None:
+        halves = 0.5 * (points - points[turn])
+        axis_h = principal_line(halves)
+        found.append(("D∞h", on_a_line(halves, axis_h), axis_h, turn))
+    found.append(("C∞v", on_a_line(points, axis), axis, None))
+    return found
+
+
+def line_frame(axis):
+    """Return a frame whose z is the molecular axis."""
+    return completed(axis)
+
+
+def image_permutations(symbol, turn, atoms):
+    """Return (h, N) permutations for the finite image of C∞v, D∞h or Kh: only operations that reverse z move atoms."""
+    image = point_group(symbol).image
+    stay = np.arange(atoms)
+    if turn is None:
+        return np.broadcast_to(stay, (image.order, atoms)).copy()
+    return np.where((image.matrices[:, 2, 2] < 0)[:, None], turn, stay)

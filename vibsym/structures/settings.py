@@ -1,0 +1,188 @@
+"""Which of the equally good frames of a group labels its species: the ladder of choice (conventions.md, "Axes").
+
+Only C2v, D2, D2h, C(2k)v, D(2k), D(2k)h (k >= 2) leave a choice that labels depend on. Between elements of one kind the ladder asks
+for (1) more atoms on it; (2) more bonds cut by it or lying in it; (3) the larger sum of atomic numbers on it; (4) the larger sum of
+masses on it; (5) the farther nearest atom off it, then the next nearest. Sources: R. S. Mulliken, J. Chem. Phys. 23, 1997 (1955);
+IUPAC, Pure Appl. Chem. 69, 1641 (1997); the rest is vibsym's own rule.
+"""
+
+import re
+from functools import cache
+from itertools import permutations as orders
+
+import numpy as np
+
+from vibsym.errors import VibsymError
+from vibsym.structures.identify import completed, matched
+
+ON = 1e-4          # Å; symmetrised atoms lie on an element to rounding or not at all
+TIED = 1e-3        # Å; nearest distances that differ by less do not decide
+X, Y, Z = np.eye(3)
+
+
+@cache
+def settings(symbol: str) -> dict[str, np.ndarray]:
+    """Return the frames that labels can tell apart, as turns (3, 3) of the default one; a single entry where there is no choice.
+
+    >>> list(settings("C2v")), list(settings("D4h")), list(settings("D3h"))
+    (['xyz', 'yxz'], ['xyz', 'swap'], ['xyz'])
+    """
+    if symbol == "C2v":
+        return {name: axes_order(name) for name in ("xyz", "yxz")}
+    if symbol in ("D2", "D2h"):
+        return {"".join(name): axes_order("".join(name)) for name in orders("xyz")}
+    parts = re.fullmatch(r"([CD])(\d+)(v|h|)", symbol)
+    if parts and int(parts[2]) % 2 == 0 and int(parts[2]) >= 4 and (parts[1] == "D") == (parts[3] != "v"):
+        angle = np.pi / int(parts[2])
+        c, s = np.cos(angle), np.sin(angle)
+        return {"xyz": np.eye(3), "swap": np.array([[c, s, 0], [-s, c, 0], [0, 0, 1]])}
+    return {"xyz": np.eye(3)}
+
+
+def axes_order(name: str) -> np.ndarray:
+    """Return the proper rotation whose new x, y, z are the old ones in the order `name`, one of them reversed where it must be."""
+    turn = np.eye(3)[["xyz".index(letter) for letter in name]]
+    if np.linalg.det(turn) < 0:
+        turn[1] *= -1
+    return turn
+
+
+def requested(symbol: str, axes: str | None) -> str | None:
+    """Return the name of the setting asked for, None for the default; anything impossible is an error that names what is possible."""
+    if axes is None:
+        return None
+    possible = settings(symbol)
+    name = str(axes).strip().lower()
+    if len(possible) == 1:
+        raise VibsymError(f"--axes '{axes}': {symbol} leaves no choice of axes that labels depend on; leave --axes out")
+    if name == "swap" and len(possible) == 2:
+        return list(possible)[1]
+    if name in possible:
+        return name
+    names = [key for key in possible if key != "xyz"]
+    if symbol == "C2v":
+        names = ["swap", *names]
+    raise VibsymError(f"--axes '{axes}': in {symbol} the choice is {', '.join(names)} (new x, y, z among the default ones)"
+                      if "swap" not in possible else f"--axes '{axes}': in {symbol} the choice is swap")
+
+
+class Elements:
+    """Measures axes and planes through the origin against the atoms and bonds of a structure (positions in one frame)."""
+
+    def __init__(self, positions, numbers, masses, bonds):
+        self.positions, self.numbers, self.bonds = positions, numbers, bonds
+        self.masses = np.where(masses > 0, masses, 0.0)
+
+    def axis(self, direction):
+        """Return the ladder's values for an axis: atoms, bonds, atomic numbers, mass, then distances of the atoms off it."""
+        along = self.positions @ direction
+        away = self.positions - np.outer(along, direction)
+        distances = np.sqrt((away * away).sum(axis=1))
+        on = distances < ON
+        return self._values(distances, on, self._bonds_of_axis(away, on))
+
+    def plane(self, normal):
+        """Return the ladder's values for a plane."""
+        heights = self.positions @ normal
+        on = np.abs(heights) < ON
+        i, j = self.bonds[:, 0], self.bonds[:, 1]
+        bonds = (on[i] & on[j]) | (~on[i] & ~on[j] & (heights[i] * heights[j] < 0))
+        return self._values(np.abs(heights), on, int(bonds.sum()))
+
+    def _bonds_of_axis(self, away, on):
+        i, j = self.bonds[:, 0], self.bonds[:, 1]
+        lying = on[i] & on[j]
+        # seen along the axis a bond is a segment; the axis cuts it where the segment passes through the origin
+        step = away[j] - away[i]
+        lengths = (step * step).sum(axis=1)
+        part = -(away[i] * step).sum(axis=1) / np.where(lengths > ON * ON, lengths, np.inf)
+        foot = away[i] + part[:, None] * step
+        cut = (~on[i] & ~on[j]) & (part > 0) & (part < 1) & ((foot * foot).sum(axis=1) < ON * ON)
+        return int((lying | cut).sum())
+
+    def _values(self, distances, on, bonds):
+        off = np.sort(distances[~on])
+        return np.concatenate(([on.sum(), bonds, self.numbers[on].sum(), self.masses[on].sum()], off))
+
+
+def compare(first, second) -> int:
+    """Return 1 where `first` comes first on the ladder, -1 where `second` does, 0 where no rule decides."""
+    if len(first) != len(second):
+        return 1 if first[0] > second[0] else -1
+    difference = first - second
+    limit = np.full(len(difference), TIED)
+    limit[3:4] = 0.05          # u; alike atoms agree within 0.01 u
+    telling = np.flatnonzero(np.abs(difference) > limit)
+    return 0 if not len(telling) else (1 if difference[telling[0]] > 0 else -1)
+
+
+def criteria(symbol: str, elements: Elements, frame) -> list:
+    """Return the list of ladder values, most important first, that a frame offers for the elements its group leaves to choose."""
+    x, y, z = frame
+    if symbol == "C2v":
+        return [elements.plane(x)]
+    if symbol == "D2":
+        return [elements.axis(z), elements.axis(y)]
+    if symbol == "D2h":
+        flat = np.abs(elements.positions @ x).max() < ON       # planar: x stands on the molecular plane, z lies in it
+        return [np.array([float(flat)]), elements.axis(z), elements.plane(x)]
+    if symbol[-1] == "v":
+        return [elements.plane(y)]
+    on_axis = elements.axis(x)
+    if symbol[-1] == "h":
+        return [on_axis[:1], elements.plane(y)[:1], on_axis]
+    return [on_axis]
+
+
+def _compare_lists(first, second) -> int:
+    for one, other in zip(first, second):
+        verdict = compare(one, other)
+        if verdict:
+            return verdict
+    return 0
+
+
+def chosen_setting(group, frame, positions, structure, axes=None, bonds=None):
+    """Return (frame, order of operations or None, decided) of the setting asked for, or first on the ladder of choice.
+
+    `order` (h,): operation k of the group in the new frame is operation order[k] of the old one. `positions` (N, 3) are symmetrised.
+    """
+    possible = settings(group.symbol)
+    name = requested(group.symbol, axes)
+    if len(possible) == 1:
+        return frame, None, True
+    if bonds is None:
+        from vibsym.structures.bonds import find_bonds
+
+        bonds = find_bonds(structure)
+    elements = Elements(positions, structure.numbers, structure.masses, np.asarray(bonds, dtype=np.intp).reshape(-1, 2))
+    values = {key: criteria(group.symbol, elements, turn @ frame) for key, turn in possible.items()}
+    best, decided = "xyz", True
+    for key in list(possible)[1:]:
+        verdict = _compare_lists(values[key], values[best])
+        if verdict > 0:
+            best, decided = key, True
+        elif verdict == 0:
+            decided = False
+    turn = possible[best]
+    if name is not None:
+        turn = possible[name] @ turn
+    return turn @ frame, matched(group, turn, group.matrices), decided
+
+
+def free_frame(symbol: str, frame, positions, structure):
+    """Turn a frame whose x the group does not fix towards an atom, so that it does not depend on how the structure lay.
+
+    C1, Ci: principal axes of the atoms; Cs, Cn, Cnh, S2n and lines: x towards the heaviest, then farthest, atom off z.
+    """
+    if symbol in ("C1", "Ci"):
+        x, _, z = np.linalg.eigh(positions.T @ positions)[1].T[::-1]
+        return completed(z, x)
+    if symbol[0] in "DTOIK" or symbol[-1] == "v":
+        return frame
+    z = frame[2]
+    away = positions - np.outer(positions @ z, z)
+    distances = np.sqrt((away * away).sum(axis=1))
+    off = np.where(distances > ON, structure.numbers + 1 + distances / (distances.max() + 1), -1.0)
+    atom = int(off.argmax())
+    return frame if off[atom] < 0 else completed(z, away[atom])

@@ -1,0 +1,43 @@
+"""The symmetry of a structure: its group, how far it is from it, how the axes lie, and where every operation sends every atom.
+
+Convention: operations are active; R_r, a matrix of `group.image` in the standard frame, moves atom i onto the place of atom
+permutations[r, i]: R_r x_i = x_permutations[r, i] for the symmetrised positions.
+"""
+
+from dataclasses import dataclass
+from functools import cached_property
+
+import numpy as np
+
+from vibsym.structures.structure import Structure
+
+
+@dataclass(frozen=True, eq=False)
+class Symmetry:
+    """A structure with the group found in it; `find_symmetry` makes one.
+
+    `frame` (3, 3) has the axes x, y, z as rows: standard coordinates are (positions - origin) @ frame.T, Å.
+    """
+
+    structure: Structure            # as read
+    group: object                   # PointGroup or InfiniteGroup
+    tolerance: float                # Å
+    deviation: float                # Å, the largest of `shifts`
+    origin: np.ndarray              # (3,) centre of mass of the symmetrised structure, on every element
+    frame: np.ndarray               # (3, 3)
+    positions: np.ndarray           # (N, 3) symmetrised, in the standard frame
+    permutations: np.ndarray        # (h, N) int
+    shifts: np.ndarray              # (N,) Å, from each atom to its averaged place
+    axes: str | None = None         # the setting asked for; None: the one the rules choose
+    decided: bool = True            # False: no rule tells the settings apart
+
+    @cached_property
+    def symmetrised(self) -> Structure:
+        """The structure with averaged positions, where it stood."""
+        return self.structure.moved(self.positions @ self.frame + self.origin)
+
+    def to_dict(self) -> dict:
+        """Return the `point_group` object of every JSON result."""
+        group = self.group
+        return {"symbol": group.symbol, "order": group.order, "tolerance": self.tolerance, "deviation": self.deviation,
+                "chiral": bool(group.chiral), "centrosymmetric": bool(group.centrosymmetric)}
