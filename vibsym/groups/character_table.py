@@ -31,7 +31,8 @@ class CharacterTable:
     def to_dict(self) -> dict:
         """Return the table for JSON; what depends on an angle or is infinite is null."""
         group = self.group
-        return {"point_group": {"symbol": group.symbol, "order": group.order, "chiral": group.chiral,
+        return {"point_group": {"symbol": group.symbol, "order": group.order, "tolerance": None,
+                                "deviation": None, "chiral": group.chiral,
                                 "centrosymmetric": group.centrosymmetric},
                 "classes": [{"symbol": each.symbol, "size": each.size or None} for each in group.classes],
                 "species": [self._species(species) for species in group.species]}
@@ -59,7 +60,7 @@ def character_table(symbol: str) -> CharacterTable:
 
 
 def exact_text(value, turn: int) -> str:
-    """Return an exact character (sympy) as text: whole, with one square root, or 2cos(2πk/n) with n a divisor of `turn`.
+    """Return an exact character (sympy) as text: whole, with one square root, or 2cos(2πk/n), n a divisor of `turn`.
 
     >>> import sympy
     >>> exact_text(2 * sympy.cos(2 * sympy.pi / 7), 14), exact_text(sympy.sqrt(3), 24)
@@ -67,7 +68,7 @@ def exact_text(value, turn: int) -> str:
     """
     terms = value.expand().as_coefficients_dict()
     roots = [term for term in terms if term != 1]
-    if len(roots) > 1 or not all(_is_square_root(root) for root in roots) or not all(c.is_Rational for c in terms.values()):
+    if len(roots) > 1 or not all(_is_square_root(root) for root in roots):
         return _cosine_text(float(value), turn)
     whole = Fraction(str(terms.get(1, 0)))
     factor = Fraction(str(terms[roots[0]])) if roots else Fraction(0)
@@ -83,7 +84,7 @@ def _radical_text(whole: int, factor: int, base: int, below: int) -> str:
     """Write (whole + factor √base) / below."""
     if not factor:
         return str(whole)
-    sign = "-" if whole < 0 and factor < 0 or not whole and factor < 0 else ""
+    sign = "-" if factor < 0 and whole <= 0 else ""
     if sign:
         whole, factor = -whole, -factor
     root = ("-" if factor < 0 else "+" if whole else "") + (str(abs(factor)) if abs(factor) > 1 else "") + f"√{base}"

@@ -1,6 +1,6 @@
 """Projection of a basis onto species components: symmetry-adapted combinations with partners oriented alike.
 
-A combination of an orbit is fixed by what stands at its first object s: with U (species component × component of s)
+A combination of an orbit is fixed by what stands at its seed s: with U (species component × component of s)
 invariant under the site group of s, D(h) U B(h)^T = U, the coefficient of object c = g_c s is
 
     v_i(c) = (d / |orbit|)^(1/2)  [D(g_c) U B(g_c)^T]_i ,        R v_i = Σ_j D_ji(R) v_j .
@@ -28,9 +28,9 @@ def symmetry_vectors(basis: Basis) -> dict[str, np.ndarray]:
     n, d = basis.size, basis.components
     parts: dict[str, list[np.ndarray]] = {label: [] for label in group.labels}
     for orbit in basis.orbits():
-        transport, site = site_group(basis, orbit)
-        blocks_site = basis.blocks[site, orbit[0]]
-        blocks_out = basis.blocks[transport, orbit[0]]
+        seed, transport, site = site_group(basis, orbit)
+        blocks_site = basis.blocks[site, seed]
+        blocks_out = basis.blocks[transport, seed]
         for label, norm in zip(group.labels, group.norms.tolist(), strict=True):
             irrep = group.irrep(label)
             seeds = invariant_seeds(irrep[site], blocks_site, norm == 2)
@@ -44,12 +44,19 @@ def symmetry_vectors(basis: Basis) -> dict[str, np.ndarray]:
     return {label: np.concatenate(found) for label, found in parts.items() if found}
 
 
-def site_group(basis: Basis, orbit: np.ndarray, seed: int | None = None) -> tuple[np.ndarray, np.ndarray]:
-    """Return for an orbit one operation that takes its seed (the first object) to each member, and the seed's site group."""
-    start = orbit[0] if seed is None else seed
-    images = basis.targets[:, start]
+def site_group(basis: Basis, orbit: np.ndarray) -> tuple[int, np.ndarray, np.ndarray]:
+    """Return for an orbit its seed, one operation that takes the seed to each member, and the site group of the seed.
+
+    The seed is the member whose site group lies most along x, y and z (its matrices most nearly diagonal), so that the
+    combinations come out with the simplest coefficients.
+    """
+    slant = np.abs(basis.group.matrices).sum(axis=(1, 2)) - np.abs(np.einsum("gii->gi", basis.group.matrices)).sum(axis=1)
+    unmoved = basis.targets[:, orbit] == orbit
+    lean = slant @ unmoved
+    seed = int(orbit[np.argmax(lean < lean.min() + 1e-6)])
+    images = basis.targets[:, seed]
     transport = np.argmax(images[None, :] == orbit[:, None], axis=1)
-    return transport, np.flatnonzero(images == start)
+    return seed, transport, np.flatnonzero(images == seed)
 
 
 def invariant_seeds(irrep: np.ndarray, blocks: np.ndarray, pair: bool) -> np.ndarray:
