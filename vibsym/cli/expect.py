@@ -15,7 +15,7 @@ from vibsym.cli.reading import finish, results_of
 @options.reading_options
 @options.working_option
 @options.light_option
-def command(structures, form, output, tolerance, as_group, axes, frame, bonds, no_bonds, average_masses, working, light):
+def command(structures, form, output, tolerance, as_group, axes, working, light, **reading):
     """Tell which infrared and Raman bands each STRUCTURE can show.
 
     A STRUCTURE is an XYZ or MDL mol file, or - for standard input.
@@ -30,6 +30,6 @@ def command(structures, form, output, tolerance, as_group, axes, frame, bonds, n
     from vibsym.report import expectation as view
     from vibsym.spectra.expectation import expect
 
-    results, failures = results_of(structures, frame, bonds, no_bonds, average_masses,
-                                   lambda structure: expect(structure, tolerance, as_group=as_group, axes=axes))
+    results, failures = results_of(
+        structures, lambda structure: expect(structure, tolerance, as_group=as_group, axes=axes), **reading)
     finish(results, failures, view, form, output, working=working, light=light)

@@ -12,9 +12,10 @@ from vibsym.errors import VibsymError
 @options.output_options
 @options.tolerance_option
 @options.as_option
+@options.axes_option
 @options.reading_options
 @options.write_option
-def command(structures, form, output, tolerance, as_group, frame, bonds, no_bonds, average_masses, write):
+def command(structures, form, output, tolerance, as_group, axes, write, **reading):
     """Show the point group of each STRUCTURE and the higher groups that it nearly has.
 
     Each rung of the ladder stands with its deviation (the largest shift of an atom), its band counts and the atoms
@@ -28,14 +29,14 @@ def command(structures, form, output, tolerance, as_group, frame, bonds, no_bond
     """
     from vibsym.report import climb as view
     from vibsym.spectra.climb import climb
+    from vibsym.structures.ladder import as_group as in_group
 
-    results, failures = results_of(structures, frame, bonds, no_bonds, average_masses,
-                                   lambda structure: climb(structure, tolerance))
-    chosen = [result.rung_of(as_group) if as_group else result.suggested for result in results]
+    results, failures = results_of(structures, lambda structure: climb(structure, tolerance, axes=axes), **reading)
     if write is not None and not failures:
-        if len(chosen) != 1:
-            raise VibsymError(f"--write {write}: one structure at a time; {len(chosen)} were given")
-        _save(write, chosen[0])
+        if len(results) != 1:
+            raise VibsymError(f"--write {write}: one structure at a time; {len(results)} were given")
+        result = results[0]
+        _save(write, in_group(result.structure, as_group, tolerance) if as_group else result.suggested)
     finish(results, failures, view, form, output)
 
 

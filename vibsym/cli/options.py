@@ -17,7 +17,7 @@ tolerance_option = click.option(
 as_option = click.option(
     "--as", "as_group", metavar="GROUP", help="Make the analysis in this group of the ladder (vibsym group shows it).")
 axes_option = click.option(
-    "--axes", metavar="CHOICE", help="The other choice of axes where labels depend on it, e.g. other or x,z,y.")
+    "--axes", metavar="CHOICE", help="Another choice of axes where labels depend on it: swap, or an order such as yxz.")
 working_option = click.option(
     "--working", is_flag=True, help="Write the count out: class by class, then species by species.")
 light_option = click.option(

@@ -22,12 +22,15 @@ def read_structures(path: str, frame: str = "1", bonds=(), no_bonds=(), average_
     return [_prepared(structure, bonds, no_bonds, average_masses) for structure in found]
 
 
-def results_of(paths, frame: str, bonds, no_bonds, average_masses: bool, make: Callable) -> tuple[list, int]:
-    """Return the results of all structures that could be read, and how many failed."""
+def results_of(paths, make: Callable, **reading) -> tuple[list, int]:
+    """Return the results of all structures that could be read, and how many files failed.
+
+    `reading` holds the options of `options.reading_options`.
+    """
     results, failures = [], 0
     for path in _with_progress(paths):
         try:
-            for structure in read_structures(path, frame, bonds, no_bonds, average_masses):
+            for structure in read_structures(path, **reading):
                 results.append(make(structure))
         except VibsymError as error:
             failures += 1

@@ -53,8 +53,8 @@ def _remarks(result: CharacterTable) -> list[str]:
     remarks = []
     if result.has_pairs:
         pairs = ", ".join(typeset(species.label) for species in group.species if species.pair)
-        remarks.append(f"{pairs}: two complex-conjugate species written as one real one (the sum of the pair); Σ g·χ² is "
-                       "2h, and it is one band.")
+        remarks.append(f"{pairs}: two complex-conjugate species written as one real one (the sum of the pair); Σ g·χ² "
+                       "is 2h, and it is one band.")
     if group.infinite:
         remarks.append("φ is any angle of rotation; the species go on without end.")
     if group.centrosymmetric:

@@ -29,7 +29,7 @@ def rows(result: Climb, **_) -> list[dict]:
                       "atoms": len(result.structure), "point_group": group.symbol, "order": group.order,
                       "deviation": round(float(each.symmetry.deviation), 6),
                       "found": each is result.found, "suggested": each.symmetry is result.suggested,
-                      "spoilers": " ".join(str(int(atom) + 1) for atom in rung.spoilers)} | each.counts.to_dict())
+                      "spoilers": " ".join(map(str, rung.spoilers))} | each.counts.to_dict())
     return table
 
 
@@ -63,6 +63,6 @@ def _rungs(result: Climb) -> Table:
 
 def _spoilers(result: Climb, rung) -> str:
     """Name the atoms by element and number; a long list is cut."""
-    names = [f"{result.structure.labels[atom]}{int(atom) + 1}" for atom in rung.spoilers]
+    names = [f"{result.structure.labels[atom - 1]}{atom}" for atom in rung.spoilers]
     more = len(names) - _MOST_SPOILERS
     return " ".join(names[:_MOST_SPOILERS]) + (f" and {more} more" if more > 0 else "") or NOTHING

@@ -113,7 +113,7 @@ def _axes(result: Expectation) -> list:
     pairs = tuple((name, words) for name, words in result.axes.words.items())
     if result.axes.exchange:
         swaps = ", ".join(typeset(each).replace("<->", "↔") for each in result.axes.exchange)
-        pairs += (("other", f"the other choice of axes (--axes) exchanges {swaps}"),)
+        pairs += (("other", f"another choice of axes (--axes) exchanges {swaps}"),)
     return [Facts(pairs, "Axes")] if pairs else []
 
 

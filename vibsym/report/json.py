@@ -1,4 +1,4 @@
-"""Set results as JSON: one compact object a line, keys in the order of the contract, Greek letters and ∞ as they are."""
+"""Set results as JSON: one compact object a line, keys in the order of the contract, Greek letters as they are."""
 
 
 def set_json(objects: list[dict]) -> str:

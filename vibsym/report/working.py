@@ -20,8 +20,8 @@ def working_parts(given: Displacements) -> list:
 
 
 def _formula(written, given: Displacements) -> str:
-    text = ("An atom left in place gives ±1 + 2cos θ (+ for a rotation, − for a rotation with reflection). Each species "
-            f"occurs (1/h) Σ g·χ·χ(Γ3N) times, h = {written.image.order}")
+    text = ("An atom left in place gives ±1 + 2cos θ (+ for a rotation, − for a rotation with reflection). Each "
+            f"species occurs (1/h) Σ g·χ·χ(Γ3N) times, h = {written.image.order}")
     if any(species.pair for species in written.image.species):
         text += "; two conjugate species counted as one: 1/2h"
     text += ". Less translations and rotations this leaves Γvib."

@@ -3,9 +3,8 @@
 from dataclasses import dataclass
 from functools import cached_property
 
-from vibsym.groups.pointgroup import point_group
-from vibsym.spectra.expectation import DEFAULT_TOLERANCE, Expectation, point_group_object, rung_named
-from vibsym.structures.structure import Structure
+from vibsym.spectra.expectation import DEFAULT_TOLERANCE, Expectation
+from vibsym.structures.structure import Structure, structure_of
 from vibsym.structures.symmetry import Symmetry
 from vibsym.vibrations.cartesian import displacements
 
@@ -24,31 +23,27 @@ class Climb:
 
     @cached_property
     def found(self) -> Expectation:
-        """The highest rung within the tolerance: the group of the structure."""
-        inside = [each for each in self.expectations if each.symmetry.deviation <= each.symmetry.tolerance]
-        return inside[-1] if inside else self.expectations[0]
+        """The lowest rung: the group within the tolerance."""
+        return self.expectations[0]
 
     @property
     def suggested(self) -> Symmetry:
         """The rung before the largest ratio of successive deviations."""
         return self.ladder.rungs[self.ladder.suggested].symmetry
 
-    def rung_of(self, symbol: str) -> Symmetry:
-        """Return the rung of a group named as people type it."""
-        return rung_named(self.ladder, point_group(symbol).symbol, self.structure)
-
     def to_dict(self) -> dict:
         """Return the ladder for JSON; `spoilers` are the atoms farthest from the next rung, numbered from 1."""
-        rungs = [{"point_group": point_group_object(each.symmetry),
+        rungs = [{"point_group": each.symmetry.to_dict(),
                   "deviation": round(float(each.symmetry.deviation), 6),
-                  "spoilers": [int(atom) + 1 for atom in rung.spoilers], "counts": each.counts.to_dict()}
+                  "spoilers": list(rung.spoilers), "counts": each.counts.to_dict()}
                  for rung, each in zip(self.ladder.rungs, self.expectations, strict=True)]
-        return {"structure": self.structure.to_dict(), "point_group": point_group_object(self.found.symmetry),
+        return {"structure": self.structure.to_dict(), "point_group": self.found.symmetry.to_dict(),
                 "axes": dict(self.found.axes.words), "rungs": rungs, "suggested": self.suggested.group.symbol}
 
 
-def climb(structure: Structure, tolerance: float = DEFAULT_TOLERANCE) -> Climb:
-    """Return the ladder of a structure with the counts of every rung."""
+def climb(source, tolerance: float = DEFAULT_TOLERANCE, *, axes: str | None = None) -> Climb:
+    """Return the ladder of a structure with the counts of every rung; `axes` chooses those of the group found."""
     from vibsym.structures.ladder import ladder
 
-    return Climb(structure, ladder(structure, tolerance))
+    structure = structure_of(source)
+    return Climb(structure, ladder(structure, tolerance, axes))

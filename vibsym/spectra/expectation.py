@@ -4,10 +4,9 @@
 ladder and the cautions are computed when they are asked for.
 """
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from functools import cached_property
 
-from vibsym.errors import VibsymError
 from vibsym.spectra.activity import Counts, SpeciesRow, count_bands, species_rows
 from vibsym.structures.structure import Structure, structure_of
 from vibsym.structures.symmetry import Symmetry
@@ -79,11 +78,7 @@ class Expectation:
         """The next higher group that the structure approaches (`Rung`), or None."""
         from vibsym.structures.ladder import ladder
 
-        if self.found is not None or self.symmetry.group.infinite:
-            return None
-        above = [rung for rung in ladder(self.structure, self.symmetry.tolerance).rungs
-                 if rung.symmetry.deviation > self.symmetry.tolerance]
-        return above[0] if above else None
+        return None if self.found is not None else ladder(self.structure, self.symmetry.tolerance).next
 
     @cached_property
     def notes(self) -> tuple[str, ...]:
@@ -94,9 +89,9 @@ class Expectation:
 
     def to_dict(self) -> dict:
         """Return the result for JSON (keys in table order)."""
-        answer = {"structure": self.structure.to_dict(), "point_group": point_group_object(self.symmetry)}
+        answer = {"structure": self.structure.to_dict(), "point_group": self.symmetry.to_dict()}
         if self.found is not None:
-            answer["found"] = point_group_object(self.found)
+            answer["found"] = self.found.to_dict()
         return answer | {
             "gamma_3n": dict(self.gamma_3n), "gamma_translation": dict(self.gamma_translation),
             "gamma_rotation": dict(self.gamma_rotation), "gamma_vib": dict(self.gamma_vib),
@@ -109,47 +104,18 @@ def expect(source, tolerance: float = DEFAULT_TOLERANCE, *, as_group: str | None
     """Return what infrared and Raman spectra of a structure can show.
 
     `source` is a `Structure`, a `Symmetry`, or any object that offers chemical symbols and positions; `tolerance` in Å.
-    With `as_group` the analysis is made in that group of the ladder, with `axes` in the other choice of axes.
+    With `as_group` the analysis is made in that group of the ladder, with `axes` in another choice
+    of axes (`swap`, or an order such as `yxz`).
     """
     if isinstance(source, Symmetry):
         return Expectation(source, displacements(source))
-    symmetry, found = symmetry_of(structure_of(source), tolerance, as_group, axes)
-    return Expectation(symmetry, displacements(symmetry), found)
-
-
-def symmetry_of(structure: Structure, tolerance: float, as_group: str | None = None,
-                axes: str | None = None) -> tuple[Symmetry, Symmetry | None]:
-    """Return the symmetry to work in, and the one within the tolerance if `as_group` asks for another.
-
-    The groups that can be asked for are those of the ladder.
-    """
     from vibsym.structures.finder import find_symmetry
 
+    structure = structure_of(source)
     found = find_symmetry(structure, tolerance, axes=None if as_group else axes)
     if as_group is None:
-        return found, None
-    from vibsym.groups.pointgroup import point_group
-    from vibsym.structures.ladder import ladder
+        return Expectation(found, displacements(found))
+    from vibsym.structures.ladder import as_group as in_group
 
-    chosen = rung_named(ladder(structure, tolerance), point_group(as_group).symbol, structure)
-    if axes:
-        chosen = find_symmetry(structure, chosen.tolerance, axes=axes)
-    return replace(chosen, structure=structure), found
-
-
-def rung_named(ladder, symbol: str, structure: Structure) -> Symmetry:
-    """Return the rung of a group (canonical symbol); an error names those that there are."""
-    for rung in ladder.rungs:
-        if rung.symmetry.group.symbol == symbol:
-            return rung.symmetry
-    reached = ", ".join(f"{rung.symmetry.group.symbol} ({rung.symmetry.deviation:.3f} Å)" for rung in ladder.rungs)
-    raise VibsymError(f"{structure.source or structure.formula}: {symbol} is not on the ladder of this structure, "
-                      f"which holds {reached}")
-
-
-def point_group_object(symmetry: Symmetry) -> dict:
-    """Return the `point_group` object of every JSON answer; the order of an infinite group is null."""
-    group = symmetry.group
-    return {"symbol": group.symbol, "order": group.order, "tolerance": symmetry.tolerance,
-            "deviation": round(float(symmetry.deviation), 6), "chiral": group.chiral,
-            "centrosymmetric": group.centrosymmetric}
+    symmetry = in_group(structure, as_group, tolerance, axes)
+    return Expectation(symmetry, displacements(symmetry), found)

@@ -66,7 +66,8 @@ class Working:
         columns = zip(self.image.classes, given.unmoved, given.contributions, given.chi_3n, strict=True)
         return {"group": self.image.symbol,
                 "classes": [{"symbol": each.symbol, "size": int(each.size), "unmoved": int(unmoved),
-                             "contribution": round(float(contribution), 6) + 0.0, "gamma_3n": round(float(chi), 6) + 0.0}
+                             "contribution": round(float(contribution), 6) + 0.0,
+                             "gamma_3n": round(float(chi), 6) + 0.0}
                             for each, unmoved, contribution, chi in columns],
                 "species": [line.to_dict() for line in self.lines]}
 

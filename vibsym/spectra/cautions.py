@@ -1,0 +1,85 @@
+"""What to beware of when a prediction is held against a spectrum: one sentence for each thing that applies here.
+
+Symmetry permits a band, it never promises one; labels depend on axes; real samples are mixtures of isotopes; and some
+molecules are not rigid.  What is said follows from the species and the structure, not from the name of the group.
+"""
+
+from vibsym.structures.elements import element
+from vibsym.structures.rotors import find_rotors
+from vibsym.structures.structure import Structure
+
+# Below this share of its most abundant isotope an element is called a mixture (Cl 0.76, Br 0.51, B 0.80, most metals).
+NEARLY_PURE = 0.9
+
+
+def cautions(result) -> tuple[str, ...]:
+    """Return the sentences for an `Expectation`, most important first."""
+    structure = result.structure
+    if len(structure) == 1:
+        return ("One atom has no vibrations.", *structure.notes)
+    return (*_bounds(), *_exclusion(result), *_chirality(result), *_pairs(result), *result.axes.notes,
+            *structure.notes, *_isotopes(structure), *_rotors(structure), *_dummies(structure))
+
+
+def _bounds() -> tuple[str, ...]:
+    return ("Counts are of fundamentals and upper bounds: fewer bands never exclude the structure; overtones, "
+            "combinations and isotopes may add lines.",)
+
+
+def _exclusion(result) -> tuple[str, ...]:
+    """Mutual exclusion, or the same without a centre; said from the species of the whole table."""
+    group = result.symmetry.group
+    if any(species.infrared and species.raman for species in group.species):
+        return ()
+    if group.centrosymmetric:
+        return ("Mutual exclusion (centre of inversion): no fundamental is active in both infrared and Raman; absence "
+                "of coincidences alone does not prove a centre.",)
+    return (f"No species of {group.symbol} is active in both infrared and Raman although it has no centre of "
+            "inversion: absence of coincidences does not prove a centre.",)
+
+
+def _chirality(result) -> tuple[str, ...]:
+    if not result.symmetry.group.chiral:
+        return ()
+    return ("The group is chiral: vibrational circular dichroism and Raman optical activity are allowed.",)
+
+
+def _pairs(result) -> tuple[str, ...]:
+    labels = [species.label for species, _ in result.species if species.pair]
+    if not labels:
+        return ()
+    return (f"{', '.join(labels)}: two complex-conjugate species taken as one, counted as one band.",)
+
+
+def _isotopes(structure: Structure) -> tuple[str, ...]:
+    """Name the elements without isotope label that nature supplies as mixtures, and what that does to the symmetry."""
+    unlabelled = [name for name, number, dummy in zip(structure.symbols, structure.mass_numbers, structure.is_dummy)
+                  if number is None and not dummy]
+    mixed = {name: unlabelled.count(name) for name in dict.fromkeys(unlabelled)
+             if 0 < element(name).abundance < NEARLY_PURE}
+    if not mixed:
+        return ()
+    shares = ", ".join(f"{element(name).abundance:.0%} of {name} is {element(name).isotope}{name}" for name in mixed)
+    text = f"The real sample is a mixture of isotopes ({shares})"
+    if max(mixed.values()) > 1:
+        return (text + ", mostly of lower symmetry: bands may be split or weak extra lines appear.",)
+    return (text + ": bands may be split; the symmetry stays.",)
+
+
+def _rotors(structure: Structure) -> tuple[str, ...]:
+    """Name the parts that turn easily."""
+    counts: dict[str, list[str]] = {}
+    for rotor in find_rotors(structure):
+        counts.setdefault(rotor.name, []).append(f"{structure.symbols[rotor.atom]}{rotor.atom + 1}")
+    if not counts:
+        return ()
+    parts = ", ".join(f"{name} ({', '.join(atoms[:6])}{', ...' if len(atoms) > 6 else ''})"
+                      for name, atoms in counts.items())
+    return (f"Turns easily: {parts}. If it turns freely, the group of the rigid shape may mislead.",)
+
+
+def _dummies(structure: Structure) -> tuple[str, ...]:
+    names = list(dict.fromkeys(name for name, dummy in zip(structure.symbols, structure.is_dummy) if dummy))
+    if not names:
+        return ()
+    return (f"Dummy atoms {', '.join(names)} are counted as atoms that move.",)
