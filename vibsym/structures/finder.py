@@ -15,7 +15,7 @@ from vibsym.groups.pointgroup import point_group
 from vibsym.structures.candidates import Operations, find_operations
 from vibsym.structures.distances import closest_pair
 from vibsym.structures.identify import identified
-from vibsym.structures.linear import image_permutations, line_frame, linear_placements
+from vibsym.structures.linear import LinearPlacement, image_permutations, line_frame, linear_placements
 from vibsym.structures.placement import Placement, place
 from vibsym.structures.settings import chosen_setting, free_frame
 from vibsym.structures.structure import structure_of
@@ -73,18 +73,12 @@ def legal_tolerance(tolerance, shortest: float) -> float:
     return value
 
 
-def line_within(centred: Centred, tolerance: float):
-    """Return the linear placement or the single atom within the tolerance, else None."""
-    points = centred.points
-    if len(points) == 1:
-        return "Kh", np.zeros((1, 3)), np.array([0.0, 0.0, 1.0]), None
-    placements = linear_placements(points, centred.kinds)
-    if np.sqrt(((points - placements[-1][1]) ** 2).sum(axis=1)).max() > tolerance:
-        return None
-    for placement in placements:
-        if np.sqrt(((points - placement[1]) ** 2).sum(axis=1)).max() <= tolerance:
+def line_within(centred: Centred, tolerance: float) -> LinearPlacement | None:
+    """Return the linear placement (or the single atom) within the tolerance, the highest first, else None."""
+    for placement in linear_placements(centred.points, centred.kinds):
+        if placement.deviation <= tolerance:
             return placement
-    return placements[-1]
+    return None
 
 
 def largest_group(centred: Centred, tolerance: float) -> Placement:
@@ -137,15 +131,13 @@ def _largest_subset(centred, operations, table, tolerance):
 def symmetry_of(centred: Centred, found, tolerance: float, axes: str | None = None, bonds=None) -> Symmetry:
     """Return the Symmetry of a placement: symbol, standard frame with the chosen axes, origin at the centre of mass."""
     structure = centred.structure
-    if isinstance(found, Placement):
-        group, frame, order = identified(found.matrices, found.signs)
-        permutations, averaged, shifts = found.permutations[order], found.averaged, found.shifts
+    averaged, shifts = found.averaged, found.shifts
+    if isinstance(found, LinearPlacement):
+        group, frame = point_group(found.symbol), line_frame(found.axis)
+        permutations = image_permutations(found.symbol, found.turn, len(structure))
     else:
-        symbol, averaged, axis, turn = found
-        group, frame = point_group(symbol), line_frame(axis)
-        permutations = image_permutations(symbol, turn, len(structure))
-        difference = centred.points - averaged
-        shifts = np.sqrt((difference * difference).sum(axis=1))
+        group, frame, order = identified(found.matrices, found.signs)
+        permutations = found.permutations[order]
     frame = free_frame(group.symbol, frame, averaged, structure)
     frame, order, decided = chosen_setting(group, frame, averaged, structure, axes, bonds)
     if order is not None:

@@ -4,10 +4,34 @@ A structure is linear when every atom lies within the tolerance of the least-squ
 themselves end for end; the deviation is the largest distance of an atom from its place on the averaged line.
 """
 
+from dataclasses import dataclass
+from functools import cached_property
+
 import numpy as np
 
 from vibsym.groups.pointgroup import point_group
 from vibsym.structures.identify import completed
+
+
+@dataclass(frozen=True)
+class LinearPlacement:
+    """C∞v, D∞h or Kh placed in a structure: averaged positions (N, 3), axis, permutation that turns the line around or None."""
+
+    symbol: str
+    points: np.ndarray
+    averaged: np.ndarray
+    axis: np.ndarray
+    turn: np.ndarray | None
+    order = np.inf
+
+    @cached_property
+    def shifts(self) -> np.ndarray:
+        difference = self.points - self.averaged
+        return np.sqrt((difference * difference).sum(axis=1))
+
+    @property
+    def deviation(self) -> float:
+        return float(self.shifts.max())
 
 
 def principal_line(points):
@@ -30,16 +54,17 @@ def end_for_end(points, kinds, axis):
     return permutation
 
 
-def linear_placements(points, kinds):
-    """Return [(symbol, averaged positions, axis, permutation of the turn or None)], D∞h first where the kinds allow it."""
+def linear_placements(points, kinds) -> list[LinearPlacement]:
+    """Return the placements of D∞h, where the kinds allow it, and of C∞v; of Kh for a single atom."""
+    if len(points) == 1:
+        return [LinearPlacement("Kh", points, np.zeros((1, 3)), np.array([0.0, 0.0, 1.0]), None)]
     axis = principal_line(points)
-    found = []
+    found = [LinearPlacement("C∞v", points, on_a_line(points, axis), axis, None)]
     turn = end_for_end(points, kinds, axis)
     if turn is not None:
         halves = 0.5 * (points - points[turn])
         axis_h = principal_line(halves)
-        found.append(("D∞h", on_a_line(halves, axis_h), axis_h, turn))
-    found.append(("C∞v", on_a_line(points, axis), axis, None))
+        found.insert(0, LinearPlacement("D∞h", points, on_a_line(halves, axis_h), axis_h, turn))
     return found
 
 

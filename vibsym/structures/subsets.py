@@ -28,20 +28,24 @@ def product_table(operations: Operations) -> np.ndarray:
 
 def consistent(operations: Operations, table) -> bool:
     """Tell whether the permutations of all atoms multiply as the table says (the pair alone was looked up)."""
-    permutations = operations.permutations
-    for generator in generators(table):
+    permutations, chosen = operations.permutations, generators(table)
+    if chosen is None:
+        return False
+    for generator in chosen:
         if not np.array_equal(permutations[generator][permutations], permutations[table[generator]]):
             return False
     return True
 
 
-def generators(table) -> list[int]:
-    """Return operations that generate a closed table, few of them."""
+def generators(table) -> list[int] | None:
+    """Return operations that generate a closed table, few of them; None when the table is not that of a group."""
     rows = table.tolist()
     chosen, members = [], [identity_of(table)]
     for operation in range(len(rows)):
         if operation not in members:
             members = extended(rows, members, chosen, operation)
+            if members is None or len(members) > len(rows):
+                return None
             chosen.append(operation)
         if len(members) == len(rows):
             break
