@@ -1,0 +1,195 @@
+"""The integer program behind an explanation, solved exactly.
+
+Unknowns are whole numbers: w[k, a] items of kind k taken as a whole by fundamentals of activity a; l[k, a] and r[k, a]
+infrared and Raman halves of broken pairs; u[k] unexplained; b[k] broken; z = 1 if the allowance for chance is used; v
+pairs broken beyond it.
+
+    sum_a w[k, a] + b[k] + u[k] = n[k]        sum_a l[k, a] = b[k] = sum_a r[k, a]
+    sum_k (w + l + r)[k, a] <= capacity[a]    sum_k b[k] <= chance * z + v
+
+Scores that come one after another (total, unexplained, ...) are minimised one after another.  All coefficients of a
+score are whole numbers, so a lower bound above value - 1 proves the value to be the least; it is checked each time.
+"""
+
+from functools import lru_cache
+from math import ceil
+from typing import NamedTuple
+
+import numpy as np
+
+from vibsym.evidence.weights import Kind, cost_of, unexplained_cost
+
+
+class Solution(NamedTuple):
+    """How many items of each kind take which activity: whole, or as the halves of broken pairs; twice the total."""
+
+    whole: dict
+    broken: dict
+    halves: int
+
+
+class _Unknown(NamedTuple):
+    """One unknown: its role, its kind and activity, its largest value, and what it adds to the four scores."""
+
+    role: str           # whole, infrared half, raman half, unexplained, broken, chance, beyond
+    kind: int
+    activity: int
+    upper: int
+    halves: int = 0
+    polarised: int = 0  # polarised lines on totally symmetric fundamentals
+    covered: int = 0    # predicted fundamentals seen wherever they should be
+    odd: int = 0        # lines found depolarised on totally symmetric fundamentals: allowed, but taken last
+
+
+@lru_cache(maxsize=512)
+def least(kinds: tuple, capacities: tuple, by_chance: int, spectra: tuple, order: tuple) -> Solution:
+    """Return the least explanation as numbers.
+
+    `kinds` and `capacities` are sorted (kind, number) and (activity, number); `order` lists the items as positions in
+    `kinds`, in input order.  Equal questions (isomers of equal prediction) are answered once.
+    """
+    unknowns = _unknowns(kinds, capacities, by_chance, spectra)
+    if not unknowns:
+        return Solution({}, {}, 0)
+    programme = _Programme(unknowns, kinds, capacities, by_chance)
+    size = sum(number for _, number in kinds) + sum(number for _, number in capacities) + 1
+    column = {name: np.array([getattr(each, name) for each in unknowns], float)
+              for name in ("halves", "polarised", "covered", "odd")}
+    unexplained = np.array([each.role == "unexplained" for each in unknowns], float)
+    answer = programme.minimise((column["halves"] * size + unexplained) * size - column["polarised"])
+    answer = programme.minimise(unexplained * 0 - column["covered"] * size + column["odd"], answer)
+    answer = _earliest(programme, unknowns, answer, kinds, order)
+    return _solution(unknowns, answer, kinds, capacities, round(float(column["halves"] @ answer)))
+
+
+def _unknowns(kinds, capacities, by_chance: int, spectra) -> list[_Unknown]:
+    unknowns, pairs = [], 0
+    for k, (kind, number) in enumerate(kinds):
+        unknowns.append(_Unknown("unexplained", k, -1, number, unexplained_cost(kind)))
+        sides = [("whole", kind)]
+        if kind.infrared and kind.raman:
+            pairs += number
+            unknowns.append(_Unknown("broken", k, -1, number))
+            sides += [("infrared half", Kind(True, False, kind.weak_infrared, False, False, False)),
+                      ("raman half", kind._replace(infrared=False, weak_infrared=False))]
+        for role, side in sides:
+            for a, (activity, capacity) in enumerate(capacities):
+                halves = cost_of(side, activity)
+                if halves is not None:
+                    unknowns.append(_Unknown(
+                        role, k, a, min(number, capacity), halves,
+                        int(side.polarised and activity.totally_symmetric and activity.raman),
+                        _covered(side, activity, spectra), int(side.depolarised and activity.totally_symmetric)))
+    if pairs:
+        unknowns += [_Unknown("chance", -1, -1, int(by_chance > 0), 1), _Unknown("beyond", -1, -1, pairs, 2)]
+    return unknowns
+
+
+def _covered(side, activity, spectra) -> int:
+    """Whether an item shows all that its fundamental should show in the spectra that were measured."""
+    infrared, raman = activity.infrared and "IR" in spectra, activity.raman and "Raman" in spectra
+    return int((infrared or raman) and side.infrared >= infrared and side.raman >= raman)
+
+
+class _Programme:
+    """The constraints, and the scores fixed so far."""
+
+    def __init__(self, unknowns, kinds, capacities, by_chance: int):
+        size = len(unknowns)
+        rows = [np.zeros(size) for _ in range(3 * len(kinds) + len(capacities) + 1)]
+        lower, upper = np.zeros(len(rows)), np.zeros(len(rows))
+        for k, (_, number) in enumerate(kinds):
+            lower[3 * k] = upper[3 * k] = number
+        first = 3 * len(kinds)
+        for a, (_, capacity) in enumerate(capacities):
+            upper[first + a] = capacity
+        lower[-1] = -np.inf
+        for j, each in enumerate(unknowns):
+            if each.role in ("whole", "unexplained", "broken"):
+                rows[3 * each.kind][j] = 1
+            if each.role == "broken":
+                rows[3 * each.kind + 1][j] = rows[3 * each.kind + 2][j] = -1
+                rows[-1][j] = 1
+            if each.role.endswith("half"):
+                rows[3 * each.kind + (1 if each.role == "infrared half" else 2)][j] = 1
+            if each.activity >= 0:
+                rows[first + each.activity][j] = 1
+            if each.role == "chance":
+                rows[-1][j] = -by_chance
+            if each.role == "beyond":
+                rows[-1][j] = -1
+        self.rows, self.lower, self.upper = rows, list(lower), list(upper)
+        self.most = np.array([each.upper for each in unknowns], float)
+        self.least = np.zeros(size)
+
+    def minimise(self, score: np.ndarray, known: np.ndarray | None = None) -> np.ndarray:
+        """Return whole numbers with the least score, and keep the score at that value from now on."""
+        answer = self._solve(score) if np.any(score) or known is None else known
+        self.rows.append(score)
+        self.lower.append(-np.inf)
+        self.upper.append(float(score @ answer) + 0.5)
+        return answer
+
+    def feasible(self, position: int, most: float) -> np.ndarray | None:
+        """Return a solution with unknown `position` at most `most`, or None; keep the bound if there is one."""
+        before = self.most[position]
+        self.most[position] = most
+        answer = self._solve(np.zeros(len(self.most)))
+        if answer is None:
+            self.most[position] = before
+        return answer
+
+    def _solve(self, score: np.ndarray) -> np.ndarray | None:
+        from scipy.optimize import Bounds, LinearConstraint, milp
+
+        found = milp(score, integrality=np.ones(len(score)), bounds=Bounds(self.least, self.most),
+                     constraints=LinearConstraint(np.array(self.rows), self.lower, self.upper),
+                     options={"mip_rel_gap": 0.0})
+        if found.status == 2:
+            return None
+        if found.x is None:
+            raise ArithmeticError(f"the integer program was not solved: {found.message}")
+        answer = np.round(found.x)
+        totals = np.array(self.rows) @ answer
+        if np.any(totals < np.array(self.lower) - 1e-6) or np.any(totals > np.array(self.upper) + 1e-6):
+            raise ArithmeticError("the integer program returned numbers that break its own rules")
+        if found.mip_dual_bound is not None and ceil(found.mip_dual_bound - 1e-3) < round(float(score @ answer)):
+            raise ArithmeticError(f"bound {found.mip_dual_bound} does not prove {score @ answer}")
+        return answer
+
+
+def _earliest(programme: _Programme, unknowns, answer: np.ndarray, kinds, order) -> np.ndarray:
+    """Among equal explanations take the one that explains the earliest items (input order)."""
+    position = {each.kind: j for j, each in enumerate(unknowns) if each.role == "unexplained"}
+    if sum(answer[j] > 0 for j in position.values()) == 0 or len(kinds) == 1:
+        return answer
+    explained, closed = [0] * len(kinds), set()
+    for k in order:
+        if k in closed:
+            continue
+        wanted = kinds[k][1] - explained[k] - 1          # unexplained ones that this allows
+        if answer[position[k]] > wanted:
+            better = programme.feasible(position[k], wanted)
+            if better is None:
+                closed.add(k)
+                continue
+            answer = better
+        else:
+            programme.most[position[k]] = wanted
+        explained[k] += 1
+    return answer
+
+
+def _solution(unknowns, answer, kinds, capacities, halves: int) -> Solution:
+    whole: dict = {}
+    broken: dict = {}
+    for each, number in zip(unknowns, answer):
+        if not number or each.activity < 0:
+            continue
+        kind, activity = kinds[each.kind][0], capacities[each.activity][0]
+        if each.role == "whole":
+            whole.setdefault(kind, {})[activity] = int(number)
+        else:
+            sides = broken.setdefault(kind, ({}, {}))
+            sides[each.role == "raman half"][activity] = int(number)
+    return Solution(whole, broken, halves)
