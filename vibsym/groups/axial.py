@@ -64,17 +64,15 @@ def axial_group(letter: str, n: int, suffix: str) -> GroupPlan:
     half = n // 2 if letter == "S" else n
     if improper and half % 2 == 0:                        # S4, S8, D2d, D4d, ...: the improper axis is the backbone
         elements = _improper_backbone(half, dihedral=letter == "D")
-        species = _species_of_rotations(elements, dihedral=letter == "D", names=_names(elements.turn))
+        species = _species_of_rotations(elements, dihedral=letter == "D", names={})
         return _plan(elements, species)
     base_n = half if improper else n
     dihedral = letter == "D" or suffix == "v"
     base = _rotations(base_n, dihedral, axes_horizontal=letter == "D")
-    if letter == "D" and base_n == 2:
+    orthorhombic = letter == "D" and base_n == 2
+    if orthorhombic:
         base = _reorder(base, ((0,), (1,), (3,), (2,)))   # handbooks list C2(z), C2(y), C2(x)
-    names = _names(base_n)
-    if letter == "D" and base_n == 2:
-        names = {"A1": "A", "A2": "B1", "B2": "B2", "B1": "B3"}
-    species = _species_of_rotations(base, dihedral, names)
+    species = _species_of_rotations(base, dihedral, _D2_NAMES if orthorhombic else {})
     if suffix == "h" or improper:
         centre = improper or base_n % 2 == 0              # × Ci, else × Cs
         return _plan(*_double(base, species, centre))
@@ -82,7 +80,7 @@ def axial_group(letter: str, n: int, suffix: str) -> GroupPlan:
 
 
 def _rotations(n: int, dihedral: bool, axes_horizontal: bool) -> _Elements:
-    m, p, s, blocks = list(range(n)), [0] * n, [1] * n, []
+    m, p, s = list(range(n)), [0] * n, [1] * n
     if dihedral:
         blocks = [(k, n - k) if k and k != n - k else (k,) for k in range(n // 2 + 1)]
         m += list(range(n))
@@ -115,13 +113,15 @@ def _reorder(elements: _Elements, blocks: tuple[tuple[int, ...], ...]) -> _Eleme
     return _Elements(elements.m[order], elements.p[order], elements.s[order], elements.turn, renumbered)
 
 
-def _names(turn: int) -> dict[str, str]:
-    """Labels of the one-dimensional species: A and B with numbers."""
-    return {"A1": "A1", "A2": "A2", "B1": "B1", "B2": "B2", "A": "A", "B": "B"}
+# D2 has no principal axis: its species are numbered by the axis they keep, z, y, x (Mulliken 1955).
+_D2_NAMES = {"A1": "A", "A2": "B1", "B2": "B2", "B1": "B3"}
 
 
 def _species_of_rotations(elements: _Elements, dihedral: bool, names: dict[str, str]) -> list[SpeciesPlan]:
-    """Species of a cyclic or dihedral set: A, B by signs and E_k, k = 1 ... (N-1)/2, as rotations by k times the angle."""
+    """Species of a cyclic or dihedral set: A, B by signs and E_k, k = 1 ... (N-1)/2, as rotations by k times the angle.
+
+    `names` replaces the labels of one-dimensional species.
+    """
     m, p, turn = elements.m, elements.p, elements.turn
     even = turn % 2 == 0
     one = np.ones(len(m), dtype=int)
@@ -131,7 +131,7 @@ def _species_of_rotations(elements: _Elements, dihedral: bool, names: dict[str, 
             signs |= {"B1": (-1) ** m, "B2": (-1) ** (m + p)}
     else:
         signs = {"A": one} | ({"B": (-1) ** m} if even else {})
-    ordered = sorted(((names[key], sign) for key, sign in signs.items()), key=lambda pair: pair[0])
+    ordered = sorted(((names.get(key, key), sign) for key, sign in signs.items()), key=lambda pair: pair[0])
     species = [SpeciesPlan(label, sign.reshape(-1, 1, 1).astype(float), False, sign) for label, sign in ordered]
     highest = (turn - 1) // 2
     for k in range(1, highest + 1):
@@ -163,8 +163,6 @@ def _double(base: _Elements, species: list[SpeciesPlan], centre: bool) -> tuple[
             angles = None if plan.angles is None else np.tile(plan.angles, 2)
             flips = None if plan.flips is None else np.tile(plan.flips, 2)
             doubled.append(SpeciesPlan(plan.label + suffix, matrices, plan.pair, signs, angles, flips, plan.turn))
-    if len(base.m) == 1:                                  # Ci: Ag, Au; Cs: A', A''
-        return elements, doubled
     return elements, doubled
 
 

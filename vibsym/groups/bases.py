@@ -1,7 +1,7 @@
 """A basis: objects that every operation of a group moves onto each other, carrying one or a few components each.
 
-Displacements of atoms carry three components, stretches one with a sign, linear bends two.  Operation r takes the object j
-to `targets[r, j]` and its components by the matrix `blocks[r, j]`.  Reduction and projection (vibsym/groups/reduction.py,
+Displacements of atoms carry three components, stretches one with a sign, linear bends two.  Operation r takes the
+object j to `targets[r, j]` and its components by the matrix `blocks[r, j]`.  Reduction and projection (reduction.py,
 projection.py) are written once, for any basis.
 """
 

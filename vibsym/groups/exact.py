@@ -1,7 +1,7 @@
 """Exact numbers: matrices and characters of species with sympy entries.
 
-Axial groups are exact by construction: sign × R(2πa/N) diag(1, -1)^flip with whole a and N.  In the polyhedral groups every
-entry is (p + q√5)/16 or √3 (p + q√5)/16 with small whole p, q; it is recognised among these, which lie far apart
+Axial groups are exact by construction: sign × R(2πa/N) diag(1, -1)^flip with whole a and N.  In the polyhedral groups
+every entry is (p + q√5)/16 or √3 (p + q√5)/16 with small whole p, q; it is recognised among these, which lie far apart
 compared with the rounding of a double, and the tests prove the matrices to be a representation in exact arithmetic.
 sympy is imported only here.
 """
@@ -33,7 +33,7 @@ def exact_matrix(plan: SpeciesPlan, operation: int) -> list:
 
 
 def exact_trace(plan: SpeciesPlan, operation: int):
-    """Return the character of one operation: 2cos(2πa/N) for a rotation of a degenerate species, a radical if simple."""
+    """Return the character of one operation: 2cos(2πa/N) in a degenerate species, a radical if simple."""
     matrix = exact_matrix(plan, operation)
     return sum((matrix[k][k] for k in range(1, len(matrix))), matrix[0][0])
 

@@ -27,7 +27,7 @@ def exact_symmetry_vectors(basis: Basis) -> dict[str, list[list[Terms]]]:
     group = basis.group
     result = {}
     for label, vectors in symmetry_vectors(basis).items():
-        plan = group._plans[label]
+        plan = group.plan(label)
         if plan.signs is not None and vectors.shape[1] == 2:
             exact = _polar(vectors, plan.turn)
         else:
@@ -46,7 +46,8 @@ def _radicals(vectors: np.ndarray, golden: bool) -> np.ndarray:
     typical = [float(np.abs(vectors[used])[places == k][0]) for k in range(len(rounded))]
     exact = [_root(value * value, golden) for value in typical]
     signs = np.sign(vectors[used])
-    result[used] = [exact[k] if sign > 0 else -exact[k] for k, sign in zip(places.tolist(), signs.tolist(), strict=True)]
+    result[used] = [exact[k] if sign > 0 else -exact[k]
+                    for k, sign in zip(places.tolist(), signs.tolist(), strict=True)]
     _confirm(result[used], vectors[used])
     return result
 
@@ -57,7 +58,8 @@ def _polar(vectors: np.ndarray, turn: int) -> np.ndarray:
     length = np.hypot(vectors[:, 0], vectors[:, 1])
     used = length > SMALL
     angle = np.arctan2(vectors[:, 1][used], vectors[:, 0][used]) / (2 * np.pi)
-    pairs = [_pair(round(a, 13), round(r, 13), turn) for a, r in zip(angle.tolist(), length[used].tolist(), strict=True)]
+    pairs = [_pair(round(a, 13), round(r, 13), turn)
+             for a, r in zip(angle.tolist(), length[used].tolist(), strict=True)]
     for component in (0, 1):
         result[:, component][used] = [pair[component] for pair in pairs]
         _confirm(result[:, component][used], vectors[:, component][used])

@@ -1,8 +1,8 @@
 """The infinite groups: C∞v and D∞h of linear molecules, Kh of a single atom.
 
-Their species are numbered by the quantum number of the rotation (Σ Π Δ Φ about the axis, S P D F of the sphere).  Whatever
-the displacements of atoms can carry has at most one quantum, |k| ≤ 1 (l ≤ 1), so C4v, D4h and Oh tell all of it apart:
-they are the `image` in which representations are reduced and projected, exactly and without any rounding.
+Their species are numbered by the quantum number of the rotation (Σ Π Δ Φ about the axis, S P D F of the sphere).
+Whatever the displacements of atoms can carry has at most one quantum, |k| ≤ 1 (l ≤ 1), so C4v, D4h and Oh tell all of
+it apart: they are the `image` in which representations are reduced and projected, exactly and without any rounding.
 Source: G. Herzberg, Infrared and Raman Spectra (1945), tables 20 and 21; IUPAC, Pure Appl. Chem. 69, 1641 (1997).
 """
 
@@ -105,7 +105,8 @@ class InfiniteGroup:
                 rotations, quadratic = (), ()
         degeneracy = 2 * quantum + 1 if spherical else 1 if quantum == 0 else 2
         symmetric = quantum == 0 and parity in ("", "g") and sign in ("", "+")
-        return Species(self.label(quantum, parity, sign), degeneracy, (), False, linear, rotations, quadratic, cubic, symmetric)
+        return Species(self.label(quantum, parity, sign), degeneracy, (), False, linear, rotations, quadratic, cubic,
+                       symmetric)
 
     def exact_characters(self, label: str) -> list[str]:
         """Return the characters as they are printed, one for each class; φ is the angle of the rotation."""

@@ -13,7 +13,7 @@ from functools import cache, cached_property
 import numpy as np
 
 from vibsym.errors import VibsymError
-from vibsym.groups.axial import GroupPlan, axial_group
+from vibsym.groups.axial import GroupPlan, SpeciesPlan, axial_group
 from vibsym.groups.functions import functions_of_species
 from vibsym.groups.symbols import POLYHEDRAL, group_symbol, plain_label
 
@@ -115,10 +115,12 @@ class PointGroup:
     def species(self) -> tuple[Species, ...]:
         rows = self.character_rows
         plans = list(self._plans.values())
+        scales = [plan.matrices.shape[1] / (2 if plan.pair else 1) for plan in plans]
         found = functions_of_species(self.symbol, self.matrices, [
-            (row[self.class_of], plan.matrices.shape[1] / (2 if plan.pair else 1)) for row, plan in zip(rows, plans, strict=True)])
-        return tuple(Species(plan.label, plan.matrices.shape[1], tuple(row.tolist()), plan.pair, totally_symmetric=k == 0,
-                             **functions) for k, (plan, row, functions) in enumerate(zip(plans, rows, found, strict=True)))
+            (row[self.class_of], scale) for row, scale in zip(rows, scales, strict=True)])
+        return tuple(Species(plan.label, plan.matrices.shape[1], tuple(row.tolist()), plan.pair,
+                             totally_symmetric=k == 0, **functions)
+                     for k, (plan, row, functions) in enumerate(zip(plans, rows, found, strict=True)))
 
     @cached_property
     def norms(self) -> np.ndarray:
@@ -144,21 +146,24 @@ class PointGroup:
     @cached_property
     def product(self) -> np.ndarray:
         """Multiplication table (h, h): matrices[product[a, b]] = matrices[a] @ matrices[b]."""
-        weights = np.array([1.0, 0.7320508, 0.4472136, 0.3027756, 0.2360680, 0.1622777, 0.1458980, 0.1231056, 0.0901699])
-        keys = self.matrices.reshape(-1, 9) @ weights
-        order = np.argsort(keys)
-        products = np.einsum("aij,bjk,ik->ab", self.matrices, self.matrices, weights.reshape(3, 3), optimize=True)
-        after = np.searchsorted(keys[order], products).clip(1, self.order - 1) if self.order > 1 else np.zeros((1, 1), int)
         if self.order == 1:
-            return after
-        sorted_keys = keys[order]
-        nearer = np.where(np.abs(sorted_keys[after - 1] - products) < np.abs(sorted_keys[after] - products), after - 1, after)
-        return order[nearer]
+            return np.zeros((1, 1), dtype=int)
+        weights = np.random.default_rng(1997).normal(size=(3, 3))    # a generic number for each matrix
+        keys = np.einsum("aij,ij->a", self.matrices, weights)
+        order = np.argsort(keys)
+        keys = keys[order]
+        products = np.einsum("aij,bjk,ik->ab", self.matrices, self.matrices, weights, optimize=True)
+        after = np.searchsorted(keys, products).clip(1, self.order - 1)
+        return order[after - (products - keys[after - 1] < keys[after] - products)]
 
     @cached_property
     def inverse(self) -> np.ndarray:
         """Place of the inverse of every operation, (h,)."""
         return np.argmax(self.product == 0, axis=1)
+
+    def plan(self, label: str) -> SpeciesPlan:
+        """Return how the matrices of a species are built, from which they are written exactly."""
+        return self._plans[label]
 
     def exact_irrep(self, label: str) -> list:
         """Return the matrices of a species with exact sympy entries (nested lists, one for each operation)."""

@@ -1,4 +1,5 @@
-"""The polyhedral point groups T, Td, Th, O, Oh, I, Ih: closed from the representatives in `tables/polyhedral_groups.csv`.
+"""The polyhedral point groups T, Td, Th, O, Oh, I, Ih: closed from the representatives in
+`tables/polyhedral_groups.csv`.
 
 Species are built from the 3×3 matrices themselves: T1 is the matrix of a rotation (of -R for the improper half of Td
 counted as in O), E the permutation of x², y², z²; in I, T2 is the conjugate of T1 under √5 → -√5, H the five traceless
@@ -48,7 +49,8 @@ def _closure(generators: np.ndarray) -> np.ndarray:
     """Multiply until nothing new appears; entries are snapped so that no rounding piles up."""
     elements = frontier = _distinct(generators)
     while len(frontier):
-        products = _distinct(np.concatenate([elements, np.einsum("aij,bjk->abik", generators, frontier).reshape(-1, 3, 3)]))
+        grown = np.einsum("aij,bjk->abik", generators, frontier).reshape(-1, 3, 3)
+        products = _distinct(np.concatenate([elements, grown]))
         known = np.isin(_keys(products), _keys(elements))
         elements, frontier = products, products[~known]
     return elements
@@ -88,7 +90,8 @@ def _species(symbol: str, matrices: np.ndarray) -> list[SpeciesPlan]:
     if symbol in ("I", "Ih"):
         plain = _icosahedral(rotations)
     elif symbol in ("T", "Th"):
-        plain = [("A", np.ones((len(matrices), 1, 1)), False), ("E", _squares(rotations), True), ("T", rotations, False)]
+        plain = [("A", np.ones((len(matrices), 1, 1)), False), ("E", _squares(rotations), True),
+                 ("T", rotations, False)]
     else:
         plain = _octahedral(rotations)
     if symbol not in ("Th", "Oh", "Ih"):
@@ -139,7 +142,7 @@ def _triads(rotations: np.ndarray) -> np.ndarray:
     frames = np.array(frames)                             # each of the five triads as the columns of a matrix
 
     def place(images: np.ndarray) -> np.ndarray:
-        """Which triad a triad becomes: all its axes are parallel to those of the other (overlap a signed permutation)."""
+        """Which triad a triad becomes: its axes are parallel to those of the other."""
         overlap = np.abs(np.einsum("gai,kaj->gkij", images, frames)).max(axis=(2, 3))
         return overlap.argmax(axis=1)
 

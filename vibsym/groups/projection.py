@@ -5,10 +5,10 @@ invariant under the site group of s, D(h) U B(h)^T = U, the coefficient of objec
 
     v_i(c) = (d / |orbit|)^(1/2)  [D(g_c) U B(g_c)^T]_i ,        R v_i = Σ_j D_ji(R) v_j .
 
-By Schur's lemma different U of an orthonormal set give orthonormal combinations, so every copy of a species in an orbit is
-found without orthogonalising long vectors (projection operators: E. P. Wigner, Group Theory, 1959, ch. 12; E. B. Wilson,
-J. C. Decius, P. C. Cross, Molecular Vibrations, 1955, ch. 6).  A seed whose projection vanishes gives no U.
-For a conjugate pair U and J U (J the rotation by 90° between the partners) are one copy.
+By Schur's lemma different U of an orthonormal set give orthonormal combinations, so every copy of a species in an
+orbit is found without orthogonalising long vectors (projection operators: E. P. Wigner, Group Theory, 1959, ch. 12;
+E. B. Wilson, J. C. Decius, P. C. Cross, Molecular Vibrations, 1955, ch. 6).  A seed whose projection vanishes gives
+no U. For a conjugate pair U and J U (J the rotation by 90° between the partners) are one copy.
 """
 
 import numpy as np
@@ -50,7 +50,8 @@ def site_group(basis: Basis, orbit: np.ndarray) -> tuple[int, np.ndarray, np.nda
     The seed is the member whose site group lies most along x, y and z (its matrices most nearly diagonal), so that the
     combinations come out with the simplest coefficients.
     """
-    slant = np.abs(basis.group.matrices).sum(axis=(1, 2)) - np.abs(np.einsum("gii->gi", basis.group.matrices)).sum(axis=1)
+    sizes = np.abs(basis.group.matrices)
+    slant = sizes.sum(axis=(1, 2)) - np.einsum("gii->g", sizes)
     unmoved = basis.targets[:, orbit] == orbit
     lean = slant @ unmoved
     seed = int(orbit[np.argmax(lean < lean.min() + 1e-6)])
@@ -62,8 +63,8 @@ def site_group(basis: Basis, orbit: np.ndarray) -> tuple[int, np.ndarray, np.nda
 def invariant_seeds(irrep: np.ndarray, blocks: np.ndarray, pair: bool) -> np.ndarray:
     """Return orthonormal U (copies, i, b) with D(h) U B(h)^T = U for all h of a site group.
 
-    `irrep` (|H|, d, d), `blocks` (|H|, b, b).  The columns of the projector are orthogonalised (Gram-Schmidt), the longest
-    first; in a conjugate pair against J U of the earlier ones too.
+    `irrep` (|H|, d, d), `blocks` (|H|, b, b).  The columns of the projector are orthogonalised (Gram-Schmidt), the
+    longest first; in a conjugate pair against J U of the earlier ones too.
     """
     size, width = irrep.shape[1], blocks.shape[1]
     projector = np.einsum("hij,hab->iajb", irrep, blocks).reshape(size * width, size * width) / len(irrep)

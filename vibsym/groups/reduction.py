@@ -1,7 +1,8 @@
 """The reduction formula: how often each species occurs in a representation.
 
 n_i = (1/h) Σ_c g_c χ_i(c) χ(c), divided by the norm ⟨χ_i, χ_i⟩/h, which is 2 for a real pair of conjugate species
-(E. B. Wilson, J. C. Decius, P. C. Cross, Molecular Vibrations, 1955, ch. 5).  What must be whole is checked to be whole.
+(E. B. Wilson, J. C. Decius, P. C. Cross, Molecular Vibrations, 1955, ch. 5).  What must be whole is checked to be
+whole.
 """
 
 from collections.abc import Mapping, Sequence
@@ -29,7 +30,8 @@ def reduce(characters: Sequence[float], group) -> dict[str, int]:
     whole = np.rint(counts)
     if np.abs(counts - whole).max() > 1e-6 * max(1.0, float(np.abs(chi).max())):
         worst = int(np.abs(counts - whole).argmax())
-        raise VibsymError(f"not a representation of {group.symbol}: {image.labels[worst]} would occur {counts[worst]:.4f} times")
+        raise VibsymError(f"not a representation of {group.symbol}: {image.labels[worst]} would occur "
+                          f"{counts[worst]:.4f} times")
     if whole.min() < 0:
         raise VibsymError(f"not a representation of {group.symbol}: {image.labels[int(whole.argmin())]} would occur "
                           f"{int(whole.min())} times")

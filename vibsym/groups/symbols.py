@@ -14,7 +14,8 @@ INFINITE = {"Cinfv": "C∞v", "C∞v": "C∞v", "Dinfh": "D∞h", "D∞h": "D∞
 # One group, two names: the left one is read, the right one is printed.
 SAME_GROUP = {"C1h": "Cs", "C1v": "Cs", "S1": "Cs", "S2": "Ci", "C1i": "Ci", "D1": "C2", "D1h": "C2v", "D1d": "C2h",
               "V": "D2", "Vh": "D2h", "Vd": "D2d"}
-# International symbols of the 32 crystallographic groups (International Tables for Crystallography, vol. A, table 3.2.1.2).
+# International symbols of the 32 crystallographic groups (International Tables for Crystallography, vol. A, table
+# 3.2.1.2).
 HERMANN_MAUGUIN = {
     "C1": "1", "Ci": "-1", "C2": "2", "Cs": "m", "C2h": "2/m", "D2": "222", "C2v": "mm2", "D2h": "mmm", "C4": "4",
     "S4": "-4", "C4h": "4/m", "D4": "422", "C4v": "4mm", "D2d": "-42m", "D4h": "4/mmm", "C3": "3", "S6": "-3",
@@ -42,8 +43,8 @@ def group_symbol(text: str) -> str:
         return word
     match = _AXIAL.fullmatch(word)
     if not match or not word.isascii():
-        raise VibsymError(f"unknown point group '{text}'; write Cn, Cnv, Cnh, Dn, Dnh, Dnd or S2n with n = 1, 2, 3, ..., "
-                          "Ci, Cs, T, Td, Th, O, Oh, I, Ih, Cinfv, Dinfh or Kh")
+        raise VibsymError(f"unknown point group '{text}'; write Cn, Cnv, Cnh, Dn, Dnh, Dnd or S2n with n = 1, 2, 3, "
+                          "..., Ci, Cs, T, Td, Th, O, Oh, I, Ih, Cinfv, Dinfh or Kh")
     return _axial_symbol(text, match[1], match[2], match[3] or "")
 
 
@@ -55,7 +56,7 @@ def _axial_symbol(text: str, letter: str, digits: str, suffix: str) -> str:
         return f"S{2 * n}"
     if letter == "S" and not suffix:
         return f"S{n}" if n % 2 == 0 else f"C{n}h"        # an odd improper axis brings the plane with it
-    if letter == "C" and suffix in ("", "v", "h") or letter == "D" and suffix in ("", "h", "d"):
+    if (letter == "C" and suffix in ("", "v", "h")) or (letter == "D" and suffix in ("", "h", "d")):
         return f"{letter}{n}{suffix}"
     raise VibsymError(f"unknown point group '{text}'; with {letter} go "
                       + {"C": "Cn, Cnv, Cnh and, for odd n, Cni", "D": "Dn, Dnh, Dnd", "S": "S2n"}[letter])
@@ -92,7 +93,8 @@ def plain_label(text: str) -> str:
 
 
 def typeset(text: str) -> str:
-    """Return a label or an operation symbol as it is printed: primes, subscripts and superscripts as Unicode characters.
+    """Return a label or an operation symbol as it is printed: primes, subscripts and superscripts as Unicode
+    characters.
 
     >>> typeset("A2''"), typeset("Σg+"), typeset("2C5^2"), typeset("D3h")
     ('A₂″', 'Σg⁺', '2C₅²', 'D₃h')
