@@ -17,7 +17,7 @@ from vibsym.structures.distances import closest_pair
 from vibsym.structures.identify import identified
 from vibsym.structures.linear import LinearPlacement, image_permutations, line_frame, linear_placements
 from vibsym.structures.placement import Placement, place
-from vibsym.structures.settings import chosen_setting, free_frame
+from vibsym.structures.settings import chosen_setting, free_frame, settled
 from vibsym.structures.structure import structure_of
 from vibsym.structures.subsets import closed_subsets, consistent, product_table
 from vibsym.structures.symmetry import Symmetry
@@ -139,9 +139,10 @@ def symmetry_of(centred: Centred, found, tolerance: float, axes: str | None = No
         group, frame, order = identified(found.matrices, found.signs)
         permutations = found.permutations[order]
     frame = free_frame(group.symbol, frame, averaged, structure)
+    frame, order = settled(group, frame, averaged)
+    permutations = permutations if order is None else permutations[order]
     frame, order, decided = chosen_setting(group, frame, averaged, structure, axes, bonds)
-    if order is not None:
-        permutations = permutations[order]
+    permutations = permutations if order is None else permutations[order]
     local = averaged @ frame.T
     centre_of_mass = mass_centre(local, structure.masses, group.image.matrices if len(structure) > 1 else None)
     return Symmetry(structure, group, tolerance, float(shifts.max()), centred.centroid + centre_of_mass @ frame, frame,

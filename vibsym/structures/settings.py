@@ -13,6 +13,7 @@ from itertools import permutations as orders
 import numpy as np
 
 from vibsym.errors import VibsymError
+from vibsym.groups.pointgroup import point_group
 from vibsym.structures.identify import completed, matched
 
 ON = 1e-4          # Å; symmetrised atoms lie on an element to rounding or not at all
@@ -186,3 +187,37 @@ def free_frame(symbol: str, frame, positions, structure):
     off = np.where(distances > ON, structure.numbers + 1 + distances / (distances.max() + 1), -1.0)
     atom = int(off.argmax())
     return frame if off[atom] < 0 else completed(z, away[atom])
+
+
+@cache
+def _equal_turns(symbol: str) -> np.ndarray:
+    """Return (k, 3, 3) turns between frames that no label tells apart: the group's rotations, and z reversed where z is polar."""
+    matrices = point_group(symbol).image.matrices
+    turns = matrices[np.linalg.det(matrices) > 0]
+    flips = [np.diag([1.0, -1, -1])]
+    if symbol in ("C1", "Ci"):
+        flips += [np.diag([-1.0, 1, -1]), np.diag([-1.0, -1, 1])]
+    if symbol[0] in "CS":
+        turns = np.concatenate([turns] + [turns @ flip for flip in flips])
+    return turns
+
+
+def settled(group, frame, positions):
+    """Return (frame, order of operations or None): of frames that no label tells apart the one the numbering of the atoms prefers.
+
+    So the words for the axes do not depend on how the structure lay. Two sums of positions, weighted by the atoms' numbers, are
+    turned towards z and x as far as the group's own rotations allow. `order` as in `chosen_setting`.
+    """
+    turns = _equal_turns(group.symbol)
+    if len(turns) == 1:
+        return frame, None
+    local = positions @ frame.T
+    weights = 1.0 / np.arange(1.0, len(local) + 1)
+    first, second = weights @ local, (weights * weights) @ local
+    score = turns @ first @ np.array([0.31, 0.17, 1.0]) + turns @ second @ np.array([1.0, 0.23, 0.41])
+    # the first among equals within rounding, so that a tie is broken alike in every orientation
+    best = int(np.flatnonzero(score > score.max() - 1e-6)[0])
+    if best == 0:
+        return frame, None
+    turn = turns[best]
+    return turn @ frame, matched(group.image, turn, group.image.matrices)
