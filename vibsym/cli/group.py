@@ -44,4 +44,5 @@ def _save(path: str, symmetry) -> None:
     from vibsym.cli.delivery import write_file
     from vibsym.structures.writing import write_xyz
 
-    write_file(path, write_xyz(symmetry.symmetrised))
+    comment = f"symmetrised to {symmetry.group.symbol}, largest shift {symmetry.deviation:.4f} Å"
+    write_file(path, write_xyz(symmetry.symmetrised, comment))

@@ -52,9 +52,9 @@ def finish(results: list, failures: int, view, form: str, output: str | None, **
 
 def _prepared(structure, bonds, no_bonds, average_masses: bool):
     if bonds or no_bonds:
-        from vibsym.structures.bonds import find_bonds
+        from vibsym.structures.bonds import find_bonds, parse_bond
 
-        add, remove = ([_pair(text, len(structure)) for text in texts] for texts in (bonds, no_bonds))
+        add, remove = ([parse_bond(text, len(structure)) for text in texts] for texts in (bonds, no_bonds))
         structure = replace(structure, bonds=find_bonds(structure, add, remove))
     return structure.with_average_masses() if average_masses else structure
 
@@ -63,20 +63,6 @@ def _frame_number(text: str) -> int:
     if not text.isascii() or not text.isdigit() or int(text) < 1:
         raise VibsymError(f"--frame {text}: give the number of a frame, counted from 1, or all")
     return int(text)
-
-
-def _pair(text: str, atoms: int) -> tuple[int, int]:
-    """Return `1-5` as a pair of places counted from 0."""
-    numbers = text.split("-")
-    if len(numbers) != 2 or not all(number.isascii() and number.isdigit() for number in numbers):
-        raise VibsymError(f"bond '{text}': write two atom numbers, as in 1-5")
-    first, second = (int(number) for number in numbers)
-    for number in (first, second):
-        if not 1 <= number <= atoms:
-            raise VibsymError(f"bond '{text}': there is no atom {number}; the structure has atoms 1 to {atoms}")
-    if first == second:
-        raise VibsymError(f"bond '{text}': an atom is not bonded to itself")
-    return first - 1, second - 1
 
 
 def _with_progress(paths) -> Iterator[str]:

@@ -1,8 +1,8 @@
 """The page, the rows and the object of a ladder (`vibsym group`)."""
 
 from vibsym.groups.symbols import typeset
-from vibsym.report.document import Facts, Listing, Paragraph, Table, Title
-from vibsym.report.wording import NOTHING, about_structure, found_within, group_text
+from vibsym.report.document import Facts, Listing, Paragraph, Table
+from vibsym.report.wording import NOTHING, about_structure, found_within, group_text, within
 from vibsym.spectra.climb import Climb
 
 _MOST_SPOILERS = 6
@@ -11,7 +11,7 @@ _MOST_SPOILERS = 6
 def parts(result: Climb, **_) -> list:
     """Return the page: the group, the suggested rung, the ladder, the axes of the group."""
     found = result.found
-    page = [Title(about_structure(result.structure)),
+    page = [about_structure(result.structure),
             Paragraph(f"Point group {group_text(found.symmetry.group.symbol)}, {found_within(found.symmetry)}"),
             Paragraph(_suggestion(result), strong=True), _rungs(result)]
     if found.axes.words:
@@ -45,16 +45,16 @@ def _suggestion(result: Climb) -> str:
         if len(result.ladder.rungs) == 1:
             return f"{name} is the only rung: no higher group within reach."
         return f"Suggested: {name}, the group within the tolerance; the next rung is far off."
-    return (f"Suggested: {name}, which the structure has within {suggested.deviation:.3f} Å; "
+    return (f"Suggested: {name}, which the structure has within {within(suggested.deviation)} Å; "
             "the next rung is much farther.")
 
 
 def _rungs(result: Climb) -> Table:
-    head = ("group", "within Å", "bands", "infrared", "Raman", "both", "polarised", "silent", "next spoiled by")
+    head = ("group", "within Å", "bands", "IR", "Raman", "both", "polarised", "silent", "next spoiled by")
     rows = []
     for rung, each in zip(result.ladder.rungs, result.expectations, strict=True):
         counts = each.counts
-        rows.append((typeset(each.symmetry.group.symbol), f"{each.symmetry.deviation:.3f}",
+        rows.append((typeset(each.symmetry.group.symbol), within(each.symmetry.deviation),
                      *(str(count) for count in (counts.fundamentals, counts.infrared, counts.raman, counts.coincident,
                                                 counts.polarised, counts.silent)),
                      _spoilers(result, rung)))

@@ -4,7 +4,7 @@ Counts first, then the species with their activity, then how the axes lie and wh
 """
 
 from vibsym.groups.symbols import typeset
-from vibsym.report.document import Facts, Listing, Paragraph, Table, Title
+from vibsym.report.document import Facts, Listing, Paragraph, Table
 from vibsym.report.wording import (
     NOTHING,
     about_structure,
@@ -14,20 +14,20 @@ from vibsym.report.wording import (
     gamma_plain,
     gamma_text,
     group_text,
+    within,
 )
 from vibsym.spectra.expectation import Expectation
 
 # Depolarisation ratio of a Raman line that is not totally symmetric, by the light used.
-RATIO = {"plane": "3/4", "natural": "6/7"}
+RATIO = {"plane": ("3/4", "plane-polarised light"), "natural": ("6/7", "natural light")}
 CUBIC = ("T", "Td", "Th", "O", "Oh", "I", "Ih")
 
 
 def parts(result: Expectation, working: bool = False, light: str = "plane", **_) -> list:
     """Return the page."""
-    page = [Title(about_structure(result.structure)), Paragraph(_group_line(result))]
-    if len(result.structure.symbols) == 1:
-        page.append(Paragraph("One atom: it has no vibrations, so there are no bands to expect.", strong=True))
-        return [*page, *_representations(result), *_beware(result)]
+    page = [about_structure(result.structure), Paragraph(_group_line(result))]
+    if len(result.structure) == 1:
+        return [*page, Paragraph(result.notes[0], strong=True), *_representations(result), *_beware(result.notes[1:])]
     page.append(Paragraph(_counts(result), strong=True))
     page += [_species_table(result), Paragraph(_ratio_line(result, light))]
     page += _representations(result)
@@ -35,14 +35,14 @@ def parts(result: Expectation, working: bool = False, light: str = "plane", **_)
         from vibsym.report.working import working_parts
 
         page += working_parts(result.displacements)
-    return [*page, *_axes(result), *_beware(result), *_next_rung(result)]
+    return [*page, *_axes(result), *_beware(result.notes), *_next_rung(result)]
 
 
 def rows(result: Expectation, **_) -> list[dict]:
     """Return the CSV row: Γ as text, counts as columns."""
     symmetry, group = result.symmetry, result.symmetry.group
     row = {"source": result.structure.source, "formula": result.structure.formula,
-           "atoms": len(result.structure.symbols), "point_group": group.symbol, "order": group.order,
+           "atoms": len(result.structure), "point_group": group.symbol, "order": group.order,
            "tolerance": symmetry.tolerance, "deviation": round(float(symmetry.deviation), 6), "chiral": group.chiral,
            "centrosymmetric": group.centrosymmetric}
     if result.found is not None:
@@ -96,10 +96,10 @@ def _species_table(result: Expectation) -> Table:
 
 
 def _ratio_line(result: Expectation, light: str) -> str:
-    limit = RATIO[light]
+    limit, name = RATIO[light]
     polarised = "ρ = 0" if result.symmetry.group.symbol in CUBIC else f"ρ below {limit}"
     others = [typeset(species.label) for species, modes in result.species if not modes]
-    line = f"A degenerate set is one band. Polarised: {polarised}, depolarised: ρ = {limit} ({light} light)."
+    line = f"A degenerate set is one band. Polarised: {polarised}, depolarised: ρ = {limit} ({name})."
     return line + (f"\nNo vibrations in {', '.join(others)}." if others else "")
 
 
@@ -117,14 +117,20 @@ def _axes(result: Expectation) -> list:
     return [Facts(pairs, "Axes")] if pairs else []
 
 
-def _beware(result: Expectation) -> list:
-    return [Listing(result.notes, "Beware")] if result.notes else []
+def _beware(notes) -> list:
+    return [Listing(tuple(notes), "Beware")] if notes else []
 
 
 def _next_rung(result: Expectation) -> list:
-    rung = result.next_rung
-    if rung is None:
+    """One line on the ladder: the rung above, and the suggested one where it is another."""
+    ladder = result.ladder
+    if result.found is not None or ladder.next is None:
         return []
-    symmetry = rung.symmetry
-    return [Paragraph(f"Next rung: {typeset(symmetry.group.symbol)} within {symmetry.deviation:.3f} Å "
-                      "(vibsym group shows the ladder)")]
+    line = f"Next rung: {_reached(ladder.next)}"
+    if ladder.suggested > 1:
+        line += f"; suggested: {_reached(ladder.rungs[ladder.suggested])}"
+    return [Paragraph(line + " (vibsym group)")]
+
+
+def _reached(rung) -> str:
+    return f"{typeset(rung.symmetry.group.symbol)} within {within(rung.deviation)} Å"

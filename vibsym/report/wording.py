@@ -1,8 +1,10 @@
 """Words and numbers as they are printed: representations, lists of functions, lengths, characters."""
 
+from math import ceil
 from typing import TYPE_CHECKING
 
 from vibsym.groups.symbols import hermann_mauguin, typeset, typeset_function
+from vibsym.report.document import Title
 
 if TYPE_CHECKING:
     from vibsym.structures.structure import Structure
@@ -47,11 +49,15 @@ def found_within(symmetry: "Symmetry") -> str:
     return f"deviation {symmetry.deviation:.3f} Å, tolerance {symmetry.tolerance:g} Å"
 
 
-def about_structure(structure: "Structure") -> str:
-    """Return the head line of a page: formula, source, number of atoms."""
-    atoms = len(structure.symbols)
-    words = [structure.formula, structure.source, f"{atoms} atom{'s' if atoms != 1 else ''}"]
-    return "   ".join(word for word in words if word)
+def about_structure(structure: "Structure") -> Title:
+    """Return the head of a page: formula, source, number of atoms."""
+    aside = [structure.source, count_text(len(structure), "atom")]
+    return Title(typeset(structure.formula), ", ".join(filter(None, aside)))
+
+
+def within(deviation: float) -> str:
+    """Return a deviation rounded up to 0.001 Å, so that "within" stays true."""
+    return f"{ceil(deviation * 1000 - 0.01) / 1000:.3f}"
 
 
 def count_text(number: int, word: str) -> str:

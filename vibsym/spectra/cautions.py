@@ -16,7 +16,7 @@ def cautions(result) -> tuple[str, ...]:
     """Return the sentences for an `Expectation`, most important first."""
     structure = result.structure
     if len(structure) == 1:
-        return ("One atom has no vibrations.", *structure.notes)
+        return ("One atom: it has no vibrations, so there are no bands to expect.", *structure.notes)
     return (*_bounds(), *_exclusion(result), *_chirality(result), *_pairs(result), *result.axes.notes,
             *structure.notes, *_isotopes(structure), *_rotors(structure), *_dummies(structure))
 
@@ -59,7 +59,8 @@ def _isotopes(structure: Structure) -> tuple[str, ...]:
              if 0 < element(name).abundance < NEARLY_PURE}
     if not mixed:
         return ()
-    shares = ", ".join(f"{element(name).abundance:.0%} of {name} is {element(name).isotope}{name}" for name in mixed)
+    shares = ", ".join(f"{100 * element(name).abundance:.0f} % of {name} is {element(name).isotope}{name}"
+                       for name in mixed)
     text = f"The real sample is a mixture of isotopes ({shares})"
     if max(mixed.values()) > 1:
         return (text + ", mostly of lower symmetry: bands may be split or weak extra lines appear.",)

@@ -34,7 +34,7 @@ class Climb:
     def to_dict(self) -> dict:
         """Return the ladder for JSON; `spoilers` are the atoms farthest from the next rung, numbered from 1."""
         rungs = [{"point_group": each.symmetry.to_dict(),
-                  "deviation": round(float(each.symmetry.deviation), 6),
+                  "deviation": each.symmetry.deviation,
                   "spoilers": list(rung.spoilers), "counts": each.counts.to_dict()}
                  for rung, each in zip(self.ladder.rungs, self.expectations, strict=True)]
         return {"structure": self.structure.to_dict(), "point_group": self.found.symmetry.to_dict(),

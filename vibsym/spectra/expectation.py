@@ -74,11 +74,11 @@ class Expectation:
         return axis_words(self.symmetry)
 
     @cached_property
-    def next_rung(self):
-        """The next higher group that the structure approaches (`Rung`), or None."""
+    def ladder(self):
+        """The group within the tolerance and the higher ones that the structure approaches (`Ladder`)."""
         from vibsym.structures.ladder import ladder
 
-        return None if self.found is not None else ladder(self.structure, self.symmetry.tolerance).next
+        return ladder(self.structure, (self.found or self.symmetry).tolerance)
 
     @cached_property
     def notes(self) -> tuple[str, ...]:

@@ -11,7 +11,7 @@ from typing import NamedTuple
 
 import numpy as np
 
-from vibsym.structures.bonds import find_bonds
+from vibsym.structures.bonds import find_bonds, neighbours
 from vibsym.structures.structure import Structure
 
 TOPS = {"C": "methyl", "Si": "silyl", "Ge": "germyl", "N": "NH3"}
@@ -28,26 +28,23 @@ class Rotor(NamedTuple):
 
 def find_rotors(structure: Structure) -> tuple[Rotor, ...]:
     """Return the parts that turn easily, in the order of their atoms."""
-    neighbours: dict[int, list[int]] = {}
-    for first, second in find_bonds(structure).tolist():
-        neighbours.setdefault(first, []).append(second)
-        neighbours.setdefault(second, []).append(first)
-    tops = [Rotor(TOPS[structure.symbols[atom]], atom) for atom, bonded in neighbours.items()
-            if structure.symbols[atom] in TOPS and _is_top(atom, bonded, neighbours, structure)]
-    rings = [Rotor(f"{size}-membered ring", atom) for atom, bonded in neighbours.items() if len(bonded) > SMALLEST_RING
-             for size in _rings_held(bonded, neighbours)]
+    around = neighbours(len(structure), find_bonds(structure))
+    tops = [Rotor(TOPS[structure.symbols[atom]], atom) for atom, bonded in enumerate(around)
+            if structure.symbols[atom] in TOPS and _is_top(atom, bonded, around, structure)]
+    rings = [Rotor(f"{size}-membered ring", atom) for atom, bonded in enumerate(around) if len(bonded) > SMALLEST_RING
+             for size in _rings_held(bonded, around)]
     return tuple(sorted(tops + rings, key=lambda rotor: (rotor.atom, rotor.name)))
 
 
-def _is_top(atom: int, bonded: list[int], neighbours: dict, structure: Structure) -> bool:
-    others = [each for each in bonded if structure.symbols[each] != "H" or len(neighbours[each]) > 1]
-    return len(bonded) == 4 and len(others) == 1 and _frame_leaves_axis(atom, others[0], neighbours, structure)
+def _is_top(atom: int, bonded: list[int], around: list[list[int]], structure: Structure) -> bool:
+    others = [each for each in bonded if structure.symbols[each] != "H" or len(around[each]) > 1]
+    return len(bonded) == 4 and len(others) == 1 and _frame_leaves_axis(atom, others[0], around, structure)
 
 
-def _frame_leaves_axis(before: int, atom: int, neighbours: dict, structure: Structure) -> bool:
+def _frame_leaves_axis(before: int, atom: int, around: list[list[int]], structure: Structure) -> bool:
     """Follow a straight chain away from the top; tell whether it ends in more than a point of the axis."""
     for _ in range(len(structure)):
-        further = [each for each in neighbours[atom] if each != before]
+        further = [each for each in around[atom] if each != before]
         if len(further) != 1:
             return bool(further)
         back, ahead = (structure.positions[each] - structure.positions[atom] for each in (before, further[0]))
@@ -57,7 +54,7 @@ def _frame_leaves_axis(before: int, atom: int, neighbours: dict, structure: Stru
     return False
 
 
-def _rings_held(bonded: list[int], neighbours: dict) -> list[int]:
+def _rings_held(bonded: list[int], around: list[list[int]]) -> list[int]:
     """Return the sizes of the rings among the atoms bonded to one atom that hold all of their members face on.
 
     If there is nothing but one ring on the atom, it turns against nothing.
@@ -69,9 +66,9 @@ def _rings_held(bonded: list[int], neighbours: dict) -> list[int]:
         while front:
             atom = front.pop()
             part.add(atom)
-            new = [each for each in neighbours[atom] if each in left]
+            new = [each for each in around[atom] if each in left]
             left.difference_update(new)
             front += new
-        if len(part) >= SMALLEST_RING and all(sum(each in inside for each in neighbours[atom]) == 2 for atom in part):
+        if len(part) >= SMALLEST_RING and all(sum(each in inside for each in around[atom]) == 2 for atom in part):
             sizes.append(len(part))
     return sizes if len(inside) > sum(sizes[:1]) else []

@@ -45,9 +45,9 @@ class Working:
 
     @property
     def lines(self) -> tuple[WorkingLine, ...]:
-        """Return every species of the table of the finite group that was used, also those that come to nothing."""
-        chi = self.displacements.chi_3n
-        return tuple(self._line(species, chi) for species in self.image.species)
+        """Return every species of the table, of an infinite group those that displacements can carry."""
+        chi, labels = self.displacements.chi_3n, self.displacements.group.image_labels
+        return tuple(self._line(species, chi) for species in self.image.species if species.label in labels)
 
     def _line(self, species, chi: np.ndarray) -> WorkingLine:
         terms = tuple((int(size), float(own), float(other))
@@ -55,7 +55,7 @@ class Working:
         total = sum(size * own * other for size, own, other in terms)
         divisor = self.image.order * (2 if species.pair else 1)
         given = self.displacements
-        label = given.group.image_labels.get(species.label, species.label)
+        label = given.group.image_labels[species.label]
         return WorkingLine(label, terms, total, divisor, given.gamma_3n.get(label, 0),
                            given.gamma_translation.get(label, 0), given.gamma_rotation.get(label, 0),
                            given.gamma_vib.get(label, 0))
