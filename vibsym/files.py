@@ -5,16 +5,19 @@ unreasonable size is refused in one line before anything is made of it.
 """
 
 import os
+import re
 import stat
 import sys
 
 from vibsym.errors import VibsymError
 
 LARGEST_FILE = 50_000_000       # bytes; a million atoms as XYZ
+# Characters that would steer the terminal on which a comment or a message is shown; tab and line feed stay.
+CONTROL = re.compile("[\x00-\x08\x0b-\x1f\x7f-\x9f\u2028-\u202e]")
 
 
 def read_text(path) -> str:
-    """Return the text of a file (`-` is standard input) with `\\n` as line ending.
+    """Return the text of a file (`-` is standard input) with `\\n` as line ending and no other control characters but tabs.
 
     Raises VibsymError, one line that names the file and the remedy, for anything that is not readable text.
     """
@@ -35,7 +38,7 @@ def read_text(path) -> str:
         text = data.decode("utf-8")
     except UnicodeDecodeError:
         text = data.decode("latin-1")
-    return text.replace("\r\n", "\n").replace("\r", "\n")
+    return CONTROL.sub(" ", text.replace("\r\n", "\n").replace("\r", "\n"))
 
 
 def display_name(path) -> str:
@@ -88,8 +91,8 @@ def _bytes_of(path, name: str) -> bytes:
             raise VibsymError(f"{name}: is a directory; name a file in it")
         if state.st_size > LARGEST_FILE:
             size = state.st_size / 1e6
-            raise VibsymError(f"{name}: {size:.0f} MB is more than the {LARGEST_FILE // 1_000_000} MB that are read; cut out "
-                              "the part that is needed")
+            raise VibsymError(f"{name}: {size:.0f} MB is more than the {LARGEST_FILE // 1_000_000} MB that are read; "
+                              "cut out the part that is needed")
         with open(path, "rb") as file:
             return file.read(LARGEST_FILE + 1)
     except FileNotFoundError:

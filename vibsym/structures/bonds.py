@@ -1,4 +1,4 @@
-"""Which atoms are bonded: the file's own bonds where it states them, else atoms nearer than 1.2 × the sum of their radii.
+"""Which atoms are bonded: the file's own bonds where it states them, else atoms nearer than 1.2 × the sum of radii.
 
 Covalent radii: B. Cordero et al., Dalton Trans. 2008, 2832 (`tables/elements.csv`).  The factor is common practice: it
 takes in long metal-ligand bonds and leaves out 1,3-distances.  Dummy atoms bond with nothing unless told.
@@ -71,7 +71,9 @@ def neighbours(n: int, bonds) -> list[list[int]]:
 
 
 def fragments(n: int, bonds, without: Sequence[int] = ()) -> list[list[int]]:
-    """Return the connected parts of `n` atoms, each in rising order; `without` leaves atoms out (a metal: its ligands remain).
+    """Return the connected parts of `n` atoms, each in rising order; `without` leaves atoms out.
+
+    Without the metal of a complex the parts are its ligands.
 
     >>> fragments(5, [(0, 1), (0, 3), (3, 4)], without=[0])
     [[1], [2], [3, 4]]

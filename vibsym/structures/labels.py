@@ -12,7 +12,7 @@ from vibsym.structures.elements import elements, mass, symbol
 
 HYDROGEN_ISOTOPES = {"D": 2, "T": 3}
 ISOTOPE_NAMES = {2: "D", 3: "T"}
-_PATTERN = re.compile(r"(\d{1,3})?([A-Za-z]{1,3})$")
+_PATTERN = re.compile(r"(\d{1,3})?([A-Za-z]{1,3})")
 
 
 @cache
@@ -28,7 +28,7 @@ def read_label(text: str) -> tuple[str, int | None]:
         return symbol(int(text[:9])), None
     if is_dummy(text):
         return text, None
-    match = _PATTERN.match(text) if text.isascii() else None
+    match = _PATTERN.fullmatch(text) if text.isascii() else None
     if match is None:
         return _refuse(text)
     number, letters = match.groups()
@@ -67,8 +67,8 @@ def write_label(symbol: str, mass_number: int | None) -> str:
 
 
 def _refuse(text: str):
-    match = re.match(r"([A-Za-z]{1,2})[-_]?(\d{1,3})$", text) if text.isascii() else None
+    match = re.fullmatch(r"([A-Za-z]{1,2})[-_]?(\d{1,3})", text) if text.isascii() else None
     if match and (match[1].capitalize() in elements() or match[1].upper() in HYDROGEN_ISOTOPES):
         name = match[1].capitalize()
-        raise VibsymError(f"'{text}' could be an isotope or a numbered atom; write {match[2]}{name} or {name}")
-    raise VibsymError(f"'{text[:20]}' is not an element symbol (a dummy atom is X or begins with X)")
+        raise VibsymError(f"{text!r} could be an isotope or a numbered atom; write {match[2]}{name} or {name}")
+    raise VibsymError(f"{text[:20]!r} is not an element symbol (a dummy atom is X or begins with X)")

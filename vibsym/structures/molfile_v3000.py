@@ -11,7 +11,6 @@ from vibsym.structures.molfile import Connections, atom_label, checked_bond
 from vibsym.structures.numbers import read_coordinate
 
 PREFIX = "M  V30 "
-LARGEST_COUNT = 10_000_000
 
 
 def read_table(lines: Sequence[str], counts: int, name: str) -> Connections:
@@ -37,7 +36,8 @@ def read_table(lines: Sequence[str], counts: int, name: str) -> Connections:
         raise VibsymError(f"{last}: no line 'M  V30 COUNTS'; the file is truncated, complete it")
     for what, count, found in (("atoms", announced[0], len(table.labels)), ("bonds", announced[1], len(table.bonds))):
         if count != found:
-            raise VibsymError(f"{last}: {count} {what} are announced, {found} are found; the file is truncated or the count wrong")
+            raise VibsymError(f"{last}: {count} {what} are announced, {found} are found; the file is truncated or the "
+                              "count wrong")
     if "END CTAB" not in blocks:
         raise VibsymError(f"{last}: the file ends without 'M  V30 END CTAB'; it is truncated, complete it")
     if not table.labels:
@@ -66,7 +66,7 @@ def _statements(lines: Sequence[str], start: int, name: str) -> Iterator[tuple[i
 
 def _counts(text: str, where: str) -> tuple[int, int]:
     fields = text.split()[1:3]
-    if len(fields) != 2 or not all(re.fullmatch(r"\d{1,8}", field) for field in fields) or int(fields[0]) > LARGEST_COUNT:
+    if len(fields) != 2 or not all(re.fullmatch(r"\d{1,8}", field) for field in fields):
         raise VibsymError(f"{where}: '{text[:40]}' does not give the numbers of atoms and bonds; mend the counts")
     return int(fields[0]), int(fields[1])
 

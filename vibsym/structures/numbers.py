@@ -1,4 +1,4 @@
-"""Numbers in structure files: finite decimals, Fortran exponents (`1.0D-3`) included; `nan`, `inf`, `1_0` are refused."""
+"""Numbers in structure files: finite decimals, also with Fortran exponents (`1.0D-3`); `nan` and `inf` are refused."""
 
 from math import isfinite
 
@@ -30,6 +30,6 @@ def read_coordinate(text: str, where: str) -> float:
     if not isfinite(value):
         raise VibsymError(f"{where}: the coordinate '{text[:20]}' is not finite; an atom needs x, y and z in Å")
     if abs(value) > LARGEST_COORDINATE:
-        raise VibsymError(f"{where}: the coordinate {text[:20]} is larger than {LARGEST_COORDINATE:g} Å; shift the molecule "
-                          "to the origin or mend the number")
+        raise VibsymError(f"{where}: the coordinate {text[:20]} is larger than {LARGEST_COORDINATE:g} Å; shift the "
+                          "molecule to the origin or mend the number")
     return value

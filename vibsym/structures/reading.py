@@ -20,13 +20,11 @@ def read(path, frame: int = 1) -> Structure:
     found, structure, broken = 0, None, False
     try:
         for start in starts:
-            if structure is not None and found == frame:
-                pass                    # what follows the wanted frame has been checked; now frames are only counted
             found += 1
             if found == frame:
                 structure = parse(lines, start, name)
     except VibsymError:
-        if structure is None or found == frame:
+        if structure is None or found == frame:     # what follows the wanted frame tells whether its count is right
             raise
         broken = True
     if structure is None:
@@ -53,7 +51,7 @@ def _opened(path) -> tuple[str, list[str], Iterable[int], Callable]:
     name = display_name(path)
     text = read_text(path)
     # only \n parts lines: str.splitlines would also part at form feeds and at U+0085, which Latin-1 comments may hold
-    lines = text.split("\n")
+    lines = text.rstrip().split("\n")
     if molfile.counts_line(lines[:8]) is not None and not _counts_itself(lines):
         return name, lines, molfile.records(lines), molfile.parse
     filled = next((line for line in lines if line.strip()), "")
@@ -62,13 +60,14 @@ def _opened(path) -> tuple[str, list[str], Iterable[int], Callable]:
     number = lines.index(filled) + 1
     remedy = "an XYZ file begins with the number of atoms, a molfile has its counts in line 4"
     if any(line.startswith(("M  END", "M  V30", "$$$$")) for line in lines[:100_000]):
-        raise VibsymError(f"{name}, line {min(4, len(lines))}: no counts line where a molfile has it (fourth line, ending in V2000 "
-                          "or V3000); complete the head")
+        raise VibsymError(f"{name}, line {min(4, len(lines))}: no counts line where a molfile has it (fourth "
+                          "line, ending in V2000 or V3000); complete the head")
     if len(filled.split()) == 4 and xyz.looks_like_atom(filled):
         count = sum(xyz.looks_like_atom(line) for line in lines)
-        raise VibsymError(f"{name}, line {number}: an atom where the number of atoms is needed; put '{count}' and a comment line "
-                          "before it")
-    raise VibsymError(f"{name}, line {number}: '{xyz.printable(filled.strip()[:30])}' begins no structure that can be read; {remedy}")
+        raise VibsymError(f"{name}, line {number}: an atom where the number of atoms is needed; put '{count}' and a "
+                          "comment line before it")
+    raise VibsymError(f"{name}, line {number}: '{filled.strip()[:30]}' begins no structure that can be "
+                      f"read; {remedy}")
 
 
 def _counts_itself(lines: list[str]) -> bool:

@@ -43,8 +43,12 @@ class Structure:
 
     @classmethod
     def from_atoms(cls, symbols: Sequence, positions, masses=None, source: str = "", *, comment: str = "",
-                   notes: Sequence[str] = (), bonds=None, charge: int | None = None) -> "Structure":
-        """Return a structure from labels (`"C"`, `"D"`, `"13C"`, 6, `"X"`), (N, 3) positions in Å and masses in u."""
+                   notes: Sequence[str] = (), bonds=None, charge: int | None = None,
+                   first_line: int | None = None) -> "Structure":
+        """Return a structure from labels (`"C"`, `"D"`, `"13C"`, 6, `"X"`), (N, 3) positions in Å and masses in u.
+
+        `first_line` is the line of the file where the first atom stands, if each atom has a line: for messages.
+        """
         where = f"{source}: " if source else ""
         try:
             labels = [read_label(str(label)) for label in symbols]
@@ -59,6 +63,8 @@ class Structure:
             values, mass_numbers = _given_masses(names, mass_numbers, masses, where)
         i, j, distance = closest_pair(positions)
         if distance < ONE_SPOT:
+            if first_line is not None:
+                where = f"{source}, lines {first_line + i} and {first_line + j}: "
             raise VibsymError(f"{where}atoms {i + 1} ({names[i]}) and {j + 1} ({names[j]}) lie on one spot "
                               f"({distance:.3f} Å apart); remove one of them")
         notes = tuple(notes)

@@ -1,7 +1,7 @@
 """XYZ and extended XYZ: a count, a comment, then one line for each atom; frames follow each other.
 
-Plain: `symbol x y z`, in Å.  A fifth column whose every value is the mass of an isotope (or the standard atomic weight) of
-its element is the mass in u; other further columns are left out with a note.  Extended: the comment holds
+Plain: `symbol x y z`, in Å.  A fifth column whose every value is the mass of an isotope (or the standard atomic weight)
+of its element is the mass in u; other further columns are left out with a note.  Extended: the comment holds
 `Properties=species:S:1:pos:R:3:masses:R:1...`, which says where the columns are; `Lattice=` is left out with a note.
 """
 
@@ -37,10 +37,10 @@ def frames(lines: Sequence[str], name: str) -> Iterator[int]:
         if following < len(lines) and not is_integer(lines[following]):
             line = lines[following]
             if looks_like_atom(line):
-                raise VibsymError(f"{name}, line {following + 1}: more atoms follow than the {count} that line {start + 1} "
-                                  "announces; correct the count")
-            raise VibsymError(f"{name}, line {following + 1}: '{line.strip()[:30]}' is neither an atom nor the count of a new "
-                              "frame; delete what follows the atoms")
+                raise VibsymError(f"{name}, line {following + 1}: more atoms follow than the {count} that line "
+                                  f"{start + 1} announces; correct the count")
+            raise VibsymError(f"{name}, line {following + 1}: '{line.strip()[:30]}' is neither an atom nor the count "
+                              "of a new frame; delete what follows the atoms")
         start = following
 
 
@@ -57,8 +57,8 @@ def parse(lines: Sequence[str], start: int, name: str) -> Structure:
             raise VibsymError(f"{where}: the line is empty, but line {start + 1} announces {count} atoms and only "
                               f"{len(labels)} stand above; correct the count")
         if len(fields) < columns.width:
-            raise VibsymError(f"{where}: '{lines[index].strip()[:40]}' has {len(fields)} columns where {columns.width} are needed "
-                              f"(line {start + 1} announces {count} atoms)")
+            raise VibsymError(f"{where}: '{lines[index].strip()[:40]}' has {len(fields)} columns where {columns.width} "
+                              f"are needed (line {start + 1} announces {count} atoms)")
         labels.append(_label(fields[columns.species], where))
         at = columns.position
         positions.append([read_coordinate(text, where) for text in fields[at:at + 3]])
@@ -69,12 +69,8 @@ def parse(lines: Sequence[str], start: int, name: str) -> Structure:
     elif not _PROPERTIES.search(comment):
         masses, more = _further_columns(labels, rows)
         notes += more
-    return Structure.from_atoms(labels, positions, masses, name, comment=printable(comment), notes=notes)
-
-
-def printable(comment: str) -> str:
-    """Return a comment without control characters, which could steer the terminal that shows it."""
-    return comment if comment.isprintable() else "".join(c if c.isprintable() else " " for c in comment)
+    return Structure.from_atoms(labels, positions, masses, name, comment=comment, notes=notes,
+                                first_line=start + 3)
 
 
 def _next_filled(lines, index: int) -> int:
@@ -104,8 +100,8 @@ def _count(lines, start: int, name: str) -> int:
     while left > 0 and not lines[start + 1 + left].strip():
         left -= 1
     if count > left:
-        raise VibsymError(f"{where}: {text[:20]} atoms are announced, but only {max(left, 0)} lines follow the comment; correct "
-                          "the count or complete the file")
+        raise VibsymError(f"{where}: {text[:20]} atoms are announced, but only {max(left, 0)} lines follow the "
+                          "comment; correct the count or complete the file")
     return count
 
 
@@ -121,7 +117,7 @@ def _columns(comment: str, where: str) -> tuple[Columns, tuple[str, ...]]:
     width = 0
     for prop, kind, columns in zip(parts[::3], parts[1::3], parts[2::3]):
         if not (columns.isascii() and columns.isdigit() and 0 < int(columns[:6]) < 1000):
-            raise VibsymError(f"{where}: Properties gives '{prop}:{kind}:{columns}'; the third must be a number of columns")
+            raise VibsymError(f"{where}: Properties gives '{prop}:{kind}:{columns}'; the third must be a number")
         needed = {"pos": 3, "species": 1, "z": 1, "numbers": 1, "masses": 1, "mass": 1}.get(prop.lower())
         if needed is not None and needed != int(columns):
             raise VibsymError(f"{where}: Properties gives '{prop}' {columns} columns where {needed} are needed")
