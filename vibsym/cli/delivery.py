@@ -4,18 +4,14 @@ Only a terminal gets its own width and bold headings; a file or a pipe gets 80 c
 """
 
 import os
-import shutil
 import sys
-import tempfile
-from pathlib import Path
 
 import click
 
-from vibsym.errors import VibsymError
 from vibsym.report import render
 
 PLAIN_WIDTH = 80
-WIDEST = 120
+NARROWEST, WIDEST = 40, 120
 # For a terminal that knows no Greek: what stands for the letters and marks that pages use.
 _SPELLED = {"Γ": "Gamma", "Σ": "Sigma", "Π": "Pi", "Δ": "Delta", "Φ": "Phi", "∞": "inf", "ν": "nu", "ρ": "rho",
             "σ": "sigma", "θ": "theta", "φ": "phi", "ᵠ": "^phi", "π": "pi", "χ": "chi", "′": "'", "″": "''", "−": "-",
@@ -28,10 +24,12 @@ _SPELLED |= {mark: "^" + digit for mark, digit in zip("⁰¹⁴⁵⁶⁷⁸⁹",
 def deliver(results: list, view, form: str, output: str | None = None, **options) -> None:
     """Render results and print them, or write them to `output`."""
     if output is not None:
-        write_file(output, render(results, view, form, PLAIN_WIDTH, False, **options))
+        from vibsym.files import write_text_atomically
+
+        write_text_atomically(output, render(results, view, form, PLAIN_WIDTH, False, **options))
         return
     on_screen = form == "table" and sys.stdout.isatty()
-    width = min(WIDEST, max(40, shutil.get_terminal_size().columns)) if on_screen else PLAIN_WIDTH
+    width = min(WIDEST, max(NARROWEST, os.get_terminal_size(sys.stdout.fileno()).columns)) if on_screen else PLAIN_WIDTH
     colour = on_screen and "NO_COLOR" not in os.environ
     click.echo(spelled(render(results, view, form, width, colour, **options), form), nl=False)
     sys.stdout.flush()
@@ -54,28 +52,3 @@ def spelled(text: str, form: str = "table") -> str:
     text = re.sub("(.)\u0305", r"-\1", text)                          # 6 with a bar is -6 in ASCII
     text = "".join(c if c.isascii() else _SPELLED.get(c, c) for c in text)
     return text.encode(encoding, "replace").decode(encoding)
-
-
-def write_file(path: str, text: str) -> None:
-    """Write a file beside its place and rename it, so that a failure leaves the old one as it was."""
-    target = Path(path)
-    try:
-        if target.is_dir():
-            raise IsADirectoryError(21, "is a directory")
-        handle, name = tempfile.mkstemp(prefix=f".{target.name}.", dir=target.parent)
-        try:
-            with os.fdopen(handle, "w", encoding="utf-8", newline="\n") as stream:
-                stream.write(text)
-            os.chmod(name, target.stat().st_mode & 0o777 if target.exists() else 0o666 & ~_umask())
-            os.replace(name, target)
-        except BaseException:
-            os.unlink(name)
-            raise
-    except OSError as error:
-        raise VibsymError(f"{path}: cannot be written ({(error.strerror or str(error)).lower()})") from None
-
-
-def _umask() -> int:
-    mask = os.umask(0)
-    os.umask(mask)
-    return mask

@@ -41,8 +41,8 @@ def command(structures, form, output, tolerance, as_group, axes, write, **readin
 
 
 def _save(path: str, symmetry) -> None:
-    from vibsym.cli.delivery import write_file
+    from vibsym.files import write_text_atomically
     from vibsym.structures.writing import write_xyz
 
     comment = f"symmetrised to {symmetry.group.symbol}, largest shift {symmetry.deviation:.4f} Å"
-    write_file(path, write_xyz(symmetry.symmetrised, comment))
+    write_text_atomically(path, write_xyz(symmetry.symmetrised, comment))
