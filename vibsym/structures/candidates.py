@@ -10,11 +10,13 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from vibsym.structures.matching import DENSE_ATOMS, assign, bijective, nearest, residuals
+from vibsym.structures.matching import assign, bijective, nearest, residuals
+from vibsym.structures.placement import correlation, fitted_maps
 
 SLACK = 1.5                    # least squares does not minimise the largest residual, so it may exceed 2t somewhat
 ASSIGN_CANDIDATES = 200        # at most so many candidates are matched one to one when the nearest atoms fail
 ASSIGN_ENTRIES = 3_000_000
+MANY_ATOMS = 100               # above, most operations are made as products of a few
 
 
 @dataclass(frozen=True)
@@ -45,8 +47,8 @@ def reference_pair(points, kinds, radii, sizes, tolerance):
     away = points - np.outer(points @ axis, axis)
     offsets = np.sqrt((away * away).sum(axis=1))
     eligible = np.flatnonzero(offsets >= 0.5 * offsets.max())
-    if len(eligible) > 256:
-        eligible = eligible[np.argsort(sizes[eligible], kind="stable")[:256]]
+    if len(eligible) > 64:
+        eligible = eligible[np.argsort(sizes[eligible], kind="stable")[:64]]
     from_a = points - points[a]
     distances = np.sqrt((from_a * from_a).sum(axis=1))
     alike = np.abs(distances[eligible, None] - distances) <= 4 * tolerance
@@ -89,14 +91,6 @@ def pair_maps(points, kinds, radii, pair, tolerance):
     return np.concatenate((proper, there.transpose(0, 2, 1) @ mirrored))
 
 
-def kabsch(points, targets, signs):
-    """Return (C, 3, 3) orthogonal maps of determinant `signs` that carry x_i onto x_target(i) in the least-squares sense."""
-    u, _, vt = np.linalg.svd(points[targets].transpose(0, 2, 1) @ points)
-    flip = signs * np.linalg.det(u) * np.linalg.det(vt)
-    u[:, :, 2] *= np.where(flip < 0, -1.0, 1.0)[:, None]
-    return u @ vt
-
-
 def bounds(radii, offsets, pair, tolerance):
     """Return (N,) how far a map made from the pair alone can carry each atom beside its true place."""
     a, b = pair
@@ -128,7 +122,7 @@ def find_operations(points, kinds, tolerance, apart):
     if len(maps) * len(points) ** 2 > 200_000:
         maps = _prune(points, kinds, radii, sizes, maps, limits, tolerance)
     clear = 2 * limits.max() < apart
-    if len(points) > DENSE_ATOMS and clear:
+    if len(points) > MANY_ATOMS and clear:
         from vibsym.structures.generating import generated_operations
 
         return generated_operations(points, kinds, maps, (a, b), tolerance)
@@ -146,7 +140,7 @@ def _loosely_matched(points, kinds, maps, targets, distances, limits, tolerance)
     keep = (distances <= limits).all(axis=1)
     maps, targets, distances = maps[keep], targets[keep], distances[keep]
     signs = np.linalg.det(maps)
-    maps = kabsch(points, targets, signs)
+    maps = fitted_maps(correlation(points, targets), signs)
     targets, distances = nearest(points, kinds, maps)
     whole = bijective(targets)
     broken = np.flatnonzero(~whole)
@@ -162,13 +156,13 @@ def _loosely_matched(points, kinds, maps, targets, distances, limits, tolerance)
 def _fitted(points, kinds, maps, targets, pair, tolerance, clear):
     """Fit, and (loose tolerance) match and fit again; keep one operation for each image of the pair and determinant."""
     signs = np.where(np.linalg.det(maps) > 0, 1, -1)
-    matrices = kabsch(points, targets, signs)
+    matrices = fitted_maps(correlation(points, targets), signs)
     left = residuals(points, matrices, targets).max(axis=1)
     if not clear:
         again, _ = nearest(points, kinds, matrices)
         better = bijective(again)
         targets = np.where(better[:, None], again, targets)
-        matrices = kabsch(points, targets, signs)
+        matrices = fitted_maps(correlation(points, targets), signs)
         left = residuals(points, matrices, targets).max(axis=1)
     keep = np.flatnonzero(left <= 2 * tolerance * SLACK + 1e-9)
     keep = keep[np.argsort(left[keep], kind="stable")]

@@ -33,6 +33,17 @@ class Placement:
         return len(self.matrices)
 
 
+def fitted_maps(sums, signs):
+    """Return (k, 3, 3) orthogonal maps R of determinant `signs` that maximise tr(R^T A_k): the least-squares fits to permutations.
+
+    A = U D V^T gives R = U diag(1, 1, +-1) V^T (W. Kabsch, Acta Cryst. A 32, 922, 1976; A 34, 827, 1978).
+    """
+    u, _, vt = np.linalg.svd(sums)
+    flip = signs * np.linalg.det(u) * np.linalg.det(vt)
+    u[:, :, 2] *= np.where(flip < 0, -1.0, 1.0)[:, None]
+    return u @ vt
+
+
 def orthogonal_part(matrices):
     """Return the orthogonal matrices nearest to (k, 3, 3) matrices."""
     u, _, vt = np.linalg.svd(matrices)
