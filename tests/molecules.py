@@ -4,7 +4,7 @@ Only shape and atom count matter to the counts that are compared with print; len
 memory, and carry no claim.
 """
 
-from itertools import permutations, product
+from itertools import product
 
 import numpy as np
 
@@ -266,8 +266,3 @@ def turned(positions, seed):
     rotation, _ = np.linalg.qr(random.normal(size=(3, 3)))
     rotation *= np.sign(np.linalg.det(rotation))
     return positions @ rotation.T + random.normal(size=3)
-
-
-def relabellings(letters):
-    """Return every way to exchange labels among themselves, as dictionaries."""
-    return [dict(zip(letters, order)) for order in permutations(letters)]
