@@ -16,6 +16,7 @@ from vibsym.evidence.rows import Doubt, parse_row
 
 KNOWN = ("wavenumber", "spectrum", "strength", "polarisation", "uncertainty", "together", "note")
 LARGEST_FILE = 2_000_000  # bytes; a list of bands has a hundred lines, a measured spectrum is another kind of file
+OCTAVE = 2.0
 NATURAL, PLANE = 6 / 7, 3 / 4  # depolarisation ratio of a line that is not totally symmetric
 
 
@@ -33,6 +34,12 @@ class BandList:
     def bands(self) -> tuple[Band, ...]:
         """The bands: lines marked together are one."""
         return bands_of(self.lines)
+
+    @property
+    def whole_range(self) -> bool:
+        """Whether the lines are those of a whole spectrum, not of one region: no range stated, at least an octave."""
+        places = [line.wavenumber for line in self.lines]
+        return self.between is None and max(places) >= OCTAVE * min(places)
 
     def of(self, spectrum: str) -> tuple[Band, ...]:
         """Return the bands of one spectrum."""

@@ -104,7 +104,8 @@ def _spectrum(text: str, default: str | None) -> str:
         return default
     kind = words.get(text.lower())
     if kind is None:
-        raise Doubt(f"spectrum '{text}' is neither IR nor Raman")
+        comma = "; a decimal comma needs quotes, or semicolons between the columns" if text.isdigit() else ""
+        raise Doubt(f"spectrum '{text}' is neither IR nor Raman{comma}")
     if default is not None and kind != default:
         raise Doubt(f"spectrum '{text}' in a file given as {default}; give it to the other option, or to --bands")
     return kind

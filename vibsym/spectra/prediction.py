@@ -115,10 +115,11 @@ def _opened(group, true_group, embedding) -> Callable[[str], tuple[bool, bool]]:
 
 def mixture(first: Prediction, second: Prediction) -> Prediction:
     """Return the prediction of two structures that share the lines: all fundamentals of both."""
-    bands = tuple(SpeciesBands(f"{each.label} ({part.name})", each.count, each.infrared, each.raman,
+    names = (first.name, second.name) if first.name != second.name else (first.name + " 1", second.name + " 2")
+    bands = tuple(SpeciesBands(f"{each.label} ({name})", each.count, each.infrared, each.raman,
                                each.totally_symmetric, each.leak_infrared, each.leak_raman)
-                  for part in (first, second) for each in part.bands)
-    return Prediction(f"{first.name} + {second.name}", first.structure, first.point_group, bands, first.region,
+                  for name, part in zip(names, (first, second)) for each in part.bands)
+    return Prediction(" + ".join(names), first.structure, first.point_group, bands, first.region,
                       true_group=" + ".join(filter(None, (first.true_group, second.true_group))),
                       surroundings=first.surroundings or second.surroundings,
                       notes=(*first.notes, *second.notes), parts=(first, second))

@@ -1,0 +1,24 @@
+"""Options of the commands that compare with observed bands."""
+
+import click
+
+from vibsym.cli.options import light_option
+
+
+def bands_options(command):
+    """Add --bands, --ir, --raman, --between, --window, --allow and --light."""
+    for option in (
+        light_option,
+        click.option("--allow", type=float, metavar="WEIGHT",
+                     help="Total weight of excuses still called strained, not excluded [the larger of 1 and 5 % of the "
+                          "bands]."),
+        click.option("--window", type=float, default=5.0, show_default=True, metavar="CM-1",
+                     help="Largest difference of an infrared and a Raman line that coincide."),
+        click.option("--between", type=float, nargs=2, metavar="LOW HIGH", help="Use only the lines of this region."),
+        click.option("--raman", metavar="FILE", help="Raman lines, without a spectrum column."),
+        click.option("--ir", "infrared", metavar="FILE", help="Infrared lines, without a spectrum column."),
+        click.option("--bands", metavar="FILE", help="Observed lines: CSV with wavenumber, spectrum, strength, "
+                                                    "polarisation, uncertainty, together, note."),
+    ):
+        command = option(command)
+    return command

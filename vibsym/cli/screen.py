@@ -1,0 +1,41 @@
+"""`vibsym screen`: which of the proposed structures the observed bands allow."""
+
+import click
+
+from vibsym.cli import options
+from vibsym.cli.bands import bands_options
+from vibsym.cli.reading import finish, read_structures
+
+
+@click.command("screen")
+@options.structures_argument
+@bands_options
+@click.option("--oscillators", metavar="SET", help="Compare in the region of these bonds: C-O, Mo-C-O, or 2-3,4-5.")
+@click.option("--local", is_flag=True, help="Use the local group of the oscillators.")
+@click.option("--local-tolerance", type=float, default=0.3, show_default=True, metavar="Å",
+              help="How far the surroundings of the oscillators may be from the local group.")
+@click.option("--mixture", is_flag=True, help="Also let every two structures share the lines.")
+@click.option("--every-rung", is_flag=True, help="Screen each structure in every group of its ladder.")
+@options.output_options
+@options.tolerance_option
+@options.as_option
+@options.reading_options
+def command(structures, bands, infrared, raman, between, window, allow, light, mixture, form, output, frame, bonds,
+            no_bonds, average_masses, **proposal):
+    """Tell which STRUCTURE the observed infrared and Raman bands allow, and what speaks against the others.
+
+    Fewer bands than predicted never exclude a structure; forbidden bands that are seen do.
+
+    \b
+    Example:
+      vibsym screen try-it/cis.xyz try-it/trans.xyz --bands try-it/bands.csv --oscillators C-O
+    """
+    from vibsym.evidence.bandlist import read_bands
+    from vibsym.evidence.proposals import Proposal, screen
+    from vibsym.evidence.screening import ScreenOptions
+    from vibsym.report import screening as view
+
+    observed = read_bands(bands, infrared, raman, between=between, light=light)
+    read = [each for path in structures for each in read_structures(path, frame, bonds, no_bonds, average_masses)]
+    result = screen(read, observed, Proposal(**proposal), ScreenOptions(window, allow, mixture))
+    finish([result], 0, view, form, output)
