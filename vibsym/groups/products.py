@@ -8,7 +8,7 @@ p_k(R) = χ(R^k), by the generating function Σ h_n t^n = 1/det(1 - tR) and det(
 
 For a twofold species this is χ_n(R) = ½[χ(R) χ_{n-1}(R) + χ(R^n)] of the textbooks (L. Tisza, Z. Phys. 82, 48 (1933);
 E. B. Wilson, J. C. Decius, P. C. Cross, Molecular Vibrations, 1955, ch. 7).  e_2 is the antisymmetric square.  A
-conjugate pair is its real two-dimensional species throughout.  C∞v, D∞h and Kh are done with quantum numbers, no rounding.
+conjugate pair is its real two-dimensional species throughout.  C∞v, D∞h and Kh go by quantum numbers, without rounding.
 """
 
 from collections import Counter
@@ -145,7 +145,7 @@ def _antisymmetric_square(symbol: str, label: str) -> tuple[tuple[str, int], ...
 def _elementary(group: PointGroup, label: str) -> list[np.ndarray]:
     """Characters e_0, e_1, ... e_d of the antisymmetric powers (always up to e_2), by Newton's identities."""
     chi = group.character_rows[group.labels.index(label)]
-    degree = max(2, int(round(chi[0])))
+    degree = max(2, round(chi[0]))
     powers = [chi[power_classes(group, k)] for k in range(degree + 1)]
     elementary = [np.ones_like(chi)]
     for k in range(1, degree + 1):
@@ -157,15 +157,16 @@ def _power_characters(group: PointGroup, label: str, quanta: int) -> np.ndarray:
     elementary = _elementary(group, label)
     levels = [elementary[0]]
     for n in range(1, quanta + 1):
-        levels.append(sum((-1) ** (k - 1) * elementary[k] * levels[n - k] for k in range(1, min(n, len(elementary) - 1) + 1)))
+        terms = range(1, min(n, len(elementary) - 1) + 1)
+        levels.append(sum((-1) ** (k - 1) * elementary[k] * levels[n - k] for k in terms))
     return levels[quanta]
 
 
 def _ways(states: int, quanta: int) -> list[int]:
-    """In how many ways alike quanta in `states` states of heights 0, 1, ... add up to each height (Gaussian binomial)."""
+    """In how many ways alike quanta in states of heights 0, 1, ... add up to each height (Gaussian binomial)."""
     table = [[1]] + [[] for _ in range(quanta)]
     for height in range(states):
-        for n in range(1, quanta + 1):                    # one more quantum in this state: in place, as in change-making
+        for n in range(1, quanta + 1):                    # one more quantum in this state, in place
             below = table[n - 1]
             row = table[n] + [0] * max(0, len(below) + height - len(table[n]))
             for place, count in enumerate(below):
@@ -176,7 +177,7 @@ def _ways(states: int, quanta: int) -> list[int]:
 
 def _from_projections(group, ways: list[int], highest: int, parity: str) -> tuple[tuple[str, int], ...]:
     """Multiplicity of L: states with M = L less those with M = L + 1."""
-    by_m = ways[highest:] + [0]
+    by_m = [*ways[highest:], 0]
     counts = [(group.label(l, parity), by_m[l] - by_m[l + 1]) for l in range(highest + 1)]
     return tuple((label, count) for label, count in counts if count)
 

@@ -1,0 +1,104 @@
+"""All subgroups of a finite point group, one from each class of conjugate subgroups.
+
+Starting from {E}, every subgroup found is enlarged by one more operation of prime power order (these generate every
+larger subgroup) and closed, until nothing new appears.  Two subgroups are conjugate where an operation g of the group
+takes one into the other, g H g⁻¹ = H′; each class is kept once.  The group itself and C1 are among them.
+"""
+
+from dataclasses import dataclass
+from functools import cache
+
+import numpy as np
+
+from vibsym.groups.pointgroup import PointGroup, point_group
+
+
+@dataclass(frozen=True)
+class SubgroupClass:
+    """A class of conjugate subgroups: the operations of one of them (places in the group) and how many there are."""
+
+    operations: tuple[int, ...]
+    conjugates: int
+
+    @property
+    def order(self) -> int:
+        """Number of operations of each subgroup."""
+        return len(self.operations)
+
+
+def subgroup_classes(group: PointGroup) -> tuple[SubgroupClass, ...]:
+    """Return the classes of subgroups of a finite group, the largest first.
+
+    >>> len(subgroup_classes(point_group("Oh"))), len(subgroup_classes(point_group("Ih")))
+    (33, 22)
+    """
+    return _classes(group.symbol)
+
+
+@cache
+def _classes(symbol: str) -> tuple[SubgroupClass, ...]:
+    group = point_group(symbol)
+    product, conjugation = group.product, _conjugation(group)
+    generators = _generators(group)
+    trivial = np.zeros(group.order, dtype=bool)
+    trivial[0] = True
+    known: set[bytes] = {trivial.tobytes()}               # every subgroup met, all conjugates of each class
+    found = [SubgroupClass((0,), 1)]
+    frontier = [trivial]
+    while frontier:
+        fresh = []
+        for mask in frontier:
+            for generator in generators[~mask[generators]]:
+                grown = _closure(product, mask, generator)
+                if grown.tobytes() in known:
+                    continue
+                conjugates = np.unique(grown[conjugation], axis=0)
+                known.update(row.tobytes() for row in conjugates)
+                chosen = _plainest(group, conjugates)
+                found.append(SubgroupClass(tuple(np.flatnonzero(chosen).tolist()), len(conjugates)))
+                fresh.append(chosen)
+        frontier = fresh
+    return tuple(sorted(found, key=lambda each: (-each.order, each.operations)))
+
+
+def _conjugation(group: PointGroup) -> np.ndarray:
+    """Row g of (h, h): where R stands, g⁻¹ R g; a mask indexed by it is the mask of g H g⁻¹."""
+    h = np.arange(group.order)
+    left = group.product[group.inverse[:, None], h[None, :]]
+    return group.product[left, h[:, None]]
+
+
+def _closure(product: np.ndarray, mask: np.ndarray, generator: int) -> np.ndarray:
+    mask = mask.copy()
+    mask[generator] = True
+    count = 0
+    while count != (count := int(mask.sum())):
+        inside = np.flatnonzero(mask)
+        mask[product[np.ix_(inside, inside)]] = True
+    return mask
+
+
+def _generators(group: PointGroup) -> np.ndarray:
+    """One generator of each cyclic subgroup of prime power order."""
+    seen, kept = set(), []
+    for index in range(1, group.order):
+        powers, current = [0], index
+        while current != 0:
+            powers.append(current)
+            current = int(group.product[current, index])
+        order = len(powers)
+        prime = next(p for p in range(2, order + 1) if order % p == 0)
+        while order % prime == 0:
+            order //= prime
+        if order == 1 and (key := frozenset(powers)) not in seen:
+            seen.add(key)
+            kept.append(index)
+    return np.array(kept, dtype=int)
+
+
+def _plainest(group: PointGroup, conjugates: np.ndarray) -> np.ndarray:
+    """The member of a class that lies most along x, y, z: largest sum of |diagonal entries|, then along z, then x."""
+    diagonal = np.abs(np.einsum("gii->gi", group.matrices)).sum(axis=1)
+    fixed = np.einsum("gii->gi", group.matrices)
+    scores = np.stack([conjugates @ diagonal, conjugates @ fixed[:, 2], conjugates @ fixed[:, 0]], axis=1).round(6)
+    return conjugates[np.lexsort(scores.T[::-1])[-1]]
