@@ -2,8 +2,8 @@
 
 A subgroup is given by its operations; restricting the characters to them and reducing gives the correlation table
 (E. B. Wilson, J. C. Decius, P. C. Cross, Molecular Vibrations, 1955, appendix X).  A subgroup can lie in a group in
-several inequivalent ways, *embeddings*, one for each class of conjugate subgroups, named by what is kept: `C2v (C2', σh)`
-of D4h.  How the axes of the subgroup are chosen where its labels depend on it: vibsym/groups/orientation.py.
+several inequivalent ways, *embeddings*, one for each class of conjugate subgroups, named by what is kept: `C2v (C2',
+σh)` of D4h.  How the axes of the subgroup are chosen where its labels depend on it: vibsym/groups/orientation.py.
 """
 
 import re
@@ -226,7 +226,7 @@ def _infinite_embeddings(parent, group) -> tuple[Embedding, ...]:
 
 
 def _infinite_to_infinite(parent, group, label: str) -> dict[str, int]:
-    """D∞h to C∞v loses g and u; a level L of the sphere becomes Σ, Π, Δ ... up to its L, Σ by the sign of its planes."""
+    """D∞h to C∞v loses g and u; a level L of the sphere becomes Σ, Π, Δ ... up to its L, Σ with its sign."""
     quantum, parity, sign = parent.quantum(label)
     if parent is group:
         return {parent.label(quantum, parity, sign): 1}

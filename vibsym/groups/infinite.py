@@ -80,6 +80,8 @@ class InfiniteGroup:
         Beyond Γ species are written by their number, as `8` in `8g` (common practice).
         """
         plain = plain_label(label)
+        if self.symbol == "Kh" and plain.startswith("T"):
+            plain = "F" + plain[1:]                       # here F is l = 3, not another name of T
         letters = SPHERICAL_LETTERS if self.symbol == "Kh" else AXIAL_LETTERS
         match = re.fullmatch(rf"([{letters}]|\d+)([gu]?)([+-]?)", plain)
         if not match or (match[1] == "Σ") != bool(match[3]) or bool(match[2]) != self.centrosymmetric:

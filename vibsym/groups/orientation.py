@@ -1,8 +1,8 @@
 """How the axes of a subgroup are chosen inside a group, and what the subgroup keeps of it.
 
 The subgroup stands in its own standard orientation.  Where that leaves a choice on which labels depend (C2v, D2, D2h,
-C4v, ...), z stays along z if it can, and elements keep their names (σv stays σv, C2' stays C2').  A C2v whose axis was a
-horizontal one takes its y along z of the group (σh becomes σ(xz)), D2h gives its axes in turn, and σh of D3h becomes
+C4v, ...), z stays along z if it can, and elements keep their names (σv stays σv, C2' stays C2').  A C2v whose axis was
+a horizontal one takes its y along z of the group (σh becomes σ(xz)), D2h gives its axes in turn, and σh of D3h becomes
 σ(yz): the columns of E. B. Wilson, J. C. Decius, P. C. Cross, Molecular Vibrations (1955), appendix X (from memory),
 which print follows.  The other choices are told by `exchanges`.
 """
