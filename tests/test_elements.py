@@ -17,8 +17,8 @@ from vibsym.structures.elements import (
 from vibsym.structures.labels import is_dummy, read_label, write_label
 
 NATURAL = [name for name, each in elements().items() if each.abundance > 0]
-# IUPAC gives lead as an interval (206.14 to 207.94) because its composition differs from ore to ore; the abridged weight
-# 207.2 and the representative composition need not agree to more than 0.05.  The rest agree
+# IUPAC gives lead as an interval (206.14 to 207.94) because its composition differs from ore to ore; the abridged
+# weight 207.2 and the representative composition need not agree to more than 0.05.  The rest agree
 # to some units of the last figure of the abridged weights.
 ALLOWED = {"Pb": 0.05}
 
@@ -80,9 +80,11 @@ def test_unlabelled_means_the_most_abundant_isotope(name):
 
 
 @pytest.mark.parametrize("text, label", [
-    ("C", ("C", None)), ("cl", ("Cl", None)), ("CL", ("Cl", None)), ("6", ("C", None)), ("D", ("H", 2)), ("d", ("H", 2)),
-    ("T", ("H", 3)), ("2H", ("H", 2)), ("13C", ("C", 13)), ("13c", ("C", 13)), ("12C", ("C", None)), ("1H", ("H", None)),
-    ("37Cl", ("Cl", 37)), ("35Cl", ("Cl", None)), ("X", ("X", None)), ("XL", ("XL", None)), ("Xx", ("Xx", None)),
+    ("C", ("C", None)), ("cl", ("Cl", None)), ("CL", ("Cl", None)), ("6", ("C", None)), ("D", ("H", 2)),
+    ("d", ("H", 2)), ("T", ("H", 3)), ("2H", ("H", 2)), ("13C", ("C", 13)), ("13c", ("C", 13)),
+    ("12C", ("C", None)),
+    ("1H", ("H", None)), ("37Cl", ("Cl", 37)), ("35Cl", ("Cl", None)),
+    ("X", ("X", None)), ("XL", ("XL", None)), ("Xx", ("Xx", None)),
     ("X1", ("X1", None)), ("Xe", ("Xe", None)), ("XE", ("Xe", None)), ("xe", ("Xe", None)), ("118", ("Og", None)),
 ])
 def test_label_is_read(text, label):
@@ -91,7 +93,7 @@ def test_label_is_read(text, label):
 
 
 @pytest.mark.parametrize("text, told", [
-    ("Q", "not an element"), ("", "not an element"), ("C13", "write 13C or C"), 
+    ("Q", "not an element"), ("", "not an element"), ("C13", "write 13C or C"),
     ("99C", "no isotope 99C"),
     ("0", "atomic number 0"), ("119", "atomic number 119"), ("Cc", "not an element"), ("É", "not an element"),
     ("²H", "not an element"), ("2D", "not an element"), ("C\n", "not an element"), ("9" * 5000, "atomic number"),
@@ -107,6 +109,7 @@ def test_xenon_is_no_dummy():
 
 
 def test_lookups_of_nonsense_are_refused():
-    for call in (lambda: element("Zz"), lambda: symbol(0), lambda: symbol(-1), lambda: mass("C", 99), lambda: isotopes("X")):
+    for call in (lambda: element("Zz"), lambda: symbol(0), lambda: symbol(-1), lambda: mass("C", 99),
+                 lambda: isotopes("X")):
         with pytest.raises(VibsymError):
             call()

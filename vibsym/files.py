@@ -17,7 +17,7 @@ CONTROL = re.compile("[\x00-\x08\x0b-\x1f\x7f-\x9f\u2028-\u202e]")
 
 
 def read_text(path) -> str:
-    """Return the text of a file (`-` is standard input) with `\\n` as line ending and no other control characters but tabs.
+    """Return the text of a file (`-` is standard input) with `\\n` as line ending and without control characters.
 
     Raises VibsymError, one line that names the file and the remedy, for anything that is not readable text.
     """
@@ -25,12 +25,12 @@ def read_text(path) -> str:
     data = _bytes_of(path, name)
     if len(data) > LARGEST_FILE:
         raise VibsymError(f"{name}: larger than {LARGEST_FILE // 1_000_000} MB; cut out the part that is needed")
-    if not data.strip():
-        raise VibsymError(f"{name}: the file is empty")
     if data[:2] in (b"\xff\xfe", b"\xfe\xff"):
         raise VibsymError(f"{name}: the file is UTF-16; save it as UTF-8")
     if data[:3] == b"\xef\xbb\xbf":
         data = data[3:]
+    if not data.strip():
+        raise VibsymError(f"{name}: the file is empty")
     if b"\0" in data:
         kind = "UTF-16 without its mark" if _looks_like_utf16(data) else "a binary file, not text"
         raise VibsymError(f"{name}: the file is {kind}; save it as UTF-8 text")

@@ -1,7 +1,9 @@
 """Which atoms are bonded: the file's own bonds where it states them, else atoms nearer than 1.2 × the sum of radii.
 
 Covalent radii: B. Cordero et al., Dalton Trans. 2008, 2832 (`tables/elements.csv`).  The factor is common practice: it
-takes in long metal-ligand bonds and leaves out 1,3-distances.  Dummy atoms bond with nothing unless told.
+takes in long metal-ligand bonds and leaves out 1,3-distances.  Where it leaves a molecule in parts that come nearer
+than 1.35 × the sum, they are joined at their nearest contacts: F2 (1.25), the N-N bond of N2O4 (1.25), FHF- (1.30),
+O2F2 (1.28); ordinary hydrogen bonds and van der Waals contacts begin beyond 1.6.  Dummy atoms bond with nothing unless told.
 """
 
 from collections.abc import Iterable, Sequence
@@ -15,6 +17,8 @@ from vibsym.structures.labels import is_dummy
 from vibsym.structures.structure import Structure
 
 FACTOR = 1.2
+JOINING_FACTOR = 1.35
+ALIKE = 1.02            # contacts between two parts that differ by less are taken as equivalent
 
 
 def find_bonds(structure: Structure, add: Iterable = (), remove: Iterable = ()) -> np.ndarray:
@@ -45,12 +49,13 @@ def parse_bond(text: str, atoms: int) -> tuple[int, int]:
     (0, 4)
     """
     fields = text.replace("–", "-").split("-")
+    text = text[:20]
     if len(fields) != 2 or not all(field.strip().isascii() and field.strip().isdigit() for field in fields):
         raise VibsymError(f"bond '{text}': write two atom numbers, as in 1-5")
     pair = []
     for field in fields:
         if not 1 <= int(field[:18]) <= atoms:
-            raise VibsymError(f"bond '{text}': there is no atom {field.strip()}; the structure has atoms 1 to {atoms}")
+            raise VibsymError(f"bond '{text}': there is no atom {field.strip()[:20]}; there are atoms 1 to {atoms}")
         pair.append(int(field) - 1)
     if pair[0] == pair[1]:
         raise VibsymError(f"bond '{text}': an atom is not bonded to itself; write two different numbers")
@@ -102,15 +107,36 @@ def _by_radii(structure: Structure) -> np.ndarray:
     r = np.array([radii[name] for name in structure.symbols])
     positions = structure.positions
     if len(r) <= SMALL:
-        reach = FACTOR * (r[:, None] + r)
-        first, second = np.nonzero((squared_distances(positions) <= reach * reach) & (reach > 0))
+        sums = r[:, None] + r
+        near = squared_distances(positions) <= (JOINING_FACTOR * sums) ** 2
+        first, second = np.nonzero(near & (sums > 0))
         upper = first < second
-        return np.stack((first[upper], second[upper]), axis=1)
-    largest = max((radius for radius in radii.values() if radius > 0), default=0.0)
-    pairs = pairs_within(positions, 2 * FACTOR * largest)
+        pairs = np.stack((first[upper], second[upper]), axis=1)
+    else:
+        pairs = pairs_within(positions, 2 * JOINING_FACTOR * max(0.0, *radii.values()))
     first, second = pairs.T
-    distances = np.linalg.norm(positions[first] - positions[second], axis=1)
-    return pairs[distances <= FACTOR * (r[first] + r[second])]
+    separation = positions[first] - positions[second]
+    ratio = np.sqrt((separation * separation).sum(axis=1)) / (r[first] + r[second])
+    bonded = (ratio <= FACTOR) & np.isfinite(r[first] + r[second])      # a dummy atom has no radius
+    apart = (ratio > FACTOR) & (ratio <= JOINING_FACTOR)
+    return _joined(len(r), pairs, ratio, bonded, apart) if apart.any() else pairs[bonded]
+
+
+def _joined(n: int, pairs: np.ndarray, ratio: np.ndarray, bonded: np.ndarray, apart: np.ndarray) -> np.ndarray:
+    """Return the bonds and those that join parts left apart: the contacts that are as near as the nearest."""
+    part = np.empty(n, dtype=int)
+    for number, atoms in enumerate(fragments(n, pairs[bonded])):
+        part[atoms] = number
+    ends = np.sort(part[pairs], axis=1)
+    between = apart & (ends[:, 0] != ends[:, 1])
+    if between.any():
+        _, which = np.unique(ends[between], axis=0, return_inverse=True)
+        which = which.reshape(-1)
+        nearest = np.full(which.max() + 1, np.inf)
+        np.minimum.at(nearest, which, ratio[between])
+        bonded = bonded.copy()
+        bonded[np.flatnonzero(between)[ratio[between] <= ALIKE * nearest[which]]] = True
+    return pairs[bonded]
 
 
 def _checked(structure: Structure, pairs) -> list[tuple[int, int]]:

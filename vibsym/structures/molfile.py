@@ -149,7 +149,7 @@ def _integers(line: str, n: int) -> list[int] | None:
 
 def _read_atom(line: str, table: Connections, where: str) -> None:
     fields = line.split()
-    free = len(fields) >= 4 and all(read_number(text) is not None for text in fields[:3])
+    free = len(fields) >= 4 and not fields[3].isdigit() and all(read_number(text) is not None for text in fields[:3])
     if not free:
         fields = [line[0:10].strip(), line[10:20].strip(), line[20:30].strip(), line[31:34].strip(),
                   line[34:36].strip(), line[36:39].strip()]

@@ -31,8 +31,8 @@ def frames(lines: Sequence[str], name: str) -> Iterator[int]:
     """Yield the index of the count line of each frame; VibsymError where a count does not fit what follows."""
     start = _next_filled(lines, 0)
     while start < len(lines):
+        yield start                     # before its count is looked at: a broken frame harms only those who want it
         count = _count(lines, start, name)
-        yield start
         following = _next_filled(lines, start + 2 + count)
         if following < len(lines) and not is_integer(lines[following]):
             line = lines[following]
