@@ -137,8 +137,8 @@ def test_the_working_adds_up_to_the_result(name):
 
 def test_json_contract_of_the_design():
     answer = expect(built("SO3")).to_dict()
-    assert list(answer)[:10] == ["structure", "point_group", "gamma_3n", "gamma_translation", "gamma_rotation", "gamma_vib",
-                                 "species", "counts", "axes", "exchange"]
+    assert list(answer)[:10] == ["structure", "point_group", "gamma_3n", "gamma_translation", "gamma_rotation",
+                                 "gamma_vib", "species", "counts", "axes", "exchange"]
     assert list(answer["structure"]) == ["source", "formula", "atoms"]
     assert list(answer["point_group"]) == ["symbol", "order", "tolerance", "deviation", "chiral", "centrosymmetric"]
     assert answer["gamma_3n"] == {"A1'": 1, "A2'": 1, "E'": 3, "A2''": 2, "E''": 1}
@@ -147,7 +147,8 @@ def test_json_contract_of_the_design():
     assert list(first) == ["label", "degeneracy", "modes", "infrared", "raman", "polarised", "hyper_raman", "linear",
                            "rotations", "quadratic", "cubic"]
     assert first["polarised"] and first["quadratic"] == ["x2+y2", "z2"]
-    assert answer["counts"] == {"fundamentals": 4, "infrared": 3, "raman": 3, "coincident": 2, "polarised": 1, "silent": 0}
+    assert answer["counts"] == {"fundamentals": 4, "infrared": 3, "raman": 3, "coincident": 2, "polarised": 1,
+                                "silent": 0}
     assert answer["axes"]["z"] == "perpendicular to the molecular plane"
     assert len(answer["species"]) == 6
 

@@ -23,8 +23,8 @@ def command(structures, form, output, tolerance, as_group, axes, working, light,
     \b
     Examples:
       vibsym samples try-it
-      vibsym expect try-it/cylinder-gas-bf3.xyz
-      vibsym expect try-it/cylinder-gas-bf3.xyz --working
+      vibsym expect try-it/cylinder-bf3.xyz
+      vibsym expect try-it/cylinder-bf3.xyz --working
       vibsym expect try-it/*.xyz --format csv --output bands.csv
     """
     from vibsym.report import expectation as view

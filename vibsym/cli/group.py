@@ -24,8 +24,8 @@ def command(structures, form, output, tolerance, as_group, axes, write, **readin
     \b
     Examples:
       vibsym samples try-it
-      vibsym group try-it/loose-cage.xyz
-      vibsym group try-it/loose-cage.xyz --write symmetrised.xyz
+      vibsym group try-it/cluster-mo6cl14.xyz
+      vibsym group try-it/cluster-mo6cl14.xyz --write symmetrised.xyz
     """
     from vibsym.report import climb as view
     from vibsym.spectra.climb import climb

@@ -27,7 +27,7 @@ def rows(result: Climb, **_) -> list[dict]:
         group = each.symmetry.group
         table.append({"source": result.structure.source, "formula": result.structure.formula,
                       "atoms": len(result.structure), "point_group": group.symbol, "order": group.order,
-                      "deviation": round(float(each.symmetry.deviation), 6),
+                      "deviation": round(float(each.symmetry.deviation), 5),
                       "found": each is result.found, "suggested": each.symmetry is result.suggested,
                       "spoilers": " ".join(map(str, rung.spoilers))} | each.counts.to_dict())
     return table

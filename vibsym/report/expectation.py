@@ -43,7 +43,7 @@ def rows(result: Expectation, **_) -> list[dict]:
     symmetry, group = result.symmetry, result.symmetry.group
     row = {"source": result.structure.source, "formula": result.structure.formula,
            "atoms": len(result.structure), "point_group": group.symbol, "order": group.order,
-           "tolerance": symmetry.tolerance, "deviation": round(float(symmetry.deviation), 6), "chiral": group.chiral,
+           "tolerance": symmetry.tolerance, "deviation": round(float(symmetry.deviation), 5), "chiral": group.chiral,
            "centrosymmetric": group.centrosymmetric}
     if result.found is not None:
         row["found"] = result.found.group.symbol
