@@ -50,7 +50,7 @@ def test_parts_that_nearly_touch_are_joined_at_their_nearest_contacts():
 
 def test_hydrogen_bonded_molecules_stay_apart():
     first = molecule("H2O").positions - molecule("H2O").positions[0]
-    second = first + [0, 2.7 * first[1, 1] / np.linalg.norm(first[1]), 2.7 * first[1, 2] / np.linalg.norm(first[1])]
+    second = first + 2.9 * first[1] / np.linalg.norm(first[1])      # O-H...O straight, 2.9 Å
     dimer = Structure.from_atoms("OHHOHH", np.vstack([first, second]))
     assert fragments(6, find_bonds(dimer)) == [[0, 1, 2], [3, 4, 5]]
 

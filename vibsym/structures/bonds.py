@@ -3,7 +3,8 @@
 Covalent radii: B. Cordero et al., Dalton Trans. 2008, 2832 (`tables/elements.csv`).  The factor is common practice: it
 takes in long metal-ligand bonds and leaves out 1,3-distances.  Where it leaves a molecule in parts that come nearer
 than 1.35 × the sum, they are joined at their nearest contacts: F2 (1.25), the N-N bond of N2O4 (1.25), FHF- (1.30),
-O2F2 (1.28); ordinary hydrogen bonds and van der Waals contacts begin beyond 1.6.  Dummy atoms bond with nothing unless told.
+O2F2 (1.28); ordinary hydrogen bonds and van der Waals contacts begin beyond 1.6.  Dummy atoms bond with nothing unless
+told.
 """
 
 from collections.abc import Iterable, Sequence

@@ -8,7 +8,7 @@ from collections.abc import Callable, Iterable
 
 from vibsym.errors import VibsymError
 from vibsym.files import display_name, read_text
-from vibsym.structures import molfile, xyz
+from vibsym.structures import xyz
 from vibsym.structures.structure import Structure
 
 
@@ -52,11 +52,13 @@ def _opened(path) -> tuple[str, list[str], Iterable[int], Callable]:
     text = read_text(path)
     # only \n parts lines: str.splitlines would also part at form feeds and at U+0085, which Latin-1 comments may hold
     lines = text.rstrip().split("\n")
-    if molfile.counts_line(lines[:8]) is not None and not _counts_itself(lines):
-        return name, lines, molfile.records(lines), molfile.parse
-    filled = next((line for line in lines if line.strip()), "")
     if _counts_itself(lines):
         return name, lines, xyz.frames(lines, name), xyz.parse
+    from vibsym.structures import molfile           # not needed for XYZ, and loading it takes time
+
+    if molfile.counts_line(lines[:8]) is not None:
+        return name, lines, molfile.records(lines), molfile.parse
+    filled = next((line for line in lines if line.strip()), "")
     number = lines.index(filled) + 1
     remedy = "an XYZ file begins with the number of atoms, a molfile has its counts in line 4"
     if any(line.startswith(("M  END", "M  V30", "$$$$")) for line in lines[:100_000]):
