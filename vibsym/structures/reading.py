@@ -54,7 +54,7 @@ def _opened(path) -> tuple[str, list[str], Iterable[int], Callable]:
     lines = text.rstrip().split("\n")
     if _counts_itself(lines):
         return name, lines, xyz.frames(lines, name), xyz.parse
-    from vibsym.structures import molfile           # not needed for XYZ, and loading it takes time
+    from vibsym.structures import molfile  # not needed for XYZ, and loading it takes time
 
     if molfile.counts_line(lines[:8]) is not None:
         return name, lines, molfile.records(lines), molfile.parse
