@@ -15,6 +15,7 @@ COMMANDS = {
     "expect": "vibsym.cli.expect",
     "group": "vibsym.cli.group",
     "table": "vibsym.cli.table",
+    "isomers": "vibsym.cli.isomers",
     "samples": "vibsym.cli.samples",
 }
 
@@ -56,7 +57,7 @@ def cli():
     \b
     Try it:
       vibsym samples try-it
-      vibsym expect try-it/cylinder-gas-bf3.xyz
+      vibsym expect try-it/cylinder-bf3.xyz
       vibsym table D3h
     """
 
