@@ -4,7 +4,6 @@ A symbol that begins with X and is not xenon names a dummy atom: a point with a 
 mass.  A number after the symbol (`C13`) could be a mass or a running number and is refused with the two ways out.
 """
 
-import re
 from functools import cache
 
 from vibsym.errors import VibsymError
@@ -12,7 +11,6 @@ from vibsym.structures.elements import elements, mass, symbol
 
 HYDROGEN_ISOTOPES = {"D": 2, "T": 3}
 ISOTOPE_NAMES = {2: "D", 3: "T"}
-_PATTERN = re.compile(r"(\d{1,3})?([A-Za-z]{1,3})")
 
 
 @cache
@@ -28,17 +26,14 @@ def read_label(text: str) -> tuple[str, int | None]:
         return symbol(int(text[:9])), None
     if is_dummy(text):
         return text, None
-    match = _PATTERN.fullmatch(text) if text.isascii() else None
-    if match is None:
-        return _refuse(text)
-    number, letters = match.groups()
-    name = letters.capitalize()
-    if name in HYDROGEN_ISOTOPES and number is None:
+    letters = text.lstrip("0123456789")
+    number, name = text[:len(text) - len(letters)], letters.capitalize()
+    if name in HYDROGEN_ISOTOPES and not number:
         return "H", HYDROGEN_ISOTOPES[name]
     found = elements().get(name)
-    if found is None:
+    if found is None or len(number) > 3:
         return _refuse(text)
-    if number is None or int(number) == found.isotope:
+    if not number or int(number) == found.isotope:
         return name, None
     mass(name, int(number))  # refuses an isotope that is not known
     return name, int(number)
@@ -67,6 +62,8 @@ def write_label(symbol: str, mass_number: int | None) -> str:
 
 
 def _refuse(text: str):
+    import re
+
     match = re.fullmatch(r"([A-Za-z]{1,2})[-_]?(\d{1,3})", text) if text.isascii() else None
     if match and (match[1].capitalize() in elements() or match[1].upper() in HYDROGEN_ISOTOPES):
         name = match[1].capitalize()

@@ -21,7 +21,7 @@ SUSPICIOUS_DISTANCE = 0.5       # Å; below, a note asks for the unit of length
 LARGEST_COORDINATE = 1e6        # Å = 0.1 mm; beyond, the figures needed for symmetry are lost
 
 
-@dataclass(frozen=True, eq=False)
+@dataclass(frozen=True, eq=False, repr=False)
 class Structure:
     """Atoms with positions; make one with `Structure.from_atoms`, `structure_of` or a reader.
 
@@ -75,6 +75,9 @@ class Structure:
 
     def __len__(self) -> int:
         return len(self.symbols)
+
+    def __repr__(self) -> str:
+        return f"<Structure {self.formula}, {len(self)} atoms{', ' + self.source if self.source else ''}>"
 
     @cached_property
     def numbers(self) -> np.ndarray:

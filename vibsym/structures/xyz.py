@@ -5,7 +5,6 @@ of its element is the mass in u; other further columns are left out with a note.
 `Properties=species:S:1:pos:R:3:masses:R:1...`, which says where the columns are; `Lattice=` is left out with a note.
 """
 
-import re
 from collections.abc import Iterator, Sequence
 from typing import NamedTuple
 
@@ -16,8 +15,6 @@ from vibsym.structures.numbers import read_coordinate, read_number
 from vibsym.structures.structure import Structure
 
 MASS_WINDOW = 0.05      # u; how near a fifth column must come to an isotope or a mean mass to be taken for masses
-_PROPERTIES = re.compile(r"(?:^|\s)properties\s*=\s*\"?([^\s\"]+)", re.IGNORECASE)
-_LATTICE = re.compile(r"(?:^|\s)lattice\s*=", re.IGNORECASE)
 
 
 class Columns(NamedTuple):
@@ -66,7 +63,7 @@ def parse(lines: Sequence[str], start: int, name: str) -> Structure:
     masses = None
     if columns.mass is not None:
         masses = [_mass(fields[columns.mass], f"{name}, line {start + 3 + index}") for index, fields in enumerate(rows)]
-    elif not _PROPERTIES.search(comment):
+    elif _properties(comment) is None:
         masses, more = _further_columns(labels, rows)
         notes += more
     return Structure.from_atoms(labels, positions, masses, name, comment=comment, notes=notes,
@@ -80,10 +77,13 @@ def _next_filled(lines, index: int) -> int:
 
 
 def is_integer(line: str) -> bool:
-    return re.fullmatch(r"\s*[+-]?[0-9]+\s*", line) is not None
+    """Tell whether a line holds one whole number and nothing else."""
+    text = line.strip()
+    return text.isascii() and text[text[:1] in ("+", "-"):].isdigit()
 
 
 def looks_like_atom(line: str) -> bool:
+    """Tell whether a line holds a word and three numbers."""
     fields = line.split()
     return len(fields) >= 4 and all(read_number(text) is not None for text in fields[1:4])
 
@@ -106,13 +106,13 @@ def _count(lines, start: int, name: str) -> int:
 
 
 def _columns(comment: str, where: str) -> tuple[Columns, tuple[str, ...]]:
-    notes = ("the lattice is ignored: the atoms are taken as one molecule",) if _LATTICE.search(comment) else ()
-    match = _PROPERTIES.search(comment)
-    if match is None:
+    notes = ("the lattice is ignored: the atoms are taken as one molecule",) if "lattice=" in comment.lower() else ()
+    properties = _properties(comment)
+    if properties is None:
         return Columns(0, 1, None, 4), notes
-    parts = match[1].split(":")
+    parts = properties.split(":")
     if len(parts) % 3:
-        raise VibsymError(f"{where}: Properties={match[1][:40]} is not made of name:type:columns; mend or remove it")
+        raise VibsymError(f"{where}: Properties={properties[:40]} is not made of name:type:columns; mend or remove it")
     places: dict[str, int] = {}
     width = 0
     for prop, kind, columns in zip(parts[::3], parts[1::3], parts[2::3]):
@@ -125,8 +125,17 @@ def _columns(comment: str, where: str) -> tuple[Columns, tuple[str, ...]]:
         width += int(columns)
     species = next((places[key] for key in ("species", "numbers", "z") if key in places), None)
     if species is None or "pos" not in places:
-        raise VibsymError(f"{where}: Properties={match[1][:40]} needs species:S:1 and pos:R:3")
+        raise VibsymError(f"{where}: Properties={properties[:40]} needs species:S:1 and pos:R:3")
     return Columns(species, places["pos"], places.get("masses", places.get("mass")), width), notes
+
+
+def _properties(comment: str) -> str | None:
+    """Return what `Properties=` says in an extended comment, with or without quotes; None in a plain one."""
+    place = comment.lower().find("properties=")     # without a pattern: compiling one takes as long as reading the file
+    if place < 0:
+        return None
+    words = comment[place + len("properties="):].lstrip('"').split(None, 1)
+    return words[0].split('"')[0] if words else ""
 
 
 def _label(text: str, where: str) -> str:
