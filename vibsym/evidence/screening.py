@@ -25,7 +25,7 @@ CAUTION = ("Fitting is not proof: symmetry permits, it never promises. Fewer ban
 
 @dataclass(frozen=True)
 class Unseen:
-    """A predicted fundamental that was not seen where it should be."""
+    """A predicted fundamental that was not seen, and in which of the measured spectra it is missing."""
 
     species: str
     infrared: bool
@@ -166,7 +166,10 @@ def _candidate(prediction: Prediction, observed: BandList, seen: Coincidences, a
 
 
 def _unseen(prediction: Prediction, explanation: Explanation, spectra: tuple[str, ...]) -> tuple[Unseen, ...]:
-    """Return one entry for each fundamental that was not seen in every measured spectrum that should show it."""
+    """Return one entry for each fundamental that is missing in a measured spectrum that should show it.
+
+    A fundamental active in both spectra and seen in one of them counts once, like one seen in neither.
+    """
     found: dict[SpeciesBands, list[set[str]]] = {}
     for place in explanation.places:
         found.setdefault(place.species, []).append({band.spectrum for band in place.item})
