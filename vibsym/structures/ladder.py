@@ -7,6 +7,7 @@ larger deviation, and holds it. The suggested rung is the one before the largest
 """
 
 from dataclasses import dataclass, replace
+from itertools import pairwise
 
 import numpy as np
 
@@ -33,6 +34,7 @@ from vibsym.structures.symmetry import Symmetry
 
 SMALLEST_DEVIATION = 0.005     # Å; smaller deviations count as this much in the ratio that suggests a rung
 SAME_DEVIATION = 0.0005        # Å; of two rungs whose deviations agree so far, the higher is shown
+HIGHEST = ("Oh", "Ih")         # no finite point group holds these
 MOST_ATOMS = 300               # larger structures are searched up to a smaller distance
 
 
@@ -93,7 +95,7 @@ def as_group(structure, symbol: str, tolerance: float = DEFAULT_TOLERANCE, axes:
 
 def _tolerance_of(deviation: float, tolerance: float) -> float:
     """Return the tolerance at which a rung is reached: the one given, or its deviation rounded up to the next 0.01 Å."""
-    return max(tolerance, float(np.ceil(deviation * 100 - 1e-9) / 100))
+    return max(tolerance, float(np.ceil(deviation * 100 - 1e-9) / 100), deviation)
 
 
 def symbol_of(placement) -> str:
@@ -120,6 +122,8 @@ def _climb(centred: Centred, tolerance: float):
     if found is not None:
         return found, [line for line in lines if line.deviation > tolerance]
     found = largest_group(centred, tolerance)
+    if symbol_of(found) in HIGHEST:
+        return found, lines
     operations, start = _with_found(find_operations(centred.points, centred.kinds, limit, centred.shortest), found)
     return found, _higher(centred, operations, start, found, limit) + lines
 
@@ -201,12 +205,12 @@ def _height(placement) -> tuple:
 
 def _spoilers(shifts, tolerance: float) -> tuple[int, ...]:
     """Return the atoms (from 1) that must move most to reach the next rung: more than half its deviation and than the tolerance."""
-    largest = shifts.max()
-    return tuple((np.flatnonzero(shifts >= min(largest, max(0.5 * largest, tolerance)) - 1e-9) + 1).tolist())
+    least = max(0.5 * shifts.max() + 1e-6, min(tolerance, shifts.max()))
+    return tuple((np.flatnonzero(shifts >= least) + 1).tolist())
 
 
 def _suggested(deviations) -> int:
     """Return the place of the rung before the largest ratio of successive deviations; 0 where there is one rung."""
     counted = [max(value, SMALLEST_DEVIATION) for value in deviations]
-    ratios = [upper / lower for lower, upper in zip(counted, counted[1:])]
+    ratios = [upper / lower for lower, upper in pairwise(counted)]
     return int(np.argmax(ratios)) if ratios else 0
