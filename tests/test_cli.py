@@ -58,7 +58,8 @@ def test_formats_agree():
     (row,) = csv.DictReader(io.StringIO(run("expect", BF3, "--format", "csv").stdout))
     assert result["point_group"]["symbol"] == row["point_group"] == "D3h"
     assert row["gamma_vib"] == "A1' + 2E' + A2''"
-    assert {name: str(count) for name, count in result["counts"].items()} == {name: row[name] for name in result["counts"]}
+    for name, count in result["counts"].items():
+        assert row[name] == str(count)
     markdown = run("expect", BF3, "--format", "markdown").stdout
     assert "| A₁′ | 1 | – | polarised |" in markdown
 

@@ -1,4 +1,4 @@
-"""What the main job may load: numpy and click, not sympy, scipy, rich or importlib.metadata; and what `vibsym` offers."""
+"""What the main job may load: numpy and click, not sympy, scipy or importlib.metadata; what `vibsym` offers."""
 
 import subprocess
 import sys
@@ -53,8 +53,8 @@ def test_import_vibsym_loads_nothing():
 
 
 def test_the_names_that_vibsym_offers():
-    assert vibsym.__all__ == ["Structure", "VibsymError", "character_table", "climb", "expect", "find_symmetry", "ladder",
-                              "point_group", "read", "read_all", "reduce", "write_reduction"]
+    assert vibsym.__all__ == ["Structure", "VibsymError", "character_table", "climb", "expect", "find_symmetry",
+                              "ladder", "point_group", "read", "read_all", "reduce", "write_reduction"]
     for name in vibsym.__all__:
         assert callable(getattr(vibsym, name))
     assert set(vibsym.__all__) <= set(dir(vibsym))
