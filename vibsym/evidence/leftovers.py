@@ -1,0 +1,92 @@
+"""Lines that no fundamental explains, matched with overtones, combinations and differences.
+
+A candidate must be active in the spectrum of the line and lie within the match (cm-1).  Candidates are ranked by
+
+    distance/match × (2 against the usual direction of the anharmonic shift, else 1) + ½ (quanta - 2)
+    and, for a difference, + ½ - ½ √fraction
+
+(vibsym's own rule): observed overtones and sums lie below the sum of the fundamentals, as a rule; more quanta are
+weaker; a difference is weakened by the few molecules in its lower level.
+"""
+
+from bisect import bisect_left
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+from vibsym.errors import VibsymError
+from vibsym.evidence.lines import Line
+from vibsym.spectra.combinations import Combination, Combinations
+
+DEFAULT_MATCH = 10.0               # cm-1
+DEFAULT_WINDOW = 5.0               # cm-1, between a line and the fundamental that it is
+SLACK = 1.0                        # cm-1; a shift that small has no direction
+
+
+@dataclass(frozen=True)
+class Candidate:
+    """A combination that may be a line: `shift` = observed - sum of the fundamentals, cm-1; the lowest score is first."""
+
+    combination: Combination
+    shift: float
+    usual: bool
+    score: float
+
+    def to_dict(self) -> dict:
+        """Return the candidate for JSON."""
+        return {"label": self.combination.label, "species": dict(self.combination.species),
+                "wavenumber": self.combination.wavenumber, "shift": round(self.shift, 3), "usual_shift": self.usual,
+                "fraction": self.combination.fraction, "score": round(self.score, 3)}
+
+
+@dataclass(frozen=True)
+class Explanation:
+    """A line with its candidates, or with the fundamental that it is."""
+
+    line: Line
+    fundamental: str | None
+    candidates: tuple[Candidate, ...]
+
+    def to_dict(self) -> dict:
+        """Return the explanation for JSON."""
+        return {"line": self.line.wavenumber, "spectrum": self.line.spectrum, "fundamental": self.fundamental,
+                "candidates": [each.to_dict() for each in self.candidates]}
+
+
+def explain_lines(lines: Sequence[Line], result: Combinations, match: float = DEFAULT_MATCH,
+                  window: float = DEFAULT_WINDOW) -> tuple[Explanation, ...]:
+    """Return for every line the fundamental within `window` that is active there, or else the ranked candidates."""
+    if not 0 <= match < float("inf"):
+        raise VibsymError(f"--match {match:g}: give a distance in cm-1, zero or more")
+    known = [each for each in result.combinations if each.wavenumber is not None]
+    known.sort(key=lambda each: each.wavenumber)
+    positions = [each.wavenumber for each in known]
+    found = []
+    for line in lines:
+        fundamental = _fundamental(line, result, window)
+        low, high = (bisect_left(positions, line.wavenumber + step) for step in (-match - 1e-9, match + 1e-9))
+        active = [each for each in known[low:high] if (each.infrared if line.spectrum == "IR" else each.raman)
+                  and (not line.polarised or result.group.species[0].label in each.species)]
+        candidates = () if fundamental else tuple(sorted((_candidate(line, each, match) for each in active),
+                                                         key=lambda each: (each.score, each.combination.label)))
+        found.append(Explanation(line, fundamental, candidates))
+    return tuple(found)
+
+
+def _fundamental(line: Line, result: Combinations, window: float) -> str | None:
+    near = []
+    for mode in result.modes:
+        species = result.group.species_named(mode.species)
+        if mode.wavenumber is not None and (species.infrared if line.spectrum == "IR" else species.raman):
+            distance = abs(mode.wavenumber - line.wavenumber)
+            if distance <= window + line.uncertainty:
+                near.append((distance, mode.name))
+    return min(near)[1] if near else None
+
+
+def _candidate(line: Line, combination: Combination, match: float) -> Candidate:
+    shift = line.wavenumber - combination.wavenumber
+    usual = combination.is_difference or shift <= SLACK
+    score = abs(shift) / (match or 1.0) * (1 if usual else 2) + 0.5 * (combination.order - 2)
+    if combination.is_difference:
+        score += 0.5 - 0.5 * (combination.fraction or 0.0) ** 0.5
+    return Candidate(combination, shift, usual, score)
