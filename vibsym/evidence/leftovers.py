@@ -24,7 +24,7 @@ SLACK = 1.0                        # cm-1; a shift that small has no direction
 
 @dataclass(frozen=True)
 class Candidate:
-    """A combination that may be a line: `shift` = observed - sum of the fundamentals, cm-1; the lowest score is first."""
+    """A combination that may be a line; `shift` = observed - sum of the fundamentals, cm-1; lowest score first."""
 
     combination: Combination
     shift: float

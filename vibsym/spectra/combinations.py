@@ -170,7 +170,7 @@ class _Builder:
         return Combination(_label(quanta), quanta, species, infrared, raman, wavenumber, (), fraction)
 
     def species(self, key: tuple[tuple[str, int], ...]) -> tuple[dict[str, int], bool, bool]:
-        """Return the species of the product of the powers, and whether infrared and Raman active ones are among them."""
+        """Return the species of a product of powers, and whether infrared and Raman active ones are among them."""
         gamma = product_of(self.group, [symmetric_power(self.group, label, n) for label, n in key])
         members = [self.group.species_named(label) for label in gamma]
         self.seen[key] = gamma, any(s.infrared for s in members), any(s.raman for s in members)
