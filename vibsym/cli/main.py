@@ -16,6 +16,7 @@ COMMANDS = {
     "group": "vibsym.cli.group",
     "table": "vibsym.cli.table",
     "isomers": "vibsym.cli.isomers",
+    "screen": "vibsym.cli.screen",
     "samples": "vibsym.cli.samples",
 }
 
