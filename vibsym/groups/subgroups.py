@@ -1,9 +1,10 @@
 """Which point group a set of matrices is: its Schoenflies symbol and the frame that turns it into standard orientation.
 
 The matrices form a group exactly (a subset of the operations of a known group, say); no atoms and no tolerance are
-involved.  The highest axis gives the family, twofold axes across it the D groups, planes the suffix (the flow chart of
-every textbook: F. A. Cotton, Chemical Applications of Group Theory, ch. 3).  Where the orientation leaves a choice (which
-plane is σv, which twofold axis is z), `standard_frames` returns one frame for each and leaves the choice to the caller.
+involved.  The highest axis gives the family, twofold axes across it the D groups, planes the suffix (the flow chart
+of every textbook: F. A. Cotton, Chemical Applications of Group Theory, ch. 3).  Where the orientation leaves a choice
+(which plane is σv, which twofold axis is z), `standard_frames` returns one frame for each and leaves the choice to
+the caller.
 """
 
 from itertools import permutations
@@ -51,7 +52,7 @@ def standard_frames(matrices: np.ndarray) -> tuple[str, list[np.ndarray]]:
 
 
 def operation_places(group: PointGroup, matrices: np.ndarray, frame: np.ndarray) -> np.ndarray | None:
-    """Return (h,) where each operation of `group` stands among `matrices` turned into `frame`; None: they do not fit."""
+    """Return (h,) where each operation of `group` stands among `matrices` turned into `frame`; None: no fit."""
     turned = np.einsum("ab,hbc,dc->had", frame, matrices, frame).reshape(len(matrices), 9)
     if len(turned) != group.order:
         return None

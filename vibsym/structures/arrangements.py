@@ -1,19 +1,21 @@
 """All arrangements of ligands on the sites of a shape, and which of them are one isomer.
 
-Arrangements that an operation of the shape's group G carries into one another are one isomer (or its mirror image): the
-isomers are the orbits of G, the stereoisomers those of its rotations.  Both numbers are proved by Burnside's lemma,
+Arrangements that an operation of the shape's group G carries into one another are one isomer (or its mirror image):
+the isomers are the orbits of G, the stereoisomers those of its rotations.  Both numbers are proved by Burnside's
+lemma,
 
     number of orbits = (1/h) Σ_R (arrangements that R leaves unchanged),
 
-where without chelates the numbers of unchanged arrangements come from the cycles of the site permutations (G. Pólya, Acta
-Math. 68, 145 (1937)), independently of the list.  An arrangement is kept as two rows: the colour of each site (which donor
-of which sort of ligand) and the set of sites that its ligand holds; so ligands of one sort need no names of their own.
+where without chelates the numbers of unchanged arrangements come from the cycles of the site permutations (G. Pólya,
+Acta Math. 68, 145 (1937)), independently of the list.  An arrangement is kept as two rows: the colour of each site
+(which donor of which sort of ligand) and the set of sites that its ligand holds; so ligands of one sort need no names
+of their own.
 """
 
 from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import cached_property
-from itertools import permutations
+from itertools import pairwise, permutations
 
 import numpy as np
 
@@ -94,7 +96,7 @@ def orbits(shape: Shape, ligands: Sequence[Ligand]) -> Orbits:
 
 
 def _prove(found: Orbits, fixed: np.ndarray, chelated: bool) -> None:
-    """Compare the list with Burnside's lemma, for the whole group and for its rotations; a difference is an error of vibsym."""
+    """Compare the list with Burnside's lemma, for the whole group and for its rotations; a difference is our error."""
     proper = found.shape.image.determinants > 0
     if not chelated:
         counts = [ligand.count for ligand in found.ligands]
@@ -103,8 +105,8 @@ def _prove(found: Orbits, fixed: np.ndarray, chelated: bool) -> None:
         if not proper.all() or chosen is not proper:
             total, order = int(fixed[chosen].sum()), int(chosen.sum())
             if total != listed * order:
-                raise VibsymError(f"{found.shape.symbol}: {listed} isomers listed, {total}/{order} by Burnside's lemma; this is "
-                                  "an error of vibsym")
+                raise VibsymError(f"{found.shape.symbol}: {listed} isomers listed, {total}/{order} by Burnside's "
+                                  "lemma; this is an error of vibsym")
 
 
 def unchanged_colourings(targets: np.ndarray, counts: Sequence[int]) -> int:
@@ -168,23 +170,23 @@ def list_arrangements(shape: Shape, ligands: Sequence[Ligand]) -> tuple[np.ndarr
                 grown.append((new_sites, new_holders, np.full(len(rows), index)))
             sites, holders, last = (np.concatenate(parts) for parts in zip(*grown, strict=True))
             if not len(sites):
-                raise VibsymError(f"{ligand.count} {ligand.name} cannot be placed on {shape.symbol}: the donors of a chelate must "
-                                  "stand on neighbouring sites; try another shape or fewer chelates")
+                raise VibsymError(f"{ligand.count} {ligand.name} cannot be placed on {shape.symbol}: the donors of a "
+                                  "chelate must stand on neighbouring sites; try another shape or fewer chelates")
     return sites, holders
 
 
 def placements(shape: Shape, ligand: Ligand) -> list[list[int]]:
     """Return the ways of putting one ligand on an empty shape, as lists of sites in the order of its donors.
 
-    Consecutive donors of a chain stand on neighbouring sites, of a ring every two; ways that differ only in the order of
-    alike donors are one.
+    Consecutive donors of a chain stand on neighbouring sites, of a ring every two; ways that differ only in the order
+    of alike donors are one.
     """
     size = len(ligand.donors)
     if size > len(shape):
         raise VibsymError(f"{ligand.name} has {size} donors, {shape.symbol} {len(shape)} sites")
     found: dict[frozenset, list[int]] = {}
     for way in permutations(range(len(shape)), size):
-        pairs = list(zip(way, way[1:]))
+        pairs = list(pairwise(way))
         if ligand.span == "ring":
             pairs.append((way[0], way[-1]))
         if all(shape.neighbours[i, j] for i, j in pairs):
@@ -196,14 +198,17 @@ def placements(shape: Shape, ligand: Ligand) -> list[list[int]]:
 
 
 def _keys(sites: np.ndarray, holders: np.ndarray, targets: np.ndarray, chelated: bool) -> np.ndarray:
-    """Return one whole number for each arrangement after an operation: decimal digits are the colours, then the first site
-    of each site's ligand (at most nine sites and nine colours, so everything fits into 64 bits)."""
+    """Return one whole number for each arrangement after an operation.
+
+    Its decimal digits are the colours of the sites, then the first site of each site's ligand; with at most nine sites
+    and nine colours everything fits into 64 bits.
+    """
     n = len(targets)
     power = 10 ** (n - 1 - targets.astype(np.int64))
     keys = sites.astype(np.int64) @ power
     if not chelated:
         return keys
-    moved_sets = np.zeros(1 << n, dtype=np.int64)          # first site (from 1) of each set of sites after the operation
+    moved_sets = np.zeros(1 << n, dtype=np.int64)          # first site, from 1, of each set of sites once moved
     for bits in range(1, 1 << n):
         moved_sets[bits] = min(int(targets[site]) for site in range(n) if bits >> site & 1) + 1
     return keys * 10 ** n + moved_sets[holders] @ power

@@ -1,9 +1,9 @@
 """The configuration index of a complex: which priority numbers stand trans to each other, or on the axis.
 
 IUPAC, Nomenclature of Inorganic Chemistry, Recommendations 2005, IR-9.3.3 (rules from memory): SP-4 (9.3.3.2), OC-6
-(9.3.3.3), SPY-4 and SPY-5 (9.3.3.4), TBPY-5, PBPY-7, HBPY-8 and HBPY-9 (9.3.3.5), TS-3 (9.3.3.6), SS-4 (9.3.3.7).  Other
-shapes have no index.  Priority numbers come from `priorities.py`; of two alike ligands with three donors one is primed
-(IR-9.3.5.3): a primed number ranks just below the unprimed one.
+(9.3.3.3), SPY-4 and SPY-5 (9.3.3.4), TBPY-5, PBPY-7, HBPY-8 and HBPY-9 (9.3.3.5), TS-3 (9.3.3.6), SS-4 (9.3.3.7).
+Other shapes have no index.  Priority numbers come from `priorities.py`; of two alike ligands with three donors one is
+primed (IR-9.3.5.3): a primed number ranks just below the unprimed one.
 """
 
 from collections.abc import Sequence
@@ -32,7 +32,7 @@ def configuration_index(shape: Shape, priorities: Sequence[Priority]) -> str | N
 
 
 def reference_axes(shape: Shape, priorities: Sequence[Priority], sites: Sequence[int]) -> list[int]:
-    """Return the sites of the highest priority among `sites` whose trans ligand has the largest number (trans maximum)."""
+    """Return the sites of highest priority among `sites` whose trans ligand has the largest number."""
     highest = min(priorities[site] for site in sites)
     ends = [site for site in sites if priorities[site] == highest]
     largest = max(priorities[shape.opposite[site]] for site in ends)

@@ -1,10 +1,10 @@
 """Chirality symbols of a complex: R and S, A and C, Δ and Λ.
 
-IUPAC, Nomenclature of Inorganic Chemistry, Recommendations 2005, IR-9.3.4 (rules from memory).  T-4 and TPY-3: R and S as
-in organic chemistry, the lone pair of TPY-3 last.  OC-6, SPY-5, TBPY-5 and the other bipyramids, SS-4: seen with the end
-of higher priority of the reference axis towards the viewer, the numbers in the plane across it run to the lower sequence
-clockwise (C) or anticlockwise (A).  Chelates of two donors in OC-6: skew lines, Δ for the right-handed helix, Λ for the
-left-handed one.
+IUPAC, Nomenclature of Inorganic Chemistry, Recommendations 2005, IR-9.3.4 (rules from memory).  T-4 and TPY-3: R and
+S as in organic chemistry, the lone pair of TPY-3 last.  OC-6, SPY-5, TBPY-5 and the other bipyramids, SS-4: seen with
+the end of higher priority of the reference axis towards the viewer, the numbers in the plane across it run to the
+lower sequence clockwise (C) or anticlockwise (A).  Chelates of two donors in OC-6: skew lines, Δ for the right-handed
+helix, Λ for the left-handed one.
 """
 
 from collections.abc import Sequence
@@ -42,13 +42,13 @@ def chirality_symbol(shape: Shape, priorities: Sequence[Priority]) -> str | None
 
 
 def helicity(shape: Shape, edges: Sequence[tuple[int, int]]) -> str | None:
-    """Return Δ or Λ from the edges that chelates of two donors span, None where the pairs of skew lines do not agree on one.
+    """Return Δ or Λ from the edges that chelates span, None where the pairs of skew lines do not agree on one.
 
-    Two lines with directions a, b and n from the first to the second: ((a × b)·n)(a·b) is negative where b is tangent to a
-    right-handed helix about a (the sign is checked by a right-handed propeller of three chelates in the tests).
+    Two lines with directions a, b and n from the first to the second: ((a × b)·n)(a·b) is negative where b is tangent
+    to a right-handed helix about a (the tests check the sign by a right-handed propeller of three chelates).
 
     >>> from vibsym.structures.polyhedra import shape
-    >>> helicity(shape("OC-6"), [(1, 4), (2, 5), (0, 3)])         # x to -y, y to -z, z to -x: seen along (1 1 1), clockwise
+    >>> helicity(shape("OC-6"), [(1, 4), (2, 5), (0, 3)])         # x to -y, y to -z, z to -x
     'Δ'
     """
     points = shape.directions
@@ -92,4 +92,4 @@ def _see_saw(shape: Shape, priorities: Sequence[Priority]) -> str | None:
     end = int(priorities[1] < priorities[0])
     higher, lower = (2, 3) if priorities[2] < priorities[3] else (3, 2)
     turn = np.cross(shape.directions[higher], shape.directions[lower]) @ shape.directions[end]
-    return "A" if turn > 0 else "C"                        # anticlockwise for the viewer is a positive turn about the view
+    return "A" if turn > 0 else "C"                        # anticlockwise is a positive turn about the line of sight

@@ -1,9 +1,10 @@
 """Trade names of isomers: cis, trans, fac, mer, axial, equatorial, ... where the trade has them.
 
-Two alike ligands that are trans or cis, three that share a face (fac) or a meridian (mer); in shapes with sites of several
-kinds the place of the rarer ligands (axial, apical, cap).  Two chelates of three donors are mer, s-fac or u-fac.  (All common
-practice; the names of IUPAC are the indices of `configuration_index.py`.)  One ligand names an isomer if that is enough to
-tell all apart; else every ligand is named, then the trans pairs, then a running number is added.
+Two alike ligands that are trans or cis, three that share a face (fac) or a meridian (mer); in shapes with sites of
+several kinds the place of the rarer ligands (axial, apical, cap).  Two chelates of three donors are mer, s-fac or
+u-fac.  (All common practice; the names of IUPAC are the indices of `configuration_index.py`.) One ligand names an
+isomer if that is enough to tell all apart; else every ligand is named, then the trans pairs, then a running number is
+added.
 """
 
 from collections import Counter

@@ -1,13 +1,16 @@
-"""The isomers of a composition on a coordination shape: every one, with its name, index, handedness, group and structure.
+"""The isomers of a composition on a shape: every one, with its name, index, handedness, group and structure.
 
 Which arrangements are one isomer is counted in `arrangements.py`.  The group of an isomer is the stabiliser of its
-arrangement: the operations of the shape that leave it unchanged.  It is exact and never the work of the geometric finder,
-so chelates drawn as two points lower it as they should.  The axes follow the ladder of choice on the placed structure.
+arrangement: the operations of the shape that leave it unchanged.  It is exact and never the work of the geometric
+finder, so chelates drawn as two points lower it as they should.  The axes follow the ladder of choice on the placed
+structure.
 """
 
+import re
 from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import cached_property
+from itertools import combinations
 
 import numpy as np
 
@@ -22,7 +25,7 @@ from vibsym.structures.ligands import Ligand, read_ligands
 from vibsym.structures.placing import centre_atom, placed
 from vibsym.structures.polyhedra import Shape, shape
 from vibsym.structures.priorities import rankings
-from vibsym.structures.settings import chosen_setting, free_frame
+from vibsym.structures.settings import chosen_setting, free_frame, settings
 from vibsym.structures.symmetry import Symmetry
 
 _LINE = {"D4h": "D∞h", "C4v": "C∞v"}        # finite image of the group of a linear shape
@@ -61,6 +64,21 @@ class Isomers:
         """Return the first `limit` isomers, all of them without a limit."""
         return [Isomer(self, number) for number in range(self.count if limit is None else min(limit, self.count))]
 
+    @cached_property
+    def _stabilisers(self) -> dict:
+        return {}
+
+    def stabiliser_of(self, kept: np.ndarray) -> tuple[object, np.ndarray, np.ndarray]:
+        """Return (group, frame, operations) of the subgroup of the shape's group made of these operations; kept."""
+        key = kept.tobytes()
+        if key not in self._stabilisers:
+            image = self.shape.image
+            group, frame, order = identified(image.matrices[kept], image.determinants[kept])
+            if self.shape.group.infinite:
+                group = point_group(_LINE[group.symbol])
+            self._stabilisers[key] = group, frame, kept[order]
+        return self._stabilisers[key]
+
     def ranking_text(self, order: Sequence[int]) -> str:
         """Return an order of priority as it is written: `L > CO`."""
         return " > ".join(label(self.orbits, colour) for colour in order)
@@ -93,6 +111,11 @@ class Isomer:
     def name(self) -> str:
         """Trade name where there is one (`cis`, `fac`), else what tells it apart."""
         return self.among.names[self.number]
+
+    @property
+    def numbered(self) -> bool:
+        """Whether the name ends in a running number, since no trade name tells the isomer apart."""
+        return re.search(r" \(\d+\)$|^isomer \d+$", self.name) is not None
 
     @property
     def colours(self) -> list[int]:
@@ -129,7 +152,7 @@ class Isomer:
 
     @cached_property
     def indices(self) -> dict[str, tuple[tuple[int, ...], ...]]:
-        """The configuration index for every order of priority that is possible (one entry: it does not depend on it)."""
+        """The configuration index for every possible order of priority (one entry: it does not depend on it)."""
         among = self.among
         found: dict[str, tuple] = {}
         if among.shape.symbol in INDEXED:
@@ -186,27 +209,57 @@ class Isomer:
         return self._placed[2]
 
     @cached_property
+    def stabiliser(self) -> tuple[object, np.ndarray, np.ndarray]:
+        """(group, frame, operations): the group, its frame, and which operation of the shape each of its own is."""
+        return self.among.stabiliser_of(np.flatnonzero(self.among.orbits.keeps[self.number]))
+
+    @property
+    def group(self):
+        """The point group by the stabiliser of the arrangement (`PointGroup`, for linear shapes `InfiniteGroup`)."""
+        return self.stabiliser[0]
+
+    @property
+    def point_group(self) -> dict:
+        """The `point_group` object of JSON; the shape is exact, so tolerance and deviation are zero."""
+        group = self.group
+        return {"symbol": group.symbol, "order": group.order, "tolerance": 0.0, "deviation": 0.0,
+                "chiral": bool(group.chiral), "centrosymmetric": bool(group.centrosymmetric)}
+
+    @cached_property
+    def site_permutations(self) -> np.ndarray:
+        """(h, n) what each operation of `group.image` does to the sites, the axes chosen by the ladder."""
+        group, _, operations = self.stabiliser
+        if len(settings(group.symbol)) > 1:
+            operations = operations[self._setting[1]]
+        return self.among.shape.permutations[operations]
+
+    @cached_property
+    def _setting(self) -> tuple[np.ndarray, np.ndarray, bool]:
+        """(frame, order of the stabiliser's operations in it, decided by rule), axes by the ladder of choice."""
+        group, frame, operations = self.stabiliser
+        positions = self.structure.positions
+        frame = free_frame(group.symbol, frame, positions, self.structure)
+        frame, order, decided = chosen_setting(group, frame, positions, self.structure, None, self._links())
+        return frame, np.arange(len(operations)) if order is None else order, decided
+
+    def _links(self) -> np.ndarray:
+        """The bonds and, for chelates, the backbone from donor to donor, which the ladder of choice must see."""
+        backbone = [(self.donor_atoms[i], self.donor_atoms[j]) for sites in self.chelates
+                    for i, j in combinations(sites, 2) if self.among.shape.neighbours[i, j]]
+        return np.concatenate([self.structure.bonds, np.array(backbone, dtype=int).reshape(-1, 2)])
+
+    @cached_property
     def symmetry(self) -> Symmetry:
-        """The symmetry by the stabiliser of the arrangement, axes by the ladder of choice."""
-        among, structure = self.among, self.structure
-        kept = np.flatnonzero(among.orbits.keeps[self.number])
-        image = among.shape.image
-        matrices, signs = image.matrices[kept], image.determinants[kept]
-        group, frame, order = identified(matrices, signs)
-        if among.shape.group.infinite:
-            group = point_group(_LINE[group.symbol])
-        permutations = self._atom_permutations(among.shape.permutations[kept[order]])
-        frame = free_frame(group.symbol, frame, structure.positions, structure)
+        """The symmetry of the placed structure by the stabiliser of the arrangement, axes by the ladder of choice."""
+        structure, group = self.structure, self.group
+        frame, order, decided = self._setting
+        sites = self.among.shape.permutations[self.stabiliser[2][order]]
         local = structure.positions @ frame.T
-        frame, turned, decided = chosen_setting(group, frame, structure.positions, structure, None, structure.bonds)
-        local = structure.positions @ frame.T
-        if turned is not None:
-            permutations = permutations[turned]
         weights = np.nan_to_num(structure.masses)
         centre = weights @ local / weights.sum() if weights.sum() else np.zeros(3)
-        centre = group.image.matrices.mean(axis=0) @ centre
-        return Symmetry(structure, group, 0.0, 0.0, centre @ frame, frame, local - centre, permutations,
-                        np.zeros(len(structure)), None, decided)
+        centre = group.image.matrices.mean(axis=0) @ centre          # exactly on every element
+        return Symmetry(structure, group, 0.0, 0.0, centre @ frame, frame, local - centre,
+                        self._atom_permutations(sites), np.zeros(len(structure)), None, decided)
 
     def _atom_permutations(self, sites: np.ndarray) -> np.ndarray:
         """(h, N) permutations of the atoms from (h, n) permutations of the sites."""

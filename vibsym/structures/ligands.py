@@ -1,10 +1,11 @@
 """Ligands as a chemist types them: `CO=4`, `Cl=2`, `L=2`, `en(N,N)=3`, with what the later steps need to know of each.
 
-A ligand is an atom (its symbol is that of an element), a linear diatomic (CO, CN, NO, N2, ..., donor first) or a named
-point: a ligand of which only the place counts.  Those in `tables/ligands.csv` have a known donor; another point has one
-where the user names it (`--donor L=P`).  A chelate lists its donors: in parentheses a chain, whose consecutive donors
-stand on neighbouring sites (`dien(N,N',N)`), in square brackets a ring or tripod, of which every two do (`tacn[N,N,N]`).
-Donors of a chelate with the same name are alike, but the middle of a chain of three never equals its ends.
+A ligand is an atom (its symbol is that of an element), a linear diatomic (CO, CN, NO, N2, ..., donor first) or a
+named point: a ligand of which only the place counts.  Those in `tables/ligands.csv` have a known donor; another point
+has one where the user names it (`--donor L=P`).  A chelate lists its donors: in parentheses a chain, whose
+consecutive donors stand on neighbouring sites (`dien(N,N',N)`), in square brackets a ring or tripod, of which every
+two do (`tacn[N,N,N]`). Donors of a chelate with the same name are alike, but the middle of a chain of three never
+equals its ends.
 """
 
 import re
@@ -18,7 +19,8 @@ from vibsym.tables import read_table
 
 MOST_SITES = 9
 HYDROGEN_ISOTOPES = {"D": 2, "T": 3}
-_CHELATE = re.compile(r"(?P<name>[^\s()\[\],=]+)(?:\((?P<chain>[^()\[\]]*,[^()\[\]]*)\)|\[(?P<ring>[^()\[\]]*,[^()\[\]]*)\])")
+_CHELATE = re.compile(r"(?P<name>[^\s()\[\],=]+)"
+                      r"(?:\((?P<chain>[^()\[\]]*,[^()\[\]]*)\)|\[(?P<ring>[^()\[\]]*,[^()\[\]]*)\])")
 _NAME = re.compile(r"[^\s,=\[\]]+")
 
 
@@ -60,7 +62,7 @@ class Ligand:
         if self.form == "diatomic":
             return f"linear, {self.donors[0].element} bound"
         if self.span == "single":
-            return "named point" + (f", donor {self.donors[0].element}" if self.donors[0].element else ", donor not known")
+            return "named point, donor " + (self.donors[0].element or "not known")
         return f"chelate, {self.span} of donors " + ", ".join(donor.name for donor in self.donors)
 
     def donor_text(self, place: int) -> str:
@@ -93,8 +95,8 @@ def read_ligands(texts: Sequence[str], donors: Sequence[str] = (), sites: int | 
             raise VibsymError(f"ligand {name} is given {names.count(name)} times; give it once with the whole count")
     for name in named:
         if name not in used:
-            raise VibsymError(f"--donor {name}={named[name]}: no ligand or donor of that name needs one; the ligands are "
-                              f"{', '.join(names)}")
+            raise VibsymError(f"--donor {name}={named[name]}: no ligand or donor of that name needs one; the ligands "
+                              f"are {', '.join(names)}")
     _check_count(ligands, sites)
     return ligands
 

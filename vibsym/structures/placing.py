@@ -1,8 +1,9 @@
 """A centre and its ligands placed on an ideal shape: the structure of a complex, with tabulated bond lengths.
 
-The centre stands at the origin, each donor on the direction of its site at the sum of the covalent radii, the second atom
-of a linear diatomic behind it.  A named point is a dummy atom (`L` is `XL`), as is every donor of a chelate.  The shape is
-exact, the lengths are those of the tables: good enough for symmetry and for pictures, not for force fields.
+The centre stands at the origin, each donor on the direction of its site at the sum of the covalent radii, the second
+atom of a linear diatomic behind it.  A named point is a dummy atom (`L` is `XL`), as is every donor of a chelate.
+The shape is exact, the lengths are those of the tables: good enough for symmetry and for pictures, not for force
+fields.
 """
 
 from collections.abc import Sequence

@@ -1,9 +1,9 @@
-"""Ideal coordination shapes: the polyhedral symbols of coordination numbers 2 to 9 and how symmetry permutes their sites.
+"""Ideal coordination shapes of coordination numbers 2 to 9, and how symmetry permutes their sites.
 
-A shape is a set of directions from the centre, in the standard orientation of its point group; every operation permutes
-the sites.  Symbols: IUPAC, Nomenclature of Inorganic Chemistry, Recommendations 2005, IR-9.3.2.  The directions, the
-neighbours (which sites a chelate can span) and the free choices stand in `tables/polyhedra.csv`.  Putting ligands on the
-sites is left to `placing.py`, counting the ways of doing so to `arrangements.py`.
+A shape is a set of directions from the centre, in the standard orientation of its point group; every operation
+permutes the sites.  Symbols: IUPAC, Nomenclature of Inorganic Chemistry, Recommendations 2005, IR-9.3.2.  The
+directions, the neighbours (which sites a chelate can span) and the free choices stand in `tables/polyhedra.csv`.
+Putting ligands on the sites is left to `placing.py`, counting the ways of doing so to `arrangements.py`.
 """
 
 import re
@@ -47,12 +47,12 @@ class Shape:
         distance = np.linalg.norm(moved[:, :, None, :] - self.directions, axis=3)
         targets = distance.argmin(axis=2)
         if distance.min(axis=2).max() > CLOSE or np.any(np.sort(targets, axis=1) != np.arange(len(self))):
-            raise VibsymError(f"tables/polyhedra.csv: the sites of {self.symbol} do not have symmetry {self.group.symbol}")
+            raise VibsymError(f"tables/polyhedra.csv: the sites of {self.symbol} do not fit {self.group.symbol}")
         return targets
 
     @cached_property
     def opposite(self) -> tuple[int | None, ...]:
-        """For each site the one trans to it: the only site at the largest angle, if that is at least 150 degrees, or None.
+        """For each site the one trans to it: the only one at the largest angle, if that is at least 150 degrees.
 
         (Trans ligands in the base of the square pyramid are at 150 degrees; in a heptagon two sites are equally far.)
         """

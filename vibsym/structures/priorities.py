@@ -1,9 +1,10 @@
-"""Priority numbers of the donors by the rule of Cahn, Ingold and Prelog, as far as what is known of the ligands decides.
+"""Priority numbers of the donors by the rule of Cahn, Ingold and Prelog, as far as the ligands are known.
 
-The donor of higher atomic number has the higher priority (the lower number); equal elements are told apart by the atoms
-next to them, highest first, where these are known (R. S. Cahn, C. Ingold, V. Prelog, Angew. Chem. Int. Ed. 5, 385 (1966);
-IUPAC, Nomenclature of Inorganic Chemistry, Recommendations 2005, IR-9.3.5).  Deuterium comes before hydrogen.  What stays
-open (a named point without a donor, two phosphanes alike in their next atoms) gives every ranking that is still possible.
+The donor of higher atomic number has the higher priority (the lower number); equal elements are told apart by the
+atoms next to them, highest first, where these are known (R. S. Cahn, C. Ingold, V. Prelog, Angew. Chem. Int. Ed. 5,
+385 (1966); IUPAC, Nomenclature of Inorganic Chemistry, Recommendations 2005, IR-9.3.5).  Deuterium comes before
+hydrogen.  What stays open (a named point without a donor, two phosphanes alike in their next atoms) gives every
+ranking that is still possible.
 """
 
 from collections.abc import Sequence
@@ -38,7 +39,7 @@ def compare(one: Colour, other: Colour, ligands: Sequence[Ligand]) -> int | None
 
 
 def rankings(colours: Sequence[Colour], ligands: Sequence[Ligand]) -> list[tuple[int, ...]]:
-    """Return all orders of the colours, highest priority first, that the rule allows; an empty list if they are too many.
+    """Return all orders of the colours, highest priority first, that the rule allows; none if they are too many.
 
     >>> from vibsym.structures.arrangements import colours_of
     >>> from vibsym.structures.ligands import read_ligands
