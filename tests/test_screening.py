@@ -209,7 +209,7 @@ def test_every_format_tells_the_same():
     page, table = render([result], view), render([result], view, "csv")
     assert "Excluded: trans" in page and "Fitting is not proof" in page and max(map(len, page.splitlines())) <= 80
     assert [row["candidate"] for row in csv.DictReader(table.splitlines())] == ["cis", "trans"]
-    assert "| 1 | cis | C₂v" in render([result], view, "markdown")
+    assert "| 1 | cis | fits | C₂v" in render([result], view, "markdown")
 
 
 def test_impossible_requests():

@@ -130,7 +130,7 @@ def _pairs(items: int, capacity: int, gamma: str) -> str:
 
 
 _WORDS = {
-    "polarised pairs": lambda items, capacity, gamma: _must("coincident line")(items, capacity, gamma)
+    "polarised pairs": lambda items, capacity, gamma: _must("pair")(items, capacity, gamma)
     + " active in both",
     "polarised": _must("line"),
     "pairs": _pairs,

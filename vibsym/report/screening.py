@@ -6,12 +6,11 @@ from vibsym.groups.symbols import typeset
 from vibsym.report.document import Listing, Paragraph, Table, Title
 from vibsym.report.wording import NOTHING, count_text
 
-MOST_DETAILED = 12   # candidates with all their excuses on the page; JSON and CSV hold them all
-_WORD = {"fits": "fits", "strained": "strained", "excluded": "excluded"}
+MOST_DETAILED = 8    # candidates with all their excuses on the page; JSON and CSV hold them all
 
 
 def parts(result: Screening, every: bool = False, **_) -> list:
-    """Return the page; `every` details each candidate instead of the first dozen."""
+    """Return the page; `every` details each candidate instead of the first few."""
     page = [Title("Observed bands against structures", result.observed.source), Paragraph(_seen(result)),
             Paragraph(_verdict(result), strong=True), _ranking(result)]
     detailed = result.candidates if every else result.candidates[:MOST_DETAILED]
@@ -46,10 +45,8 @@ def as_object(result: Screening, **_) -> dict:
 
 
 def lines_text(excuse: Excuse) -> str:
-    """Return the lines of an excuse: `IR 2023, Raman 2024`; pairs broken by chance `IR 2023 = Raman 2024`."""
+    """Return the lines of an excuse: `IR 2023`, a pair `IR 2023 = Raman 2024`."""
     names = [f"{line.spectrum} {line}" for line in excuse.lines]
-    if excuse.kind != "accidental":
-        return ", ".join(names)
     text = names[0]
     for before, line, name in zip(excuse.lines, excuse.lines[1:], names[1:]):
         text += (" = " if (before.spectrum, line.spectrum) == ("IR", "Raman") else ", ") + name
@@ -68,6 +65,9 @@ def _seen(result: Screening) -> str:
     if len(result.observed.spectra) == 2:
         line += (f"; {count_text(numbers['pairs'], 'pair')} within {result.seen.window:g} cm-1 "
                  f"(chance gives {result.seen.chance_mean:.2g} on average)")
+    regions = {each.prediction.region for each in result.candidates} - {""}
+    if regions:
+        line += f"; compared with {', '.join(sorted(regions))}"
     if result.observed.between:
         line += "; between {:g} and {:g} cm-1".format(*result.observed.between)
     return line
@@ -80,10 +80,9 @@ def word_spectrum(word: str) -> str:
 
 def _verdict(result: Screening) -> str:
     """Say at a glance what survives."""
-    by_verdict = {name: [each.prediction.name for each in result.candidates if each.verdict == name] for name in _WORD}
     told = []
-    for name, title in (("fits", "Fits without excuses"), ("strained", "Strained"), ("excluded", "Excluded")):
-        names = by_verdict[name]
+    for verdict, title in (("fits", "Fits without excuses"), ("strained", "Strained"), ("excluded", "Excluded")):
+        names = [each.prediction.name for each in result.candidates if each.verdict == verdict]
         if names:
             more = f" and {len(names) - 8} more" if len(names) > 8 else ""
             told.append(f"{title}: {', '.join(names[:8])}{more}")
@@ -95,13 +94,12 @@ def _ranking(result: Screening) -> Table:
     table = []
     for each in result.candidates:
         counts = each.prediction.counts
-        region = f" {each.prediction.region}" if each.prediction.region else ""
-        table.append((f"{each.rank}{'=' if ranks.count(each.rank) > 1 else ''}", each.prediction.name,
-                      _groups(each) + region, f"{each.score:.2f}", f"{each.weight:g}", str(len(each.unseen)),
-                      f"{counts['infrared']}/{counts['raman']}/{counts['coincident']}", _WORD[each.verdict]))
-    head = ("rank", "structure", "group", "score", "excuses", "unseen", "IR/Raman/both", "verdict")
-    return Table(head, tuple(table), right=frozenset({0, 3, 4, 5, 6}),
-                 heading="Ranked (score = excuses + 1/3 for each unseen band; = marks a tie)")
+        table.append((f"{each.rank}{'=' if ranks.count(each.rank) > 1 else ''}", each.prediction.name, each.verdict,
+                      _groups(each), f"{each.score:.2f}", f"{each.weight:g}", str(len(each.unseen)),
+                      f"{counts['infrared']}/{counts['raman']}/{counts['coincident']}"))
+    head = ("rank", "structure", "verdict", "group", "score", "excuses", "unseen", "predicted")
+    return Table(head, tuple(table), right=frozenset({0, 4, 5, 6, 7}), heading=(
+        "Ranked by score (excuses + 1/3 for each unseen band); predicted IR/Raman/both"))
 
 
 def _groups(candidate: Candidate) -> str:
@@ -111,12 +109,21 @@ def _groups(candidate: Candidate) -> str:
 
 def _details(candidate: Candidate) -> list:
     """The excuses with their proofs, the explanation and what was not seen."""
-    head = f"{candidate.prediction.name} ({_groups(candidate)}): {_WORD[candidate.verdict]}"
-    items = [f"{excuse.kind} {excuse.weight:g}: {lines_text(excuse)}: {excuse.reason}" for excuse in candidate.excuses]
+    head = f"{candidate.prediction.name} ({_groups(candidate)}): {candidate.verdict}"
+    items = _excuses(candidate)
     items.append("explained: " + (_explained(candidate) or NOTHING))
     if candidate.unseen:
         items.append("predicted and not seen: " + _not_seen(candidate))
     return [Listing(tuple(items), head)]
+
+
+def _excuses(candidate: Candidate) -> list[str]:
+    """Return the excuses, those of one kind and one reason told together: weight, lines, reason."""
+    told: dict[tuple[str, str], list[Excuse]] = {}
+    for excuse in candidate.excuses:
+        told.setdefault((excuse.kind, excuse.reason), []).append(excuse)
+    return [f"{kind} {sum(each.weight for each in same):g}: {', '.join(map(lines_text, same))}: {reason}"
+            for (kind, reason), same in told.items()]
 
 
 def _explained(candidate: Candidate) -> str:

@@ -1,0 +1,74 @@
+"""`vibsym screen` as it is typed: samples, options, one line and exit code 1 for what cannot be used."""
+
+import json
+from pathlib import Path
+
+import pytest
+from click.testing import CliRunner
+
+from vibsym.cli.main import cli
+
+SAMPLES = Path(__file__).parent.parent / "samples"
+TUBE = [str(SAMPLES / f"tube-clf3-{name}.xyz") for name in ("triangle", "pyramid", "t")]
+BANDS = ["--bands", str(SAMPLES / "tube-clf3-bands.csv")]
+
+
+def run(*arguments: str):
+    return CliRunner().invoke(cli, ["screen", *arguments])
+
+
+def test_is_the_proposed_geometry_tenable():
+    answer = json.loads(run(*TUBE, *BANDS, "--format", "json").stdout)
+    verdicts = {each["point_group"]["symbol"]: each["verdict"] for each in answer["candidates"]}
+    assert verdicts == {"C2v": "fits", "C3v": "strained", "D3h": "excluded"}
+    assert [each["rank"] for each in answer["candidates"]] == [1, 2, 3]
+    for each in answer["candidates"]:
+        weight = sum(excuse["weight"] for excuse in each["excuses"])
+        assert each["score"] == pytest.approx(weight + len(each["unseen"]) / 3, abs=1e-5)
+
+
+def test_the_page_begins_with_the_verdict_and_ends_with_the_caution():
+    page = run(*TUBE, *BANDS).stdout
+    assert page.index("Fits without excuses: tube-clf3-t") < page.index("Ranked by score")
+    assert page.rstrip().endswith("one that was not proposed may fit as well.")
+    assert max(map(len, page.splitlines())) <= 80
+
+
+def test_two_lists_and_a_region(tmp_path):
+    (tmp_path / "ir").write_text("wavenumber,strength\n756,s\n701,vs\n531,w\n443,m\n326,m\n")
+    (tmp_path / "raman").write_text("wavenumber;polarisation\n755;0,12(2)\n529;p\n440;dp\n")
+    both = ("--ir", str(tmp_path / "ir"), "--raman", str(tmp_path / "raman"), "--format", "json")
+    one = json.loads(run(*TUBE, *both).stdout)
+    other = json.loads(run(*TUBE, *BANDS, "--format", "json").stdout)
+    assert [each["excuses"] for each in one["candidates"]] == [each["excuses"] for each in other["candidates"]]
+    part = json.loads(run(*TUBE, *both, "--between", "600", "800").stdout)
+    assert (part["bands"]["infrared"], part["bands"]["raman"], part["bands"]["pairs"]) == (2, 1, 1)
+    wide = json.loads(run(*TUBE, *both, "--window", "0.5").stdout)
+    assert wide["bands"]["pairs"] == 0 and wide["bands"]["window"] == 0.5
+
+
+def test_an_output_file_receives_the_page(tmp_path):
+    target = tmp_path / "page.txt"
+    answer = run(*TUBE, *BANDS, "--output", str(target))
+    assert answer.exit_code == 0 and answer.stdout == "" and "Excluded: tube-clf3-triangle" in target.read_text()
+
+
+@pytest.mark.parametrize("arguments, reason", [
+    ((*TUBE,), "no observed bands"),
+    ((*TUBE, "--bands", "missing.csv"), "missing.csv: cannot be read"),
+    (("missing.xyz", *BANDS), "missing.xyz"),
+    ((*TUBE, *BANDS, "--window", "-1"), "window -1"),
+    ((*TUBE, *BANDS, "--allow", "-1"), "--allow -1"),
+    ((*TUBE, *BANDS, "--between", "800", "600"), "--between 800 600"),
+    ((*TUBE, *BANDS, "--local"), "--local needs"),
+    ((TUBE[0], *BANDS, "--mixture"), "--mixture needs at least two"),
+    ((*TUBE, *BANDS, "--tolerance", "7"), "tolerance"),
+    ((*TUBE, "--bands", TUBE[0]), "no column wavenumber")])
+def test_what_cannot_be_done_is_one_line(arguments, reason):
+    answer = run(*arguments)
+    assert answer.exit_code == 1 and reason in answer.stderr and answer.stderr.count("\n") == 1 and not answer.stdout
+
+
+def test_an_unreadable_structure_stops_before_computing():
+    answer = run(TUBE[0], "missing.xyz", *BANDS)
+    assert answer.exit_code == 1 and answer.stdout == ""
