@@ -1,4 +1,6 @@
-"""Structures made from orbits of a point group, in any pose: what the tests of the finder, the ladder and the axes start from."""
+"""Structures made from orbits of a point group, in any pose: what the tests of the finder, the ladder and the axes
+start from.
+"""
 
 import numpy as np
 
@@ -48,7 +50,8 @@ def orbit_structure(symbol, rng, orbits=3, special=False, apart=0.9):
     radius = 1.5 + 0.9 * group.order ** 0.5
     # rotations (but the identity) fix a line, mirrors a plane
     traces, determinants = group.matrices.trace(axis1=1, axis2=2), np.linalg.det(group.matrices)
-    fixing = np.flatnonzero(((determinants > 0) & (traces < 3 - 1e-9)) | (np.abs(traces - 1) + np.abs(determinants + 1) < 1e-9))
+    mirrors = np.abs(traces - 1) + np.abs(determinants + 1) < 1e-9
+    fixing = np.flatnonzero(((determinants > 0) & (traces < 3 - 1e-9)) | mirrors)
     stabilisers = rng.permutation(fixing)[:2] if special else []
     wanted = [None] * orbits + list(stabilisers)
     while wanted:

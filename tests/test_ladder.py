@@ -26,7 +26,9 @@ def rungs_of(result):
 
 
 def check_ladder(result):
-    """Orders and deviations rise, each rung holds the one below, and every rung is the group it says within its deviation."""
+    """Orders and deviations rise, each rung holds the one below, and every rung is the group it says within its
+    deviation.
+    """
     orders = [np.inf if rung.symmetry.group.infinite else rung.symmetry.group.order for rung in result.rungs]
     deviations = [rung.deviation for rung in result.rungs]
     assert all(a < b or (a == b == np.inf) for a, b in pairwise(orders))

@@ -1,8 +1,9 @@
 """Where each axis points, in words a chemist can check, and which labels another choice of axes would exchange.
 
-Labels such as B1 and B2 mean nothing without the axes (conventions.md, "Axes"): words name the atoms and bonds that an axis passes
-through, or the plane it stands on. They are computed only when asked for. Known clashes with print are told where they apply:
-R. S. Mulliken, J. Chem. Phys. 23, 1997 (1955) against T. Shimanouchi, NSRDS-NBS 39 (1972), and common practice for porphyrins.
+Labels such as B1 and B2 mean nothing without the axes (conventions.md, "Axes"): words name the atoms and bonds that
+an axis passes through, or the plane it stands on. They are computed only when asked for. Known clashes with print are
+told where they apply: R. S. Mulliken, J. Chem. Phys. 23, 1997 (1955) against T. Shimanouchi, NSRDS-NBS 39 (1972), and
+common practice for porphyrins.
 """
 
 from collections import Counter
@@ -18,7 +19,9 @@ MOST_NAMES = 4     # atoms named before "and n more"
 
 @dataclass(frozen=True)
 class AxisChoice:
-    """`words` by axis; `exchange`: labels that the other choice swaps; `decided`: whether a rule made the choice; `notes`."""
+    """`words` by axis; `exchange`: labels that the other choice swaps; `decided`: whether a rule made the choice;
+    `notes`.
+    """
 
     words: dict
     exchange: tuple[str, ...]
@@ -26,7 +29,8 @@ class AxisChoice:
     notes: tuple[str, ...]
 
     def to_dict(self) -> dict:
-        return {"axes": dict(self.words), "exchange": list(self.exchange), "decided": self.decided, "notes": list(self.notes)}
+        return {"axes": dict(self.words), "exchange": list(self.exchange), "decided": self.decided,
+                "notes": list(self.notes)}
 
 
 def axis_words(symmetry: Symmetry, bonds=None) -> AxisChoice:
@@ -89,7 +93,8 @@ class _View:
         order = int(proper.sum())
         if order == 1:
             return ""
-        # in D3d, D5d the axis is named by its rotation, in D2d, D4d, S4, Td by the rotation-reflection (conventions.md)
+        # in D3d, D5d the axis is named by its rotation, in D2d, D4d, S4, Td by the rotation-reflection
+        # (conventions.md)
         named = self.group.symbol[0] in "ST" or (self.group.symbol[-1] == "d" and order % 2 == 0)
         if named and improper.sum() == order and not self._mirror(direction):
             return f"S{2 * order} axis"
@@ -172,7 +177,8 @@ def _clashes(symmetry: Symmetry, view: _View) -> list[str]:
     symbol, counts = symmetry.group.symbol, Counter(symmetry.structure.symbols)
     carbon, total = counts["C"], len(symmetry.structure)
     if symbol == "C2v" and any(view.flat):
-        return ["in-plane antisymmetric species are B2 here (Mulliken 1955); Shimanouchi's tables (NSRDS-NBS 39) call them B1"]
+        return ["in-plane antisymmetric species are B2 here (Mulliken 1955); "
+                "Shimanouchi's tables (NSRDS-NBS 39) call them B1"]
     if symbol == "D2h" and any(view.flat) and carbon == 2 and total == 6:
         return ["Shimanouchi's tables (NSRDS-NBS 39) put z perpendicular to the plane and x along C=C for ethylenes"]
     if symbol == "D2h" and counts["B"] == 2 and total == 8:
@@ -180,7 +186,8 @@ def _clashes(symmetry: Symmetry, view: _View) -> list[str]:
     if symbol == "D2h" and any(view.flat) and carbon == 10 and total == 18:
         return ["print uses several choices of axes for naphthalene; compare them before comparing B labels"]
     if symbol == "D4h" and carbon >= 20 and counts["N"] >= 4:
-        return ["for metalloporphyrins the literature puts C2' through N; here it passes through the greater number of atoms"]
+        return ["for metalloporphyrins the literature puts C2' through N; "
+                "here it passes through the greater number of atoms"]
     if symbol == "D4h" and total == 5 and any(view.flat):
         return ["for square-planar MX4 print has both choices of C2'; here it passes through the X atoms"]
     return []

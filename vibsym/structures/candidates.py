@@ -1,9 +1,10 @@
 """Operations that nearly carry a structure into itself, each with its permutation of the atoms.
 
-An orthogonal map about the centroid is fixed by where two atoms a, b go (not in line with the centroid) and by its determinant. If the
-structure lies within t of one that has a group, each operation of the group leaves residuals |R x_i - x_pi(i)| of at most 2t, so a goes
-to a like atom whose radius differs by at most 2t, and |ab| changes by at most 4t. All such pairs are tried at once; what survives is
-fitted by least squares (W. Kabsch, Acta Cryst. A 32, 922, 1976). Whether operations make a group is for `subsets.py` to tell.
+An orthogonal map about the centroid is fixed by where two atoms a, b go (not in line with the centroid) and by its
+determinant. If the structure lies within t of one that has a group, each operation of the group leaves residuals |R
+x_i - x_pi(i)| of at most 2t, so a goes to a like atom whose radius differs by at most 2t, and |ab| changes by at most
+4t. All such pairs are tried at once; what survives is fitted by least squares (W. Kabsch, Acta Cryst. A 32, 922,
+1976). Whether operations make a group is for `subsets.py` to tell.
 """
 
 from dataclasses import dataclass
@@ -21,7 +22,9 @@ MANY_ATOMS = 100               # above, most operations are made as products of 
 
 @dataclass(frozen=True)
 class Operations:
-    """Candidates (C): permutations (C, N), determinants (C,), fitted matrices (C, 3, 3), largest residuals (C,), the pair of atoms."""
+    """Candidates (C): permutations (C, N), determinants (C,), fitted matrices (C, 3, 3), largest residuals (C,), the
+    pair of atoms.
+    """
 
     permutations: np.ndarray
     signs: np.ndarray
@@ -30,7 +33,9 @@ class Operations:
     pair: tuple
 
     def chosen(self, indices):
-        return Operations(self.permutations[indices], self.signs[indices], self.matrices[indices], self.residuals[indices], self.pair)
+        """Return some of the operations."""
+        return Operations(self.permutations[indices], self.signs[indices], self.matrices[indices],
+                          self.residuals[indices], self.pair)
 
 
 def shells(radii, kinds, reach):
@@ -59,7 +64,9 @@ def reference_pair(points, kinds, radii, sizes, tolerance):
 
 
 def _frames(first, second):
-    """Return (P, 3, 3) right-handed frames (rows) whose first axis points to `first` and whose second to the rest of `second`."""
+    """Return (P, 3, 3) right-handed frames (rows) whose first axis points to `first` and whose second to the rest of
+    `second`.
+    """
     frames = np.empty((len(first), 3, 3))
     e1 = first / np.sqrt((first * first).sum(axis=1))[:, None]
     e2 = second - (second * e1).sum(axis=1)[:, None] * e1
@@ -110,9 +117,11 @@ def _prune(points, kinds, radii, sizes, maps, limits, tolerance):
 
 
 def find_operations(points, kinds, tolerance, apart):
-    """Return the Operations that leave residuals up to about 2 * tolerance (Å); `points` (N, 3) have their centroid at the origin.
+    """Return the Operations that leave residuals up to about 2 * tolerance (Å); `points` (N, 3) have their centroid
+    at the origin.
 
-    `apart` is the shortest distance between two atoms: when it is large against the tolerance, the nearest atom is the right one.
+    `apart` is the shortest distance between two atoms: when it is large against the tolerance, the nearest atom is
+    the right one.
     """
     radii = np.sqrt((points * points).sum(axis=1))
     sizes = shells(radii, kinds, 2 * tolerance)

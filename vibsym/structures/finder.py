@@ -1,9 +1,10 @@
 """Finding the point group of a structure at a tolerance.
 
-A structure has group G at tolerance t when its deviation from G, the largest distance of an atom from its group-averaged position with
-the elements placed by least squares, is at most t (Å). The largest such group is sought: candidate operations (`candidates.py`), the
-closed sets among them (`subsets.py`), their best placement (`placement.py`), symbol and standard frame (`identify.py`), axes by the
-ladder of choice (`settings.py`). Single atoms and linear molecules are exact cases (`linear.py`).
+A structure has group G at tolerance t when its deviation from G, the largest distance of an atom from its
+group-averaged position with the elements placed by least squares, is at most t (Å). The largest such group is sought:
+candidate operations (`candidates.py`), the closed sets among them (`subsets.py`), their best placement
+(`placement.py`), symbol and standard frame (`identify.py`), axes by the ladder of choice (`settings.py`). Single
+atoms and linear molecules are exact cases (`linear.py`).
 """
 
 from dataclasses import dataclass
@@ -40,8 +41,8 @@ class Centred:
 def find_symmetry(structure, tolerance: float = DEFAULT_TOLERANCE, axes: str | None = None, bonds=None) -> Symmetry:
     """Return the largest point group within `tolerance` (Å) of a structure, with its standard frame.
 
-    `axes` makes another choice of axes where there is one ("swap", or for C2v, D2, D2h an order such as "yxz"); `bonds` (B, 2) are
-    used by the ladder of choice, by default those of `find_bonds`.
+    `axes` makes another choice of axes where there is one ("swap", or for C2v, D2, D2h an order such as "yxz");
+    `bonds` (B, 2) are used by the ladder of choice, by default those of `find_bonds`.
     """
     centred = centre(structure_of(structure))
     tolerance = legal_tolerance(tolerance, centred.shortest)
@@ -59,7 +60,9 @@ def centre(structure) -> Centred:
 
 
 def legal_tolerance(tolerance, shortest: float) -> float:
-    """Return the tolerance as a number, or raise: it must lie between zero and the smaller of 0.5 Å and half the shortest distance."""
+    """Return the tolerance as a number, or raise: it must lie between zero and the smaller of 0.5 Å and half the
+    shortest distance.
+    """
     try:
         value = float(tolerance)
     except (TypeError, ValueError):
@@ -93,7 +96,9 @@ def largest_group(centred: Centred, tolerance: float) -> Placement:
 
 
 def placed(centred: Centred, operations: Operations, table) -> Placement | None:
-    """Return the placement of a closed set of operations, None when the permutations of all atoms do not multiply alike."""
+    """Return the placement of a closed set of operations, None when the permutations of all atoms do not multiply
+    alike.
+    """
     if not consistent(operations, table):
         return None
     return place(centred.points, operations.permutations, operations.signs, operations.matrices, table)
@@ -108,7 +113,9 @@ def place_subset(centred: Centred, operations: Operations, table, members) -> Pl
 
 
 def _largest_subset(centred, operations, table, tolerance):
-    """Try the closed subsets; the sum of squared shifts never falls from a group to a larger one, so it prunes safely."""
+    """Try the closed subsets; the sum of squared shifts never falls from a group to a larger one, so it prunes
+    safely.
+    """
     known = {}
 
     def accept(members):
@@ -150,7 +157,9 @@ def symmetry_of(centred: Centred, found, tolerance: float, axes: str | None = No
 
 
 def mass_centre(positions, masses, matrices):
-    """Return the centre of mass (dummy atoms have none) of (N, 3) positions, put exactly on every element of the group."""
+    """Return the centre of mass (dummy atoms have none) of (N, 3) positions, put exactly on every element of the
+    group.
+    """
     weights = np.where(masses > 0, masses, 0.0)
     total = weights.sum()
     centre = weights @ positions / total if total > 0 else np.zeros(3)

@@ -1,9 +1,11 @@
-"""The Schoenflies symbol of a set of orthogonal matrices that is a group, and a frame in which it stands as in `point_group(symbol)`.
+"""The Schoenflies symbol of a set of orthogonal matrices that is a group, and a frame in which it stands as in
+`point_group(symbol)`.
 
-The rotations alone are C_n (one of order n = their number), D_n (largest order n = half their number), T, O or I; the rest follows from
-the inversion and the number of mirror planes (the table in any textbook, e.g. F. A. Cotton, Chemical Applications of Group Theory,
-ch. 3). The frame follows the standard orientation of vibsym.groups: z principal axis; sigma_v holds xz; C2' along x; cubic: C4, S4 or
-C2 along x, y, z; icosahedral: C2 along x, y, z and C5 through (0, 1, phi).
+The rotations alone are C_n (one of order n = their number), D_n (largest order n = half their number), T, O or I; the
+rest follows from the inversion and the number of mirror planes (the table in any textbook, e.g. F. A. Cotton,
+Chemical Applications of Group Theory, ch. 3). The frame follows the standard orientation of vibsym.groups: z
+principal axis; sigma_v holds xz; C2' along x; cubic: C4, S4 or C2 along x, y, z; icosahedral: C2 along x, y, z and C5
+through (0, 1, phi).
 """
 
 import numpy as np
@@ -33,7 +35,8 @@ def schoenflies(matrices, signs) -> str:
         return f"D{largest}h" if mirrors == largest + 1 else f"D{largest}d"
     letter = _POLYHEDRAL.get(count)
     if letter is None:
-        raise VibsymError(f"{count} rotations, the largest of order {largest}, are no point group; this is an error of vibsym")
+        raise VibsymError(f"{count} rotations, the largest of order {largest}, are no point group; "
+                          "this is an error of vibsym")
     if not improper:
         return letter
     if letter == "T":
@@ -52,7 +55,8 @@ def _cyclic(n, improper, mirrors, inversion):
 
 
 def axes_of(matrices, signs):
-    """Return (h, 3) unit vectors along the axis of each operation (of R for det R = 1, of -R for det R = -1; a mirror's normal).
+    """Return (h, 3) unit vectors along the axis of each operation (of R for det R = 1, of -R for det R = -1; a
+    mirror's normal).
 
     Half-turns give R + 1 = 2 n n^T, other angles the antisymmetric part; the identity and the inversion give zero.
     """
@@ -69,7 +73,9 @@ def axes_of(matrices, signs):
 
 
 def standard_frame(symbol, matrices, signs):
-    """Return (3, 3) rows x, y, z in which the group stands in its standard orientation (one of several equally good ones)."""
+    """Return (3, 3) rows x, y, z in which the group stands in its standard orientation (one of several equally good
+    ones).
+    """
     axes = axes_of(matrices, signs)
     cosines = (matrices.trace(axis1=1, axis2=2) * signs - 1) / 2
     half_turns = axes[(signs > 0) & (np.abs(cosines + 1) < _ROUND)]
@@ -114,7 +120,9 @@ def _polyhedral_frame(symbol, axes, cosines, signs, half_turns):
 
 
 def matched(group, frame, matrices):
-    """Return (h,) which of `matrices` stands for each of group.matrices in the frame, or None when the frame does not fit."""
+    """Return (h,) which of `matrices` stands for each of group.matrices in the frame, or None when the frame does not
+    fit.
+    """
     turned = frame @ matrices @ frame.T
     likeness = group.matrices.reshape(-1, 9) @ turned.reshape(-1, 9).T
     best = likeness.argmax(axis=1)

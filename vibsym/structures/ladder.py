@@ -1,9 +1,9 @@
 """The ladder: the group found, then the higher groups that the structure approaches, each with its deviation.
 
-Only sets of operations that close are groups, so the rungs are closed sets among the operations found at the largest legal
-tolerance: the smaller of 0.5 Å and half the shortest distance between atoms. A rung has a higher order than the one below it, a
-larger deviation, and holds it. The suggested rung is the one before the largest ratio of successive deviations, a deviation below
-0.005 Å counting as 0.005 (conventions.md, "Tolerances").
+Only sets of operations that close are groups, so the rungs are closed sets among the operations found at the largest
+legal tolerance: the smaller of 0.5 Å and half the shortest distance between atoms. A rung has a higher order than the
+one below it, a larger deviation, and holds it. The suggested rung is the one before the largest ratio of successive
+deviations, a deviation below 0.005 Å counting as 0.005 (conventions.md, "Tolerances").
 """
 
 from dataclasses import dataclass, replace
@@ -77,8 +77,11 @@ def ladder(structure, tolerance: float = DEFAULT_TOLERANCE, axes: str | None = N
     return Ladder(tuple(map(Rung, symmetries, spoilers)), _suggested([s.deviation for s in symmetries]))
 
 
-def as_group(structure, symbol: str, tolerance: float = DEFAULT_TOLERANCE, axes: str | None = None, bonds=None) -> Symmetry:
-    """Return the symmetry of a structure in the group `symbol`, one it has or approaches; another is an error with the rungs."""
+def as_group(structure, symbol: str, tolerance: float = DEFAULT_TOLERANCE, axes: str | None = None,
+             bonds=None) -> Symmetry:
+    """Return the symmetry of a structure in the group `symbol`, one it has or approaches; another is an error with
+    the rungs.
+    """
     wanted = point_group(symbol).symbol
     centred = centre(structure_of(structure))
     tolerance = legal_tolerance(tolerance, centred.shortest)
@@ -94,7 +97,8 @@ def as_group(structure, symbol: str, tolerance: float = DEFAULT_TOLERANCE, axes:
 
 
 def _tolerance_of(deviation: float, tolerance: float) -> float:
-    """Return the tolerance at which a rung is reached: the one given, or its deviation rounded up to the next 0.01 Å."""
+    """Return the tolerance at which a rung is reached: the one given, or its deviation rounded up to the next 0.01 Å.
+    """
     return max(tolerance, float(np.ceil(deviation * 100 - 1e-9) / 100), deviation)
 
 
@@ -113,7 +117,9 @@ def largest_tolerance(centred: Centred) -> float:
 
 
 def _climb(centred: Centred, tolerance: float):
-    """Return the placement found at the tolerance, and those of all higher groups up to the largest tolerance that hold it."""
+    """Return the placement found at the tolerance, and those of all higher groups up to the largest tolerance that
+    hold it.
+    """
     found = line_within(centred, tolerance)
     limit = max(tolerance, largest_tolerance(centred))
     if len(centred.points) == 1:
@@ -165,7 +171,8 @@ def _higher(centred, operations, start, found, limit) -> list[Placement]:
 
 
 def _holds(larger, smaller) -> bool:
-    """Tell whether the larger group has all operations of the smaller; on a line atoms stay, or all turn end for end."""
+    """Tell whether the larger group has all operations of the smaller; on a line atoms stay, or all turn end for end.
+    """
     if isinstance(smaller, LinearPlacement):
         return isinstance(larger, LinearPlacement)
     if isinstance(larger, LinearPlacement):
@@ -180,10 +187,11 @@ def _operation_keys(placement) -> set:
 
 
 def _nested(found, higher) -> list:
-    """Return the rungs: the group found, then higher groups of growing order and deviation, each holding the one before.
+    """Return the rungs: the group found, then higher groups of growing order and deviation, each holding the one
+    before.
 
-    From the top down: the best group of the highest order, then the best of each lower order that the rung above holds and whose
-    deviation is smaller.
+    From the top down: the best group of the highest order, then the best of each lower order that the rung above
+    holds and whose deviation is smaller.
     """
     higher = [p for p in higher if _holds(p, found)]
     rungs, above, ceiling = [], None, np.inf
@@ -204,7 +212,9 @@ def _height(placement) -> tuple:
 
 
 def _spoilers(shifts, tolerance: float) -> tuple[int, ...]:
-    """Return the atoms (from 1) that must move most to reach the next rung: more than half its deviation and than the tolerance."""
+    """Return the atoms (from 1) that must move most to reach the next rung: more than half its deviation and than the
+    tolerance.
+    """
     least = max(0.5 * shifts.max() + 1e-6, min(tolerance, shifts.max()))
     return tuple((np.flatnonzero(shifts >= least) + 1).tolist())
 

@@ -1,7 +1,8 @@
 """Linear molecules and single atoms: C∞v, D∞h and Kh as what they are, not as large n.
 
-A structure is linear when every atom lies within the tolerance of the least-squares axis. It is D∞h when the atoms also map onto
-themselves end for end; the deviation is the largest distance of an atom from its place on the averaged line.
+A structure is linear when every atom lies within the tolerance of the least-squares axis. It is D∞h when the atoms
+also map onto themselves end for end; the deviation is the largest distance of an atom from its place on the averaged
+line.
 """
 
 from dataclasses import dataclass
@@ -15,7 +16,9 @@ from vibsym.structures.identify import completed
 
 @dataclass(frozen=True)
 class LinearPlacement:
-    """C∞v, D∞h or Kh placed in a structure: averaged positions (N, 3), axis, permutation that turns the line around or None."""
+    """C∞v, D∞h or Kh placed in a structure: averaged positions (N, 3), axis, permutation that turns the line around
+    or None.
+    """
 
     symbol: str
     points: np.ndarray
@@ -35,7 +38,9 @@ class LinearPlacement:
 
 
 def principal_line(points):
-    """Return the unit vector of the line through the origin with the least sum of squared distances from (N, 3) points."""
+    """Return the unit vector of the line through the origin with the least sum of squared distances from (N, 3)
+    points.
+    """
     return np.linalg.svd(points, full_matrices=False)[2][0]
 
 

@@ -1,8 +1,8 @@
 """Which atom an operation brings onto which: images of atoms matched to like atoms.
 
-An operation M moves atom i to M x_i; the atom of the same kind nearest to that place is where it goes. Below a thousand atoms the
-distances are laid out in full, above it a k-d tree (scipy) finds the neighbours. The kind of an atom is a fourth coordinate, so
-far apart for unlike atoms that they never match.
+An operation M moves atom i to M x_i; the atom of the same kind nearest to that place is where it goes. Below a
+thousand atoms the distances are laid out in full, above it a k-d tree (scipy) finds the neighbours. The kind of an
+atom is a fourth coordinate, so far apart for unlike atoms that they never match.
 """
 
 import numpy as np

@@ -1,9 +1,10 @@
 """Placing a group's elements in a structure by least squares, and averaging the atoms over the group.
 
-The operations arrive as fits to one permutation each; they are first made an exact representation by averaging over the group,
-R_k <- orthogonal part of (1/h) sum_j R_j^T R_jk, which converges fast (K. Grove, H. Karcher, E. Ruh, Math. Ann. 211, 7, 1974, from
-memory). A common turn of all elements then minimises the sum of squared shifts; with A_k = sum_i x_pi_k(i) x_i^T it maximises
-sum_k tr(R_k^T A_k), by Newton steps whose cost does not depend on the number of atoms.
+The operations arrive as fits to one permutation each; they are first made an exact representation by averaging over
+the group, R_k <- orthogonal part of (1/h) sum_j R_j^T R_jk, which converges fast (K. Grove, H. Karcher, E. Ruh, Math.
+Ann. 211, 7, 1974, from memory). A common turn of all elements then minimises the sum of squared shifts; with A_k =
+sum_i x_pi_k(i) x_i^T it maximises sum_k tr(R_k^T A_k), by Newton steps whose cost does not depend on the number of
+atoms.
 """
 
 from dataclasses import dataclass
@@ -11,7 +12,8 @@ from dataclasses import dataclass
 import numpy as np
 
 EXACT = 1e-7
-_TURNS = np.array([[[0, 0, 0], [0, 0, -1], [0, 1, 0]], [[0, 0, 1], [0, 0, 0], [-1, 0, 0]], [[0, -1, 0], [1, 0, 0], [0, 0, 0]]], dtype=float)
+_TURNS = np.array([[[0.0, 0, 0], [0, 0, -1], [0, 1, 0]], [[0, 0, 1], [0, 0, 0], [-1, 0, 0]],
+                   [[0, -1, 0], [1, 0, 0], [0, 0, 0]]])
 
 
 @dataclass(frozen=True)
@@ -34,7 +36,8 @@ class Placement:
 
 
 def fitted_maps(sums, signs):
-    """Return (k, 3, 3) orthogonal maps R of determinant `signs` that maximise tr(R^T A_k): the least-squares fits to permutations.
+    """Return (k, 3, 3) orthogonal maps R of determinant `signs` that maximise tr(R^T A_k): the least-squares fits to
+    permutations.
 
     A = U D V^T gives R = U diag(1, 1, +-1) V^T (W. Kabsch, Acta Cryst. A 32, 922, 1976; A 34, 827, 1978).
     """
@@ -51,7 +54,9 @@ def orthogonal_part(matrices):
 
 
 def exact_representation(matrices, table):
-    """Return (h, 3, 3) matrices that multiply exactly as the table says, near the given ones; None when there are none near."""
+    """Return (h, 3, 3) matrices that multiply exactly as the table says, near the given ones; None when there are
+    none near.
+    """
     order = len(matrices)
     for _ in range(30):
         # one product of (3, 3h) with (3h, 3h): for every k the sum over j of R_j^T R_jk

@@ -1,9 +1,10 @@
 """Which of the equally good frames of a group labels its species: the ladder of choice (conventions.md, "Axes").
 
-Only C2v, D2, D2h, C(2k)v, D(2k), D(2k)h (k >= 2) leave a choice that labels depend on. Between elements of one kind the ladder asks
-for (1) more atoms on it; (2) more bonds cut by it or lying in it; (3) the larger sum of atomic numbers on it; (4) the larger sum of
-masses on it; (5) the farther nearest atom off it, then the next nearest. Sources: R. S. Mulliken, J. Chem. Phys. 23, 1997 (1955);
-IUPAC, Pure Appl. Chem. 69, 1641 (1997); the rest is vibsym's own rule.
+Only C2v, D2, D2h, C(2k)v, D(2k), D(2k)h (k >= 2) leave a choice that labels depend on. Between elements of one kind
+the ladder asks for (1) more atoms on it; (2) more bonds cut by it or lying in it; (3) the larger sum of atomic
+numbers on it; (4) the larger sum of masses on it; (5) the farther nearest atom off it, then the next nearest.
+Sources: R. S. Mulliken, J. Chem. Phys. 23, 1997 (1955); IUPAC, Pure Appl. Chem. 69, 1641 (1997); the rest is vibsym's
+own rule.
 """
 
 import re
@@ -23,7 +24,8 @@ X, Y, Z = np.eye(3)
 
 @cache
 def settings(symbol: str) -> dict[str, np.ndarray]:
-    """Return the frames that labels can tell apart, as turns (3, 3) of the default one; a single entry where there is no choice.
+    """Return the frames that labels can tell apart, as turns (3, 3) of the default one; a single entry where there is
+    no choice.
 
     >>> list(settings("C2v")), list(settings("D4h")), list(settings("D3h"))
     (['xyz', 'yxz'], ['xyz', 'swap'], ['xyz'])
@@ -41,7 +43,9 @@ def settings(symbol: str) -> dict[str, np.ndarray]:
 
 
 def axes_order(name: str) -> np.ndarray:
-    """Return the proper rotation whose new x, y, z are the old ones in the order `name`, one of them reversed where it must be."""
+    """Return the proper rotation whose new x, y, z are the old ones in the order `name`, one of them reversed where
+    it must be.
+    """
     turn = np.eye(3)[["xyz".index(letter) for letter in name]]
     if np.linalg.det(turn) < 0:
         turn[1] *= -1
@@ -49,7 +53,9 @@ def axes_order(name: str) -> np.ndarray:
 
 
 def requested(symbol: str, axes: str | None) -> str | None:
-    """Return the name of the setting asked for, None for the default; anything impossible is an error that names what is possible."""
+    """Return the name of the setting asked for, None for the default; anything impossible is an error that names what
+    is possible.
+    """
     if axes is None:
         return None
     possible = settings(symbol)
@@ -63,19 +69,23 @@ def requested(symbol: str, axes: str | None) -> str | None:
     names = [key for key in possible if key != "xyz"]
     if symbol == "C2v":
         names = ["swap", *names]
-    raise VibsymError(f"--axes '{axes}': in {symbol} the choice is {', '.join(names)} (new x, y, z among the default ones)"
-                      if "swap" not in possible else f"--axes '{axes}': in {symbol} the choice is swap")
+    meaning = "" if names == ["swap"] else " (the new x, y, z among the default ones)"
+    raise VibsymError(f"--axes '{axes}': in {symbol} the choice is {', '.join(names)}{meaning}")
 
 
 class Elements:
-    """Measures axes and planes through the origin against the atoms and bonds of a structure (positions in one frame)."""
+    """Measures axes and planes through the origin against the atoms and bonds of a structure (positions in one
+    frame).
+    """
 
     def __init__(self, positions, numbers, masses, bonds):
         self.positions, self.numbers, self.bonds = positions, numbers, bonds
         self.masses = np.where(masses > 0, masses, 0.0)
 
     def axis(self, direction):
-        """Return the ladder's values for an axis: atoms, bonds, atomic numbers, mass, then distances of the atoms off it."""
+        """Return the ladder's values for an axis: atoms, bonds, atomic numbers, mass, then distances of the atoms off
+        it.
+        """
         along = self.positions @ direction
         away = self.positions - np.outer(along, direction)
         distances = np.sqrt((away * away).sum(axis=1))
@@ -118,7 +128,9 @@ def compare(first, second) -> int:
 
 
 def criteria(symbol: str, elements: Elements, frame) -> list:
-    """Return the list of ladder values, most important first, that a frame offers for the elements its group leaves to choose."""
+    """Return the list of ladder values, most important first, that a frame offers for the elements its group leaves
+    to choose.
+    """
     x, y, z = frame
     if symbol == "C2v":
         return [elements.plane(x)]
@@ -146,7 +158,8 @@ def _compare_lists(first, second) -> int:
 def chosen_setting(group, frame, positions, structure, axes=None, bonds=None):
     """Return (frame, order of operations or None, decided) of the setting asked for, or first on the ladder of choice.
 
-    `order` (h,): operation k of the group in the new frame is operation order[k] of the old one. `positions` (N, 3) are symmetrised.
+    `order` (h,): operation k of the group in the new frame is operation order[k] of the old one. `positions` (N, 3)
+    are symmetrised.
     """
     possible = settings(group.symbol)
     name = requested(group.symbol, axes)
@@ -158,23 +171,40 @@ def chosen_setting(group, frame, positions, structure, axes=None, bonds=None):
         bonds = find_bonds(structure)
     elements = Elements(positions, structure.numbers, structure.masses, np.asarray(bonds, dtype=np.intp).reshape(-1, 2))
     values = {key: criteria(group.symbol, elements, turn @ frame) for key, turn in possible.items()}
-    best, decided = "xyz", True
+    tied = ["xyz"]
     for key in list(possible)[1:]:
-        verdict = _compare_lists(values[key], values[best])
-        if verdict > 0:
-            best, decided = key, True
-        elif verdict == 0:
-            decided = False
+        verdict = _compare_lists(values[key], values[tied[0]])
+        tied = [key] if verdict > 0 else tied + [key] * (verdict == 0)
+    decided = len(tied) == 1
+    best = tied[0]
+    if not decided:
+        best = max(tied, key=lambda key: _by_number(group.symbol, positions @ (possible[key] @ frame).T))
     turn = possible[best]
     if name is not None:
         turn = possible[name] @ turn
     return turn @ frame, matched(group, turn, group.matrices), decided
 
 
+def _by_number(symbol: str, positions) -> float:
+    """Return what breaks a tie that no rule decides alike in every orientation: a sum over atoms weighted by their
+    numbers.
+
+    Its terms, squares of coordinates or r^n cos(n phi), keep their value under the group and change it from setting
+    to setting.
+    """
+    weights = 1.0 / np.arange(1.0, len(positions) + 1)
+    x, y, z = positions.T
+    if symbol in ("C2v", "D2", "D2h"):
+        return float(weights @ (z * z + 0.37 * x * x))
+    n = int(re.search(r"\d+", symbol)[0])
+    return float(weights @ (((x + 1j * y) / np.abs(positions).max()) ** n).real)
+
+
 def free_frame(symbol: str, frame, positions, structure):
     """Turn a frame whose x the group does not fix towards an atom, so that it does not depend on how the structure lay.
 
-    C1, Ci: principal axes of the atoms; Cs, Cn, Cnh, S2n and lines: x towards the heaviest, then farthest, atom off z.
+    C1, Ci: principal axes of the atoms; Cs, Cn, Cnh, S2n and lines: x towards the heaviest, then farthest, atom off
+    z.
     """
     if symbol in ("C1", "Ci"):
         x, _, z = np.linalg.eigh(positions.T @ positions)[1].T[::-1]
@@ -191,22 +221,34 @@ def free_frame(symbol: str, frame, positions, structure):
 
 @cache
 def _equal_turns(symbol: str) -> np.ndarray:
-    """Return (k, 3, 3) turns between frames that no label tells apart: the group's rotations, and z reversed where z is polar."""
+    """Return (k, 3, 3) turns between frames that no label tells apart, the identity first.
+
+    They are the operations R of the group, -R for an improper one (it turns the frame as R does, since the inversion
+    commutes with all), and turns that carry the group into itself without exchanging species: z reversed (C, S), x
+    reversed (D), x and y (T, Th).
+    """
     matrices = point_group(symbol).image.matrices
-    turns = matrices[np.linalg.det(matrices) > 0]
-    flips = [np.diag([1.0, -1, -1])]
-    if symbol in ("C1", "Ci"):
-        flips += [np.diag([-1.0, 1, -1]), np.diag([-1.0, -1, 1])]
+    determinants = np.round(np.linalg.det(matrices))
+    centred = (matrices.trace(axis1=1, axis2=2) < -3 + 1e-9).any()      # then -R is in the group too
+    turns = matrices[determinants > 0] if centred else matrices * determinants[:, None, None]
+    more = []
     if symbol[0] in "CS":
-        turns = np.concatenate([turns] + [turns @ flip for flip in flips])
-    return turns
+        more = [np.diag([1.0, -1, -1])]
+    if symbol in ("C1", "Ci"):
+        more += [np.diag([-1.0, 1, -1]), np.diag([-1.0, -1, 1])]
+    if symbol[0] == "D" and len(turns) % 4:
+        more = [np.diag([-1.0, -1, 1])]
+    if symbol in ("T", "Th"):
+        more = [np.array([[0.0, -1, 0], [1, 0, 0], [0, 0, 1]])]
+    return np.concatenate([turns] + [turns @ turn for turn in more])
 
 
 def settled(group, frame, positions):
-    """Return (frame, order of operations or None): of frames that no label tells apart the one the numbering of the atoms prefers.
+    """Return (frame, order of operations or None): of frames that no label tells apart the one the numbering of the
+    atoms prefers.
 
-    So the words for the axes do not depend on how the structure lay. Two sums of positions, weighted by the atoms' numbers, are
-    turned towards z and x as far as the group's own rotations allow. `order` as in `chosen_setting`.
+    So the words for the axes do not depend on how the structure lay. Two sums of positions, weighted by the atoms'
+    numbers, are turned towards z and x as far as the group's own rotations allow. `order` as in `chosen_setting`.
     """
     turns = _equal_turns(group.symbol)
     if len(turns) == 1:

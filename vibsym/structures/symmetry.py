@@ -1,7 +1,8 @@
-"""The symmetry of a structure: its group, how far it is from it, how the axes lie, and where every operation sends every atom.
+"""The symmetry of a structure: its group, how far it is from it, how the axes lie, and where every operation sends
+every atom.
 
-Convention: operations are active; R_r, a matrix of `group.image` in the standard frame, moves atom i onto the place of atom
-permutations[r, i]: R_r x_i = x_permutations[r, i] for the symmetrised positions.
+Convention: operations are active; R_r, a matrix of `group.image` in the standard frame, moves atom i onto the place
+of atom permutations[r, i]: R_r x_i = x_permutations[r, i] for the symmetrised positions.
 """
 
 from dataclasses import dataclass
