@@ -12,8 +12,11 @@ def parts(result: IsomerList, **_) -> list:
     title = Title(f"{composition(result)}   {among.shape.symbol}, {among.shape.name}")
     pairs = among.stereoisomers - among.count
     counted = count_text(among.count, "isomer")
-    if pairs:
+    if pairs == among.count == 1:
+        counted += ", a pair of enantiomers"
+    elif pairs:
         counted += f", {pairs} of them {'a pair' if pairs == 1 else 'pairs'} of enantiomers"
+    if pairs:
         counted += f" ({among.stereoisomers} stereoisomers in all)"
     head = Paragraph(counted if pairs else counted + ", no pairs of enantiomers", strong=True)
     proof = Paragraph(f"From {count_text(among.orbits.arrangements, 'arrangement')}; Burnside's lemma over the "

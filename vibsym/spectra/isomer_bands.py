@@ -100,10 +100,14 @@ class IsomerList:
     def notes(self) -> tuple[str, ...]:
         """What the reader must know to trust the list."""
         among, notes = self.isomers, []
-        points = [ligand.name for ligand in among.ligands if ligand.form == "point"]
+        points = [ligand.name for ligand in among.ligands if ligand.form == "point" and ligand.span == "single"]
+        rings = [ligand.name for ligand in among.ligands if ligand.span != "single"]
         if points:
-            notes.append(f"{', '.join(points)} taken as a point: its shape can lower the group and let weak bands "
-                         "through")
+            notes.append(f"{', '.join(points)}: only the place counts; the ligand's own shape can lower the group and "
+                         "let weak bands through")
+        if rings:
+            notes.append(f"{', '.join(rings)}: only the donors and what they span count; puckered rings can lower the "
+                         "group")
         if self.indices_open:
             unknown = [ligand.name for ligand in among.ligands if any(donor.element is None for donor in ligand.donors)]
             way = f"; name the donor, as --donor {unknown[0]}=P" if unknown else ""
