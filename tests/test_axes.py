@@ -155,8 +155,8 @@ def test_impossible_settings(case, axes, telling):
 
 
 @pytest.mark.parametrize("symbol", ["C1", "Cs", "Ci", "C2", "C3", "C2h", "C3v", "C5v", "C4", "C4h", "D3", "D3h", "D5h",
-                                    "D2d", "D3d", "D4d", "S4", "S8", "T", "Td", "Th", "O", "Oh", "I", "Ih", "C∞v", "D∞h",
-                                    "Kh"])
+                                    "D2d", "D3d", "D4d", "S4", "S8", "T", "Td", "Th", "O", "Oh", "I", "Ih", "C∞v",
+                                    "D∞h", "Kh"])
 def test_no_choice(symbol):
     assert list(settings(symbol)) == ["xyz"]
 
