@@ -29,10 +29,16 @@ def deliver(results: list, view, form: str, output: str | None = None, **options
         write_text_atomically(output, render(results, view, form, PLAIN_WIDTH, False, **options))
         return
     on_screen = form == "table" and sys.stdout.isatty()
-    width = min(WIDEST, max(NARROWEST, os.get_terminal_size(sys.stdout.fileno()).columns)) if on_screen else PLAIN_WIDTH
+    width = _screen_width() if on_screen else PLAIN_WIDTH
     colour = on_screen and "NO_COLOR" not in os.environ
     click.echo(spelled(render(results, view, form, width, colour, **options), form), nl=False)
     sys.stdout.flush()
+
+
+def _screen_width() -> int:
+    """Return the width of the terminal within reason; some tell 0, which is no width."""
+    columns = os.get_terminal_size(sys.stdout.fileno()).columns or PLAIN_WIDTH
+    return min(WIDEST, max(NARROWEST, columns))
 
 
 def spelled(text: str, form: str = "table") -> str:

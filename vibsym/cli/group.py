@@ -29,14 +29,13 @@ def command(structures, form, output, tolerance, as_group, axes, write, **readin
     """
     from vibsym.report import climb as view
     from vibsym.spectra.climb import climb
-    from vibsym.structures.ladder import as_group as in_group
 
-    results, failures = results_of(structures, lambda structure: climb(structure, tolerance, axes=axes), **reading)
+    results, failures = results_of(
+        structures, lambda structure: climb(structure, tolerance, axes=axes, as_group=as_group), **reading)
     if write is not None and not failures:
         if len(results) != 1:
             raise VibsymError(f"--write {write}: one structure at a time; {len(results)} were given")
-        result = results[0]
-        _save(write, in_group(result.structure, as_group, tolerance) if as_group else result.suggested)
+        _save(write, results[0].chosen or results[0].suggested)
     finish(results, failures, view, form, output)
 
 

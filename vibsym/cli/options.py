@@ -15,7 +15,7 @@ tolerance_option = click.option(
     "--tolerance", type=float, default=0.02, show_default=True, metavar="Å",
     help="Largest distance of an atom from its place in the group.")
 as_option = click.option(
-    "--as", "as_group", metavar="GROUP", help="Make the analysis in this group of the ladder (vibsym group shows it).")
+    "--as", "as_group", metavar="GROUP", help="Work in this group of the ladder (vibsym group shows it).")
 axes_option = click.option(
     "--axes", metavar="CHOICE", help="Another choice of axes where labels depend on it: swap, or an order such as yxz.")
 working_option = click.option(

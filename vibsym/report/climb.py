@@ -39,14 +39,13 @@ def as_object(result: Climb, **_) -> dict:
 
 
 def _suggestion(result: Climb) -> str:
-    suggested, found = result.suggested, result.found.symmetry
+    if result.chosen is not None:
+        return f"Chosen: {group_text(result.chosen.group.symbol)}, {found_within(result.chosen)}"
+    suggested = result.suggested
     name = group_text(suggested.group.symbol)
-    if suggested.group.symbol == found.group.symbol:
-        if len(result.ladder.rungs) == 1:
-            return f"{name} is the only rung: no higher group within reach."
-        return f"Suggested: {name}, the group within the tolerance; the next rung is far off."
-    return (f"Suggested: {name}, which the structure has within {within(suggested.deviation)} Å; "
-            "the next rung is much farther.")
+    if len(result.ladder.rungs) == 1:
+        return f"{name} is the only rung: no higher group within reach."
+    return f"Suggested: {name}, within {within(suggested.deviation)} Å: the largest gap of the ladder lies above it."
 
 
 def _rungs(result: Climb) -> Table:

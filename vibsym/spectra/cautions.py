@@ -41,7 +41,11 @@ def _exclusion(result) -> tuple[str, ...]:
 def _chirality(result) -> tuple[str, ...]:
     if not result.symmetry.group.chiral:
         return ()
-    return ("The group is chiral: vibrational circular dichroism and Raman optical activity are allowed.",)
+    text = "The group is chiral: vibrational circular dichroism and Raman optical activity are allowed"
+    above = result.ladder.next
+    if above is not None and not above.symmetry.group.chiral:
+        text += f", but the next rung, {above.symmetry.group.symbol} at {above.deviation:.3f} Å, is not chiral"
+    return (text + ".",)
 
 
 def _pairs(result) -> tuple[str, ...]:

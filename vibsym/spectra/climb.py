@@ -11,10 +11,11 @@ from vibsym.vibrations.cartesian import displacements
 
 @dataclass(frozen=True)
 class Climb:
-    """A structure on its ladder: rungs from the group within the tolerance upwards, and the one suggested."""
+    """A structure on its ladder: rungs from the group within the tolerance upwards, and the one asked for."""
 
     structure: Structure
     ladder: object
+    chosen: Symmetry | None = None
 
     @cached_property
     def expectations(self) -> tuple[Expectation, ...]:
@@ -37,13 +38,20 @@ class Climb:
                   "deviation": each.symmetry.deviation,
                   "spoilers": list(rung.spoilers), "counts": each.counts.to_dict()}
                  for rung, each in zip(self.ladder.rungs, self.expectations, strict=True)]
-        return {"structure": self.structure.to_dict(), "point_group": self.found.symmetry.to_dict(),
-                "axes": dict(self.found.axes.words), "rungs": rungs, "suggested": self.suggested.group.symbol}
+        answer = {"structure": self.structure.to_dict(), "point_group": self.found.symmetry.to_dict(),
+                  "axes": dict(self.found.axes.words), "rungs": rungs, "suggested": self.suggested.group.symbol}
+        return answer | ({"chosen": self.chosen.to_dict()} if self.chosen is not None else {})
 
 
-def climb(source, tolerance: float = DEFAULT_TOLERANCE, *, axes: str | None = None) -> Climb:
-    """Return the ladder of a structure with the counts of every rung; `axes` chooses those of the group found."""
+def climb(source, tolerance: float = DEFAULT_TOLERANCE, *, axes: str | None = None,
+          as_group: str | None = None) -> Climb:
+    """Return the ladder of a structure with the counts of every rung.
+
+    `axes` chooses those of the group found; `as_group` names the rung that the user means, an error if it is none.
+    """
+    from vibsym.structures.ladder import as_group as in_group
     from vibsym.structures.ladder import ladder
 
     structure = structure_of(source)
-    return Climb(structure, ladder(structure, tolerance, axes))
+    chosen = in_group(structure, as_group, tolerance) if as_group else None
+    return Climb(structure, ladder(structure, tolerance, axes), chosen)

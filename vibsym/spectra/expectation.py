@@ -96,7 +96,12 @@ class Expectation:
             "gamma_3n": dict(self.gamma_3n), "gamma_translation": dict(self.gamma_translation),
             "gamma_rotation": dict(self.gamma_rotation), "gamma_vib": dict(self.gamma_vib),
             "species": [row.to_dict() for row in self.species], "counts": self.counts.to_dict(),
-            "axes": dict(self.axes.words), "exchange": list(self.axes.exchange), "notes": list(self.notes)}
+            "axes": dict(self.axes.words), "exchange": list(self.axes.exchange), "next_rung": self._next_rung(),
+            "notes": list(self.notes)}
+
+    def _next_rung(self) -> dict | None:
+        rung = self.ladder.next if self.found is None else None
+        return rung and {"symbol": rung.symmetry.group.symbol, "deviation": rung.deviation}
 
 
 def expect(source, tolerance: float = DEFAULT_TOLERANCE, *, as_group: str | None = None,
