@@ -72,3 +72,41 @@ def test_what_cannot_be_done_is_one_line(arguments, reason):
 def test_an_unreadable_structure_stops_before_computing():
     answer = run(TUBE[0], "missing.xyz", *BANDS)
     assert answer.exit_code == 1 and answer.stdout == ""
+
+
+FLASK = [str(SAMPLES / f"flask-{name}.xyz") for name in ("cis", "trans")]
+REGION = ["--bands", str(SAMPLES / "flask-bands.csv"), "--oscillators", "C-O", "--format", "json"]
+
+
+def test_which_isomer_is_in_the_flask():
+    """Turned phosphines make both molecules C1; the local group of the carbonyls still tells cis from trans."""
+    answer = json.loads(run(*FLASK, *REGION, "--local").stdout)
+    cis, trans = answer["candidates"]
+    assert [each["point_group"]["symbol"] for each in (cis, trans)] == ["C1", "C1"]
+    assert [each["local"]["point_group"]["symbol"] for each in (cis, trans)] == ["C2v", "D4h"]
+    assert [each["verdict"] for each in (cis, trans)] == ["fits", "excluded"]
+    leak = next(excuse for excuse in trans["excuses"] if excuse["kind"] == "leak")
+    assert "(a) allowed in the true group C1, (b) let through by the surroundings (2 ligands at P)" in leak["reason"]
+    whole = json.loads(run(*FLASK, *REGION).stdout)
+    assert [each["rank"] for each in whole["candidates"]] == [1, 1]
+
+
+def test_a_named_point_lets_weak_bands_through(tmp_path):
+    for name, axis in (("cis", "1 0 0"), ("trans", "0 0 -1")):
+        x, y, z = (float(each) for each in axis.split())
+        atoms = ["Mo 0 0 0", "XL 0 0 2.4", f"XL {2.4 * x} {2.4 * y} {2.4 * z}"]
+        for site in ((1, 0, 0), (-1, 0, 0), (0, 1, 0), (0, -1, 0), (0, 0, -1)):
+            if site != (x, y, z):
+                atoms += ["{} {} {} {}".format(what, *(r * each for each in site)) for what, r in (("C", 2.0), ("O", 3.15))]
+        (tmp_path / f"{name}.xyz").write_text("\n".join([str(len(atoms)), name, *atoms]) + "\n")
+    paths = [str(tmp_path / f"{name}.xyz") for name in ("cis", "trans")]
+    for more in ((), ("--local",)):
+        answer = json.loads(run(*paths, *REGION, *more).stdout)
+        assert [each["verdict"] for each in answer["candidates"]] == ["fits", "excluded"]
+        leak = next(excuse for excuse in answer["candidates"][1]["excuses"] if excuse["kind"] == "leak")
+        assert "(b)" in leak["reason"] and "(a)" not in leak["reason"]
+
+
+def test_bonds_that_are_not_there_name_the_structure():
+    answer = run(TUBE[0], *REGION)
+    assert answer.exit_code == 1 and "tube-clf3-triangle.xyz" in answer.stderr and answer.stderr.count("\n") == 1

@@ -70,11 +70,11 @@ def whole_molecule(structure: Structure, symmetry: Symmetry, true: Symmetry | No
                       bands_within(gamma, symmetry, true), true_group=true.group.symbol if true is not None else "")
 
 
-def bands_within(gamma: dict[str, int], symmetry: Symmetry, true: Symmetry | None):
-    """Return the bands of a representation, with what the lower true group lets through."""
+def bands_within(gamma: dict[str, int], symmetry: Symmetry, true: Symmetry | None, point_like: bool = False):
+    """Return the bands of a representation, with what the lower true group and ligands taken as points let through."""
     if true is None:
-        return bands_of_gamma(gamma, symmetry.group)
-    return bands_of_gamma(gamma, symmetry.group, true.group, embedding(symmetry, true))
+        return bands_of_gamma(gamma, symmetry.group, point_like=point_like)
+    return bands_of_gamma(gamma, symmetry.group, true.group, embedding(symmetry, true), point_like)
 
 
 def embedding(higher: Symmetry, lower: Symmetry) -> np.ndarray:

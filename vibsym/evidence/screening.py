@@ -81,6 +81,8 @@ class Candidate:
         else:
             head = {"structure": self.prediction.structure, "point_group": self.prediction.point_group}
         more = {"oscillators": self.prediction.region} if self.prediction.region else {}
+        if self.prediction.local_group:
+            more["local"] = {"point_group": self.prediction.local_group}
         return head | more | {"predicted": self.prediction.counts} | self.evidence()
 
 

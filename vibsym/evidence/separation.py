@@ -18,12 +18,13 @@ def separating(candidates, observed: BandList) -> tuple[str, ...]:
     survivors = [each.prediction for each in candidates if each.verdict != "excluded" and not each.prediction.parts]
     if len(survivors) < 2:
         return ()
+    if not observed.whole_range and not all(each.region for each in survivors):
+        return ("no measurement yet: the lines belong to one region, so compare in that region first (--oscillators)",)
     have, sentences = observed.spectra, []
     measured = any(line.polarisation for line in observed.lines)
     if "Raman" in have and not measured:
         sentences += _polarisation(survivors, "polarisation of the Raman lines")
-    comparable = observed.whole_range or all(each.region for each in survivors)
-    for spectrum in have if comparable else ():
+    for spectrum in have:
         sentences += _more_bands(survivors, observed, spectrum)
     if "Raman" not in have:
         sentences += _other_spectrum(survivors, "a Raman spectrum", "raman", "Raman")

@@ -39,7 +39,8 @@ class Prediction:
     """What one structure (or two that share the lines) can show.
 
     `structure` and `point_group` are the objects of the JSON contract; `region` names the set of oscillators, empty for
-    all fundamentals; `true_group` is the lower group of the molecule where the one used is an ideal.
+    all fundamentals; `true_group` is the lower group of the molecule where the one used is an ideal; `local_group` is
+    the group of the oscillators where that one is used.
     """
 
     name: str
@@ -51,11 +52,14 @@ class Prediction:
     surroundings: str = ""
     notes: tuple[str, ...] = ()
     parts: "tuple[Prediction, ...]" = ()
+    local_group: dict | None = field(default=None, hash=False)
 
     @property
     def group(self) -> str:
         """Symbol of the group used; of a mixture both."""
-        return " + ".join(part.group for part in self.parts) if self.parts else self.point_group["symbol"]
+        if self.parts:
+            return " + ".join(part.group for part in self.parts)
+        return (self.local_group or self.point_group)["symbol"]
 
     def count(self, infrared: bool | None = None, raman: bool | None = None,
               totally_symmetric: bool | None = None) -> int:
