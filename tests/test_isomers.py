@@ -173,6 +173,23 @@ def test_priorities_by_the_cip_rule(ligands, order):
     assert [found.ranking_text(each) for each in found.rankings] == [order]
 
 
+def _compositions(n, most=None):
+    for first in range(min(n, most or n), 0, -1):
+        for rest in _compositions(n - first, first) if n > first else [()]:
+            yield (first, *rest)
+
+
+@pytest.mark.parametrize("symbol", ["TS-3", "SP-4", "SPY-4", "SS-4", "TBPY-5", "SPY-5", "OC-6", "PBPY-7"])
+def test_index_and_handedness_name_every_isomer_of_known_monodentate_ligands(symbol):
+    """The purpose of the index (IR-9.3.3.1): no two isomers share one, and each chiral one has a symbol (not SPY-4)."""
+    for counts in _compositions(len(shape(symbol))):
+        for given in (counts, counts[::-1]):               # the commonest ligand of highest and of lowest priority
+            ligands = [f"{name}={count}" for name, count in zip(("I", "Br", "Cl", "F", "O", "N", "C"), given)]
+            found = isomers(symbol, "W", ligands).first()
+            assert len({isomer.index for isomer in found}) == len(found), ligands
+            assert symbol == "SPY-4" or all(isomer.descriptors for isomer in found if isomer.chiral), ligands
+
+
 def test_too_many_unknown_donors_give_no_ranking():
     sorts = read_ligands([f"L{k}=1" for k in range(6)])
     found = orbits(shape("OC-6"), sorts)

@@ -4,7 +4,7 @@ IUPAC, Nomenclature of Inorganic Chemistry, Recommendations 2005, IR-9.3.4 (rule
 S as in organic chemistry, the lone pair of TPY-3 last.  OC-6, SPY-5, TBPY-5 and the other bipyramids, SS-4: seen with
 the end of higher priority of the reference axis towards the viewer, the numbers in the plane across it run to the
 lower sequence clockwise (C) or anticlockwise (A).  Chelates of two donors in OC-6: skew lines, Δ for the right-handed
-helix, Λ for the left-handed one.
+helix, Λ for the left-handed one.  SPY-4 and the shapes that have no index get no symbol.
 """
 
 from collections.abc import Sequence
