@@ -1,0 +1,123 @@
+"""Γvib by region: which vibrations are stretches of which bonds, which are bends, and how many bands each region can show.
+
+The sets stand in the order stretch, linear bend, bend, wag, torsion, those of a kind by name; the share of a set in a species is
+what it adds to the rank of B (vibsym/vibrations/redundancy.py).  Shares and what is missing add up to Γvib.  Within a
+species the division is a way of speaking: the normal modes mix all sets of one species.
+"""
+
+from dataclasses import dataclass
+from functools import cached_property
+
+import numpy as np
+
+from vibsym.spectra.activity import Counts, count_bands
+from vibsym.structures.symmetry import Symmetry
+from vibsym.vibrations.bmatrix import b_matrix
+from vibsym.vibrations.internal import internal_coordinates
+from vibsym.vibrations.redundancy import Independence, independence
+
+MOST_DISPLACEMENTS = 900                   # of one species; beyond, the regions are left out for time
+
+
+@dataclass(frozen=True)
+class Region:
+    """A set of coordinates, its share in each species and the bands it can show."""
+
+    name: str
+    gamma: dict[str, int]
+    counts: Counts
+
+    def to_dict(self) -> dict:
+        """Return the region for JSON."""
+        counts = self.counts
+        return {"set": self.name, "gamma": dict(self.gamma), "infrared": counts.infrared, "raman": counts.raman,
+                "coincident": counts.coincident, "polarised": counts.polarised}
+
+
+@dataclass(frozen=True, eq=False)
+class Regions:
+    """The division of Γvib among sets of internal coordinates; empty with a note where the structure is too large."""
+
+    independence: Independence | None
+    symmetry: Symmetry
+
+    @cached_property
+    def rows(self) -> tuple[Region, ...]:
+        """One region for each set, also those whose coordinates are all redundant."""
+        if self.independence is None:
+            return ()
+        found = self.independence
+        return tuple(Region(each.name, dict(share), count_bands(share, self.symmetry.group))
+                     for each, share in zip(found.sets, found.shares, strict=True))
+
+    @property
+    def missing(self) -> dict[str, int]:
+        """Vibrations that no set describes: motions of parts that are not bonded to each other."""
+        return {} if self.independence is None else self.independence.missing
+
+    @cached_property
+    def shared(self) -> dict[str, tuple[str, ...]]:
+        """For each species the sets whose modes can only be mixtures, where there is more than one."""
+        if self.independence is None:
+            return {}
+        found = {label: tuple(row.name for row in self.rows if row.gamma.get(label))
+                 for label in self.independence.gamma_vib}
+        return {label: names for label, names in found.items() if len(names) > 1}
+
+    @cached_property
+    def joined(self) -> tuple[tuple[str, str], ...]:
+        """Pairs (set, species) of which a redundancy with the sets before takes a part away."""
+        found = self.independence
+        if found is None:
+            return ()
+        positions, alone = self.symmetry.positions, []
+        for each, gamma, share in zip(found.sets, found.gammas, found.shares, strict=True):
+            doubtful = [label for label in gamma if gamma[label] > share.get(label, 0)]
+            if doubtful and np.abs(b_matrix(positions, [each])).max() > 0:
+                own = independence(self.symmetry, [each]).rank
+                alone += [(each.name, label) for label in doubtful if own.get(label, 0) > share.get(label, 0)]
+        return tuple(alone)
+
+    @cached_property
+    def crowded(self) -> tuple[str, ...]:
+        """Species in which the stretches alone are more than the vibrations (cages)."""
+        found = self.independence
+        if found is None:
+            return ()
+        stretches = [gamma for each, gamma in zip(found.sets, found.gammas, strict=True) if each.kind == "stretch"]
+        return tuple(label for label in self.symmetry.group.labels
+                     if sum(gamma.get(label, 0) for gamma in stretches) > found.gamma_vib.get(label, 0))
+
+    @cached_property
+    def notes(self) -> tuple[str, ...]:
+        """What to know before the division is taken for more than a way of speaking."""
+        if self.independence is None:
+            return ("Too many vibrations of one species: the division by region is left out.",)
+        notes = []
+        if self.crowded:
+            notes.append(f"There are more stretches than vibrations in {', '.join(self.crowded)}: the division into "
+                         "regions is conventional.")
+        elif self.joined:
+            names = list(dict.fromkeys(name for name, _ in self.joined))
+            several = len(names) > 3
+            names = ", ".join(names[:3]) + (f" and {len(names) - 3} more" if several else "")
+            notes.append(f"Redundancies join {names} with the sets above: the division into regions is conventional.")
+        if self.missing:
+            lacking = " + ".join((str(n) if n > 1 else "") + label for label, n in self.missing.items())
+            notes.append(f"The internal coordinates lack {lacking}: motions of parts that are not bonded to each other "
+                         "(--bond joins them).")
+        return tuple(notes)
+
+    def to_dict(self) -> dict:
+        """Return the keys that regions add to JSON."""
+        return {"regions": [row.to_dict() for row in self.rows], "missing": dict(self.missing),
+                "shared": {label: list(names) for label, names in self.shared.items()}}
+
+
+def regions(symmetry: Symmetry, bonds=None) -> Regions:
+    """Return the division of Γvib by region; `bonds` (B, 2) default to those of the structure."""
+    group = symmetry.group.image
+    atoms = len(symmetry.positions)
+    if 3 * atoms / group.order > MOST_DISPLACEMENTS:
+        return Regions(None, symmetry)
+    return Regions(independence(symmetry, internal_coordinates(symmetry, bonds)), symmetry)
