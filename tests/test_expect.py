@@ -11,6 +11,7 @@ from pathlib import Path
 import numpy as np
 import pytest
 from molecules import MOLECULES, turned
+from orbits import FAMILIES, orbit_structure
 
 from vibsym import Structure, VibsymError, expect, find_symmetry, read
 from vibsym.vibrations.working import working
@@ -234,3 +235,17 @@ def test_the_other_choice_of_axes_exchanges_the_labels():
     other = expect(built("H2O"), axes="swap")
     assert given.gamma_vib == {"A1": 2, "B2": 1} and other.gamma_vib == {"A1": 2, "B1": 1}
     assert given.axes.exchange and given.counts == other.counts
+
+
+@pytest.mark.parametrize("symbol", FAMILIES)
+def test_general_orbits_carry_three_regular_representations_each(symbol):
+    """Atoms off every element: each species occurs 3 d times an orbit, two conjugate ones (taken as one) 3 times."""
+    symbols, positions = orbit_structure(symbol, np.random.default_rng(11))
+    result = expect(Structure.from_atoms(symbols, turned(positions, 12)))
+    group = result.symmetry.group
+    assert group.symbol == symbol
+    orbits = len(symbols) // group.order
+    assert result.gamma_3n == {each.label: 3 * orbits * (1 if each.pair else each.degeneracy) for each in group.species}
+    assert sum(result.gamma_vib.values()) == result.counts.fundamentals
+    counts = result.counts
+    assert counts.infrared + counts.raman - counts.coincident + counts.silent == counts.fundamentals

@@ -54,9 +54,10 @@ def displacements(symmetry: Symmetry) -> Displacements:
 
     One atom gives Γ3N = Γtranslation and no vibrations.
 
-    >>> from vibsym import read, find_symmetry                                    # doctest: +SKIP
-    >>> displacements(find_symmetry(read("boron-trifluoride.xyz"))).gamma_vib      # doctest: +SKIP
-    {"A1'": 1, "E'": 2, "A2''": 1}
+    >>> from vibsym import Structure, find_symmetry
+    >>> water = Structure.from_atoms("OHH", [[0, 0, 0], [0.76, 0, 0.59], [-0.76, 0, 0.59]])
+    >>> displacements(find_symmetry(water)).gamma_vib
+    {'A1': 2, 'B2': 1}
     """
     group = symmetry.group
     first, traces, rotation = _class_characters(group.symbol)
