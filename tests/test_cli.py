@@ -150,6 +150,12 @@ def test_table_object_is_exact():
     assert answer["point_group"]["order"] == 10
 
 
+def test_tables_of_several_groups_share_one_csv_head():
+    rows = list(csv.DictReader(io.StringIO(run("table", "C2v", "C3v", "Kh", "--format", "csv").stdout)))
+    assert len(rows) == 4 + 3 + 8
+    assert rows[4]["point_group"] == "C3v" and rows[4]["2C3"] == "1" and rows[4]["C2"] == "" and rows[0]["2C3"] == ""
+
+
 def test_table_of_an_infinite_group():
     answer = json.loads(run("table", "Cinfv", "--format", "json").stdout)
     assert answer["point_group"]["symbol"] == "C∞v" and answer["point_group"]["order"] is None

@@ -3,6 +3,7 @@
 from vibsym.groups.symbols import typeset
 from vibsym.report.document import Facts, Listing, Paragraph, Table
 from vibsym.report.wording import NOTHING, about_structure, found_within, group_text, within
+from vibsym.spectra.cautions import sentence
 from vibsym.spectra.climb import Climb
 
 _MOST_SPOILERS = 6
@@ -16,7 +17,7 @@ def parts(result: Climb, **_) -> list:
             Paragraph(_suggestion(result), strong=True), _rungs(result)]
     if found.axes.words:
         page.append(Facts(tuple(found.axes.words.items()), "Axes"))
-    notes = (*result.structure.notes, *found.axes.notes)
+    notes = tuple(map(sentence, (*result.structure.notes, *found.axes.notes)))
     return page + ([Listing(notes, "Beware")] if notes else [])
 
 

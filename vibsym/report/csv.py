@@ -2,7 +2,7 @@
 
 
 def set_csv(rows: list[dict]) -> str:
-    """Return rows (dictionaries with the same keys) as CSV; true and false are written yes and no, None stays empty."""
+    """Return rows (dictionaries) as CSV; true and false are written yes and no, None and what a row lacks stay empty."""
     import csv
     import io
 
@@ -10,8 +10,9 @@ def set_csv(rows: list[dict]) -> str:
         return ""
     text = io.StringIO()
     writer = csv.writer(text, lineterminator="\n")
-    writer.writerow(rows[0])
-    writer.writerows([[_cell(value) for value in row.values()] for row in rows])
+    columns = list(dict.fromkeys(name for row in rows for name in row))
+    writer.writerow(columns)
+    writer.writerows([[_cell(row.get(name)) for name in columns] for row in rows])
     return text.getvalue()
 
 

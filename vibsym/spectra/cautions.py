@@ -17,8 +17,14 @@ def cautions(result) -> tuple[str, ...]:
     structure = result.structure
     if len(structure) == 1:
         return ("One atom: it has no vibrations, so there are no bands to expect.", *structure.notes)
-    return (*_bounds(), *_exclusion(result), *_chirality(result), *_pairs(result), *result.axes.notes,
-            *structure.notes, *_isotopes(structure), *_rotors(structure), *_dummies(structure))
+    notes = (*_bounds(), *_exclusion(result), *_chirality(result), *_pairs(result), *result.axes.notes,
+             *structure.notes, *_isotopes(structure), *_rotors(structure), *_dummies(structure))
+    return tuple(map(sentence, notes))
+
+
+def sentence(note: str) -> str:
+    """Return a note as a sentence: capital letter, full stop."""
+    return note[:1].upper() + note[1:] + ("" if note.endswith((".", "?", "!")) else ".")
 
 
 def _bounds() -> tuple[str, ...]:
