@@ -2,7 +2,7 @@
 
 
 def set_csv(rows: list[dict]) -> str:
-    """Return rows (dictionaries) as CSV; true and false are written yes and no, None and what a row lacks stay empty."""
+    """Return rows (dictionaries) as CSV; true and false are yes and no, None and what a row lacks stay empty."""
     import csv
     import io
 
