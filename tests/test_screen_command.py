@@ -97,7 +97,8 @@ def test_a_named_point_lets_weak_bands_through(tmp_path):
         atoms = ["Mo 0 0 0", "XL 0 0 2.4", f"XL {2.4 * x} {2.4 * y} {2.4 * z}"]
         for site in ((1, 0, 0), (-1, 0, 0), (0, 1, 0), (0, -1, 0), (0, 0, -1)):
             if site != (x, y, z):
-                atoms += ["{} {} {} {}".format(what, *(r * each for each in site)) for what, r in (("C", 2.0), ("O", 3.15))]
+                for what, far in (("C", 2.0), ("O", 3.15)):
+                    atoms.append(" ".join([what, *(str(far * each) for each in site)]))
         (tmp_path / f"{name}.xyz").write_text("\n".join([str(len(atoms)), name, *atoms]) + "\n")
     paths = [str(tmp_path / f"{name}.xyz") for name in ("cis", "trans")]
     for more in ((), ("--local",)):

@@ -61,7 +61,7 @@ def explain(prediction: Prediction, seen: Coincidences, spectra: tuple[str, ...]
     numbers = sorted(Counter(kinds).items())
     place = {kind: index for index, (kind, _) in enumerate(numbers)}
     solution = least(tuple(numbers), tuple(sorted(capacities.items())), seen.by_chance, tuple(spectra),
-                     tuple(place[kind] for kind in kinds))
+                     tuple(dict.fromkeys(place[kind] for kind in kinds)))
     return _lay_out(prediction, seen, kinds, solution)
 
 

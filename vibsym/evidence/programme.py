@@ -45,21 +45,22 @@ class _Unknown(NamedTuple):
 def least(kinds: tuple, capacities: tuple, by_chance: int, spectra: tuple, order: tuple) -> Solution:
     """Return the least explanation as numbers.
 
-    `kinds` and `capacities` are sorted (kind, number) and (activity, number); `order` lists the items as positions in
-    `kinds`, in input order.  Equal questions (isomers of equal prediction) are answered once.
+    `kinds` and `capacities` are sorted (kind, number) and (activity, number); `order` lists the kinds, as positions in
+    `kinds`, in the order of their first items.  Equal questions (isomers of equal prediction) are answered once.
     """
     unknowns = _unknowns(kinds, capacities, by_chance, spectra)
     if not unknowns:
         return Solution({}, {}, 0)
     programme = _Programme(unknowns, kinds, capacities, by_chance)
-    size = sum(number for _, number in kinds) + sum(number for _, number in capacities) + 1
     column = {name: np.array([getattr(each, name) for each in unknowns], float)
               for name in ("halves", "polarised", "covered", "odd")}
-    unexplained = np.array([each.role == "unexplained" for each in unknowns], float)
-    answer = programme.minimise((column["halves"] * size + unexplained) * size - column["polarised"])
-    answer = programme.minimise(unexplained * 0 - column["covered"] * size + column["odd"], answer)
-    answer = _earliest(programme, unknowns, answer, kinds, order)
-    return _solution(unknowns, answer, kinds, capacities, round(float(column["halves"] @ answer)))
+    left = np.array([each.role == "unexplained" for each in unknowns], float)
+    late = left * [len(kinds) - order.index(each.kind) if each.role == "unexplained" else 0 for each in unknowns]
+    size = sum(number for _, number in kinds) + sum(number for _, number in capacities) + 1
+    programme.minimise((column["halves"] * size + left) * size - column["polarised"])
+    programme.keep(column["halves"], left, column["polarised"])
+    programme.minimise((column["odd"] - column["covered"] * size) * size * len(kinds) + late)
+    return _solution(unknowns, programme.answer, kinds, capacities, round(float(column["halves"] @ programme.answer)))
 
 
 def _unknowns(kinds, capacities, by_chance: int, spectra) -> list[_Unknown]:
@@ -120,64 +121,32 @@ class _Programme:
                 rows[-1][j] = -1
         self.rows, self.lower, self.upper = rows, list(lower), list(upper)
         self.most = np.array([each.upper for each in unknowns], float)
-        self.least = np.zeros(size)
+        self.answer = np.zeros(size)
 
-    def minimise(self, score: np.ndarray, known: np.ndarray | None = None) -> np.ndarray:
-        """Return whole numbers with the least score, and keep the score at that value from now on."""
-        answer = self._solve(score) if np.any(score) or known is None else known
-        self.rows.append(score)
-        self.lower.append(-np.inf)
-        self.upper.append(float(score @ answer) + 0.5)
-        return answer
-
-    def feasible(self, position: int, most: float) -> np.ndarray | None:
-        """Return a solution with unknown `position` at most `most`, or None; keep the bound if there is one."""
-        before = self.most[position]
-        self.most[position] = most
-        answer = self._solve(np.zeros(len(self.most)))
-        if answer is None:
-            self.most[position] = before
-        return answer
-
-    def _solve(self, score: np.ndarray) -> np.ndarray | None:
+    def minimise(self, score: np.ndarray) -> None:
+        """Find whole numbers with the least score, and prove by the lower bound that there is no smaller one."""
         from scipy.optimize import Bounds, LinearConstraint, milp
 
-        found = milp(score, integrality=np.ones(len(score)), bounds=Bounds(self.least, self.most),
-                     constraints=LinearConstraint(np.array(self.rows), self.lower, self.upper),
-                     options={"mip_rel_gap": 0.0})
-        if found.status == 2:
-            return None
+        rows = np.array(self.rows)
+        found = milp(score, integrality=np.ones(len(score)), bounds=Bounds(0, self.most),
+                     constraints=LinearConstraint(rows, self.lower, self.upper), options={"mip_rel_gap": 0.0})
         if found.x is None:
             raise ArithmeticError(f"the integer program was not solved: {found.message}")
         answer = np.round(found.x)
-        totals = np.array(self.rows) @ answer
+        totals = rows @ answer
         if np.any(totals < np.array(self.lower) - 1e-6) or np.any(totals > np.array(self.upper) + 1e-6):
             raise ArithmeticError("the integer program returned numbers that break its own rules")
-        if found.mip_dual_bound is not None and ceil(found.mip_dual_bound - 1e-3) < round(float(score @ answer)):
-            raise ArithmeticError(f"bound {found.mip_dual_bound} does not prove {score @ answer}")
-        return answer
+        if ceil(found.mip_dual_bound - 1e-3) < round(float(score @ answer)):
+            raise ArithmeticError(f"the bound {found.mip_dual_bound} does not prove the value {score @ answer}")
+        self.answer = answer
 
-
-def _earliest(programme: _Programme, unknowns, answer: np.ndarray, kinds, order) -> np.ndarray:
-    """Among equal explanations take the one that explains the earliest items (input order)."""
-    position = {each.kind: j for j, each in enumerate(unknowns) if each.role == "unexplained"}
-    if sum(answer[j] > 0 for j in position.values()) == 0 or len(kinds) == 1:
-        return answer
-    explained, closed = [0] * len(kinds), set()
-    for k in order:
-        if k in closed:
-            continue
-        wanted = kinds[k][1] - explained[k] - 1          # unexplained ones that this allows
-        if answer[position[k]] > wanted:
-            better = programme.feasible(position[k], wanted)
-            if better is None:
-                closed.add(k)
-                continue
-            answer = better
-        else:
-            programme.most[position[k]] = wanted
-        explained[k] += 1
-    return answer
+    def keep(self, *scores: np.ndarray) -> None:
+        """Hold these scores at the values they have reached."""
+        for score in scores:
+            value = float(score @ self.answer)
+            self.rows.append(score)
+            self.lower.append(value)
+            self.upper.append(value)
 
 
 def _solution(unknowns, answer, kinds, capacities, halves: int) -> Solution:
