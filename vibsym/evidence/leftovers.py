@@ -90,3 +90,22 @@ def _candidate(line: Line, combination: Combination, match: float) -> Candidate:
     if combination.is_difference:
         score += 0.5 - 0.5 * (combination.fraction or 0.0) ** 0.5
     return Candidate(combination, shift, usual, score)
+
+
+@dataclass(frozen=True, eq=False)
+class Combined:
+    """Combinations of a group or a structure (`symmetry`), with the lines explained by them."""
+
+    result: Combinations
+    explanations: tuple[Explanation, ...] = ()
+    symmetry: object = None
+
+    def to_dict(self) -> dict:
+        """Return the result for JSON."""
+        group = self.result.group
+        bare = {"symbol": group.symbol, "order": group.order, "tolerance": None, "deviation": None,
+                "chiral": group.chiral, "centrosymmetric": group.centrosymmetric}
+        answer = {} if self.symmetry is None else {"structure": self.symmetry.structure.to_dict()}
+        answer["point_group"] = bare if self.symmetry is None else self.symmetry.to_dict()
+        answer |= {key: value for key, value in self.result.to_dict().items() if key != "group"}
+        return answer | {"lines": [each.to_dict() for each in self.explanations]}

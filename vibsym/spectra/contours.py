@@ -161,7 +161,7 @@ def _asymmetric(top: Rotor, species, inside: np.ndarray, temperature: float) -> 
     if letters[0] == "B":                                 # a minimum in the centre; no formula with one constant
         return Contour(species.label, "B", "PR")
     about, across = top.constants[axis], sum(value for k, value in enumerate(top.constants) if k != axis) / 2
-    if about / across - 1 < LOWEST_BETA:                  # C band of a nearly prolate top: Q branches as if perpendicular
+    if about / across - 1 < LOWEST_BETA:                  # C band of a nearly prolate top: many Q branches
         return Contour(species.label, letters[0], "PQR")
     return Contour(species.label, letters[0], "PQR", separation_parallel(about, across, temperature), source=SETH_PAUL)
 
