@@ -4,6 +4,7 @@ import re
 from math import cos, pi, sqrt
 
 import pytest
+import sympy
 
 from vibsym import character_table
 
@@ -43,5 +44,18 @@ def test_infinite_groups_depend_on_the_angle():
     answer = character_table("Dinfh").to_dict()
     assert [each["size"] for each in answer["classes"]] == [1, None, None, 1, None, None]
     (pi_u,) = (row for row in answer["species"] if row["label"] == "Πu")
-    assert pi_u["exact"] == ["2", "2cos(φ)", "0", "-2", "2cos(φ)", "0"]
+    assert pi_u["exact"] == ["2", "2*cos(phi)", "0", "-2", "2*cos(phi)", "0"]
     assert pi_u["characters"] == [2, None, 0, -2, None, 0]
+
+
+@pytest.mark.parametrize("symbol", ["D7h", "D4d", "Ih", "C5v", "S14", "D9d"])
+def test_exact_characters_of_the_json_parse_and_equal_the_floats(symbol):
+    for row in character_table(symbol).to_dict()["species"]:
+        for text, number in zip(row["exact"], row["characters"], strict=True):
+            assert float(sympy.sympify(text)) == pytest.approx(number, abs=1e-11)
+
+
+def test_improper_rotations_carry_the_entries_of_the_proper_ones_with_a_sign():
+    exact = character_table("D7h").exact
+    assert exact["E1''"][1:4] == ("2cos(2π/7)", "2cos(4π/7)", "2cos(6π/7)")
+    assert exact["E1''"][6:9] == ("-2cos(2π/7)", "-2cos(4π/7)", "-2cos(6π/7)")

@@ -1,4 +1,4 @@
-"""Projection: combinations transform as their species, in every group and basis; exact coefficients equal the floats."""
+"""Projection: combinations transform as their species in every group and basis; exact coefficients equal floats."""
 
 import numpy as np
 import pytest

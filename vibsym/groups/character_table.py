@@ -3,6 +3,7 @@
 Exact characters are written with simple radicals, `(1+√5)/2`, or as `2cos(2π/7)` where there is no simple one.
 """
 
+import re
 from dataclasses import dataclass
 from fractions import Fraction
 from functools import cached_property
@@ -41,7 +42,7 @@ class CharacterTable:
         exact = self.exact[species.label]
         characters = list(species.characters) or [_number(text) for text in exact]
         return {"label": species.label, "degeneracy": species.degeneracy, "pair": species.pair,
-                "characters": [_tidy(value) for value in characters], "exact": list(exact),
+                "characters": [_tidy(value) for value in characters], "exact": [plain_number(text) for text in exact],
                 "linear": list(species.linear), "rotations": list(species.rotations),
                 "quadratic": list(species.quadratic), "cubic": list(species.cubic), "infrared": species.infrared,
                 "raman": species.raman, "polarised": species.polarised, "hyper_raman": species.hyper_raman}
@@ -95,17 +96,29 @@ def _radical_text(whole: int, factor: int, base: int, below: int) -> str:
 
 
 def _cosine_text(value: float, turn: int) -> str:
-    """Write a character as ±2cos(2πk/n); it is one of these by the closed form of the axial groups."""
+    """Write a character as ±2cos(2πk/n); it is one of these by the closed form of the axial groups.
+
+    n is odd where it can be, so that the entries of an improper rotation are those of the proper one with a sign.
+    """
     for k in range(turn):
         if isclose(2 * cos(2 * pi * k / turn), value, abs_tol=1e-11):
-            common = gcd(k, turn)
-            k, n = k // common, turn // common
-            return f"2cos({_multiple(2 * k // (2 if n % 2 == 0 else 1))}π/{n // (2 if n % 2 == 0 else 1)})"
+            common = gcd(2 * k, turn)
+            k, n = 2 * k // common, turn // common        # the angle is πk/n
+            sign = ""
+            if n % 2 and k % 2:
+                sign, k = "-", n - k
+            return f"{sign}2cos({k if k != 1 else ''}π/{n})"
     raise ArithmeticError(f"{value!r} is not 2cos(2πk/{turn})")
 
 
-def _multiple(number: int) -> str:
-    return str(number) if number != 1 else ""
+def plain_number(text: str) -> str:
+    """Return an exact character in the form that computer algebra reads.
+
+    >>> plain_number("(-1+√5)/2"), plain_number("-2cos(2π/7)"), plain_number("2cos(2φ)")
+    ('(-1+sqrt(5))/2', '-2*cos(2*pi/7)', '2*cos(2*phi)')
+    """
+    text = re.sub(r"√(\d+)", r"sqrt(\1)", text).replace("π", "pi").replace("φ", "phi")
+    return re.sub(r"(\d)(?=sqrt|cos|sin|pi|phi)", r"\1*", text)
 
 
 def _number(text: str) -> float | None:
