@@ -15,7 +15,9 @@ from vibsym.cli.reading import finish, results_of
 @options.reading_options
 @options.working_option
 @options.light_option
-def command(structures, form, output, tolerance, as_group, axes, working, light, **reading):
+@options.oscillator_options
+def command(structures, form, output, tolerance, as_group, axes, working, light, oscillators, local, local_tolerance,
+            distinguish, **reading):
     """Tell which infrared and Raman bands each STRUCTURE can show.
 
     A STRUCTURE is an XYZ or MDL mol file, or - for standard input.
@@ -30,6 +32,7 @@ def command(structures, form, output, tolerance, as_group, axes, working, light,
     from vibsym.report import expectation as view
     from vibsym.spectra.expectation import expect
 
-    results, failures = results_of(
-        structures, lambda structure: expect(structure, tolerance, as_group=as_group, axes=axes), **reading)
+    chosen = {"as_group": as_group, "axes": axes, "oscillators": oscillators, "local": local,
+              "local_tolerance": local_tolerance, "distinguish": distinguish}
+    results, failures = results_of(structures, lambda structure: expect(structure, tolerance, **chosen), **reading)
     finish(results, failures, view, form, output, working=working, light=light)

@@ -15,8 +15,10 @@ COMMANDS = {
     "expect": "vibsym.cli.expect",
     "group": "vibsym.cli.group",
     "table": "vibsym.cli.table",
+    "coordinates": "vibsym.cli.coordinates",
     "isomers": "vibsym.cli.isomers",
     "screen": "vibsym.cli.screen",
+    "peaks": "vibsym.cli.peaks",
     "samples": "vibsym.cli.samples",
 }
 

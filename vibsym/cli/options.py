@@ -23,8 +23,28 @@ working_option = click.option(
 light_option = click.option(
     "--light", type=click.Choice(("plane", "natural")), default="plane", show_default=True,
     help="Light of the Raman measurement; decides the ratio of a depolarised line (3/4 or 6/7).")
+select_option = click.option(
+    "--select", multiple=True, metavar="SET", help='Only this set of coordinates ("stretch C-O") or this kind ("bend").')
+atoms_option = click.option(
+    "--atoms", metavar="1,5,6", help="Only coordinates whose atoms are all among these.")
 write_option = click.option(
     "--write", metavar="FILE", help="Save the symmetrised structure of the suggested rung (or of --as) as XYZ.")
+
+
+def oscillator_options(command):
+    """Add what looks at one set of stretches: --oscillators, --local, --local-tolerance, --distinguish."""
+    for option in (
+        click.option("--distinguish", is_flag=True,
+                     help="Local symmetry: donor atoms are alike only if their ligands have one formula."),
+        click.option("--local-tolerance", type=float, default=0.3, show_default=True, metavar="Å",
+                     help="Tolerance of the local group."),
+        click.option("--local", is_flag=True,
+                     help="The oscillators also in the group of what they see: their centres and its donor atoms."),
+        click.option("--oscillators", metavar="C-O",
+                     help="Bands of these stretches: C-O, from the centre Mo-C-O, or pairs of atoms 2-3,4-5."),
+    ):
+        command = option(command)
+    return command
 
 
 def output_options(command):

@@ -37,7 +37,7 @@ def symmetry_vectors(basis: Basis) -> dict[str, np.ndarray]:
             if not len(seeds):
                 continue
             size = irrep.shape[1]
-            values = np.einsum("cij,ujb,cab->uica", irrep[transport], seeds, blocks_out, optimize=True)
+            values = (irrep[transport][:, None] @ seeds @ blocks_out[:, None].swapaxes(2, 3)).transpose(1, 2, 0, 3)
             full = np.zeros((len(seeds), size, n, d))
             full[:, :, orbit] = values * (size / len(orbit)) ** 0.5
             parts[label].append(full.reshape(len(seeds), size, n * d))
@@ -67,7 +67,7 @@ def invariant_seeds(irrep: np.ndarray, blocks: np.ndarray, pair: bool) -> np.nda
     longest first; in a conjugate pair against J U of the earlier ones too.
     """
     size, width = irrep.shape[1], blocks.shape[1]
-    projector = np.einsum("hij,hab->iajb", irrep, blocks).reshape(size * width, size * width) / len(irrep)
+    projector = np.tensordot(irrep, blocks, axes=(0, 0)).swapaxes(1, 2).reshape(size * width, size * width) / len(irrep)
     if abs(np.trace(projector)) < 0.5:
         return np.zeros((0, size, width))
     remaining = projector.copy()

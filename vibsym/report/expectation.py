@@ -30,7 +30,7 @@ def parts(result: Expectation, working: bool = False, light: str = "plane", **_)
         return [*page, Paragraph(result.notes[0], strong=True), *_representations(result), *_beware(result.notes[1:])]
     page.append(Paragraph(_counts(result), strong=True))
     page += [_species_table(result), Paragraph(_ratio_line(result, light))]
-    page += _representations(result)
+    page += [*_oscillators(result), *_regions(result), *_representations(result)]
     if working:
         from vibsym.report.working import working_parts
 
@@ -51,6 +51,7 @@ def rows(result: Expectation, **_) -> list[dict]:
               "gamma_rotation": result.gamma_rotation, "gamma_vib": result.gamma_vib}
     row |= {name: gamma_plain(gamma) for name, gamma in gammas.items()}
     row |= result.counts.to_dict()
+    row |= _oscillator_columns(result)
     row |= {f"axis_{name}": result.axes.words.get(name, "") for name in "xyz"}
     return [row | {"exchange": "; ".join(result.axes.exchange)}]
 
@@ -63,6 +64,19 @@ def as_object(result: Expectation, working: bool = False, **_) -> dict:
 
         answer["working"] = written_out(result.displacements).to_dict()
     return answer
+
+
+def _oscillator_columns(result: Expectation) -> dict:
+    found = result.oscillators
+    if found is None:
+        return {}
+    columns = {"oscillators": found.bands.name, "oscillator_gamma": gamma_plain(found.bands.gamma),
+               "oscillator_infrared": found.bands.counts.infrared, "oscillator_raman": found.bands.counts.raman}
+    if found.local is not None:
+        bands = found.local.bands
+        columns |= {"local_group": found.local.symmetry.group.symbol, "local_gamma": gamma_plain(bands.gamma),
+                    "local_infrared": bands.counts.infrared, "local_raman": bands.counts.raman}
+    return columns
 
 
 def _group_line(result: Expectation) -> str:
@@ -107,6 +121,20 @@ def _representations(result: Expectation) -> list:
     return [Facts((("Γ3N", gamma_text(result.gamma_3n)), ("Γtranslation", gamma_text(result.gamma_translation)),
                    ("Γrotation", gamma_text(result.gamma_rotation)), ("Γvib", gamma_text(result.gamma_vib))),
                   "Representations")]
+
+
+def _regions(result: Expectation) -> list:
+    from vibsym.report.regions import region_parts
+
+    return region_parts(result.regions)
+
+
+def _oscillators(result: Expectation) -> list:
+    if result.oscillators is None:
+        return []
+    from vibsym.report.regions import oscillator_parts
+
+    return oscillator_parts(result.oscillators, result.symmetry.group.symbol)
 
 
 def _axes(result: Expectation) -> list:

@@ -6,25 +6,33 @@ ladder and the cautions are computed when they are asked for.
 
 from dataclasses import dataclass
 from functools import cached_property
+from typing import TYPE_CHECKING
 
+from vibsym.errors import VibsymError
 from vibsym.spectra.activity import Counts, SpeciesRow, count_bands, species_rows
 from vibsym.structures.structure import Structure, structure_of
 from vibsym.structures.symmetry import Symmetry
 from vibsym.vibrations.cartesian import Displacements, displacements
 
+if TYPE_CHECKING:
+    from vibsym.spectra.oscillators import Oscillators
+
 DEFAULT_TOLERANCE = 0.02  # Å
+LOCAL_TOLERANCE = 0.3  # Å; for the group of oscillators, wide enough for the angles of real complexes
 
 
 @dataclass(frozen=True)
 class Expectation:
     """Γ3N, Γvib and the number of bands of a structure in its group.
 
-    `found` is the symmetry within the tolerance when the analysis was made in another group of the ladder (`as_group`).
+    `found` is the symmetry within the tolerance when the analysis was made in another group of the ladder (`as_group`);
+    `oscillators` one set of stretches, where it was asked for.
     """
 
     symmetry: Symmetry
     displacements: Displacements
     found: Symmetry | None = None
+    oscillators: "Oscillators | None" = None
 
     @property
     def structure(self) -> Structure:
@@ -74,6 +82,13 @@ class Expectation:
         return axis_words(self.symmetry)
 
     @cached_property
+    def regions(self):
+        """Γvib by region: which vibrations are stretches of which bonds, which are bends (`Regions`)."""
+        from vibsym.spectra.regions import regions
+
+        return regions(self.symmetry)
+
+    @cached_property
     def ladder(self):
         """The group within the tolerance and the higher ones that the structure approaches (`Ladder`)."""
         from vibsym.structures.ladder import ladder
@@ -96,6 +111,7 @@ class Expectation:
             "gamma_3n": dict(self.gamma_3n), "gamma_translation": dict(self.gamma_translation),
             "gamma_rotation": dict(self.gamma_rotation), "gamma_vib": dict(self.gamma_vib),
             "species": [row.to_dict() for row in self.species], "counts": self.counts.to_dict(),
+            **self.regions.to_dict(), **(self.oscillators.to_dict() if self.oscillators else {}),
             "axes": dict(self.axes.words), "exchange": list(self.axes.exchange), "next_rung": self._next_rung(),
             "notes": list(self.notes)}
 
@@ -104,23 +120,37 @@ class Expectation:
         return rung and {"symbol": rung.symmetry.group.symbol, "deviation": rung.deviation}
 
 
-def expect(source, tolerance: float = DEFAULT_TOLERANCE, *, as_group: str | None = None,
-           axes: str | None = None) -> Expectation:
+def expect(source, tolerance: float = DEFAULT_TOLERANCE, *, as_group: str | None = None, axes: str | None = None,
+           oscillators: str | None = None, local: bool = False, local_tolerance: float = LOCAL_TOLERANCE,
+           distinguish: bool = False) -> Expectation:
     """Return what infrared and Raman spectra of a structure can show.
 
     `source` is a `Structure`, a `Symmetry`, or any object that offers chemical symbols and positions; `tolerance` in Å.
     With `as_group` the analysis is made in that group of the ladder, with `axes` in another choice
-    of axes (`swap`, or an order such as `yxz`).
+    of axes (`swap`, or an order such as `yxz`).  `oscillators` (`C-O`, `Mo-C-O`, `2-3,4-5`) looks at one set of stretches,
+    with `local` also in the group of what they see (vibsym/spectra/oscillators.py).
     """
+    if local and not oscillators:
+        raise VibsymError("--local needs --oscillators: name the stretches, as in --oscillators C-O")
+    symmetry, found = _symmetry(source, tolerance, as_group, axes)
+    chosen = None
+    if oscillators:
+        from vibsym.spectra.oscillators import oscillators as look_at
+
+        chosen = look_at(symmetry, oscillators, local, local_tolerance, distinguish)
+    return Expectation(symmetry, displacements(symmetry), found, chosen)
+
+
+def _symmetry(source, tolerance: float, as_group: str | None, axes: str | None) -> tuple[Symmetry, Symmetry | None]:
+    """Return the symmetry for the analysis and, where that is another rung, the one found."""
     if isinstance(source, Symmetry):
-        return Expectation(source, displacements(source))
+        return source, None
     from vibsym.structures.finder import find_symmetry
 
     structure = structure_of(source)
     found = find_symmetry(structure, tolerance, axes=None if as_group else axes)
     if as_group is None:
-        return Expectation(found, displacements(found))
+        return found, None
     from vibsym.structures.ladder import as_group as in_group
 
-    symmetry = in_group(structure, as_group, tolerance, axes)
-    return Expectation(symmetry, displacements(symmetry), found)
+    return in_group(structure, as_group, tolerance, axes), found

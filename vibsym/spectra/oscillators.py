@@ -14,6 +14,7 @@ import numpy as np
 
 from vibsym.errors import VibsymError
 from vibsym.spectra.activity import Counts, count_bands
+from vibsym.spectra.expectation import LOCAL_TOLERANCE
 from vibsym.structures.equivalent_bonds import symmetric_bonds
 from vibsym.structures.reduced import ReducedObject, reduced_object
 from vibsym.structures.structure import Structure
@@ -21,8 +22,6 @@ from vibsym.structures.symmetry import Symmetry
 from vibsym.vibrations.internal import CoordinateSet
 from vibsym.vibrations.naming import bond_name
 from vibsym.vibrations.representation import coordinate_basis
-
-LOCAL_TOLERANCE = 0.3       # Å; default, wide enough for the angles of real complexes
 
 
 @dataclass(frozen=True)

@@ -7,20 +7,17 @@ species the division is a way of speaking: the normal modes mix all sets of one 
 
 from dataclasses import dataclass
 from functools import cached_property
-
-import numpy as np
+from typing import NamedTuple
 
 from vibsym.spectra.activity import Counts, count_bands
 from vibsym.structures.symmetry import Symmetry
-from vibsym.vibrations.bmatrix import b_matrix
 from vibsym.vibrations.internal import internal_coordinates
 from vibsym.vibrations.redundancy import Independence, independence
 
 MOST_DISPLACEMENTS = 900                   # of one species; beyond, the regions are left out for time
 
 
-@dataclass(frozen=True)
-class Region:
+class Region(NamedTuple):
     """A set of coordinates, its share in each species and the bands it can show."""
 
     name: str
@@ -34,7 +31,7 @@ class Region:
                 "coincident": counts.coincident, "polarised": counts.polarised}
 
 
-@dataclass(frozen=True, eq=False)
+@dataclass(frozen=True, eq=False, repr=False)
 class Regions:
     """The division of Γvib among sets of internal coordinates; empty with a note where the structure is too large."""
 
@@ -65,20 +62,6 @@ class Regions:
         return {label: names for label, names in found.items() if len(names) > 1}
 
     @cached_property
-    def joined(self) -> tuple[tuple[str, str], ...]:
-        """Pairs (set, species) of which a redundancy with the sets before takes a part away."""
-        found = self.independence
-        if found is None:
-            return ()
-        positions, alone = self.symmetry.positions, []
-        for each, gamma, share in zip(found.sets, found.gammas, found.shares, strict=True):
-            doubtful = [label for label in gamma if gamma[label] > share.get(label, 0)]
-            if doubtful and np.abs(b_matrix(positions, [each])).max() > 0:
-                own = independence(self.symmetry, [each]).rank
-                alone += [(each.name, label) for label in doubtful if own.get(label, 0) > share.get(label, 0)]
-        return tuple(alone)
-
-    @cached_property
     def crowded(self) -> tuple[str, ...]:
         """Species in which the stretches alone are more than the vibrations (cages)."""
         found = self.independence
@@ -97,8 +80,8 @@ class Regions:
         if self.crowded:
             notes.append(f"There are more stretches than vibrations in {', '.join(self.crowded)}: the division into "
                          "regions is conventional.")
-        elif self.joined:
-            names = list(dict.fromkeys(name for name, _ in self.joined))
+        elif self.independence.joined:
+            names = list(dict.fromkeys(name for name, _ in self.independence.joined))
             several = len(names) > 3
             names = ", ".join(names[:3]) + (f" and {len(names) - 3} more" if several else "")
             notes.append(f"Redundancies join {names} with the sets above: the division into regions is conventional.")

@@ -16,6 +16,7 @@ symmetrised positions, so that equivalent coordinates are treated alike.  A set 
 from collections.abc import Sequence
 from dataclasses import dataclass
 from itertools import combinations
+from typing import NamedTuple
 
 import numpy as np
 
@@ -32,8 +33,7 @@ PLANAR = 0.15                             # smallest singular value of the unit 
 LETTERS = dict(zip(KINDS, "rlawt", strict=True))
 
 
-@dataclass(frozen=True)
-class Coordinate:
+class Coordinate(NamedTuple):
     """One internal coordinate: its id (`r1`), its kind and its atoms, counted from 0."""
 
     id: str
@@ -41,7 +41,7 @@ class Coordinate:
     atoms: tuple[int, ...]
 
 
-@dataclass(frozen=True, eq=False)
+@dataclass(frozen=True, eq=False, repr=False)
 class CoordinateSet:
     """All coordinates of one kind and one set of elements.
 

@@ -10,14 +10,14 @@ Sets are taken in order; the share of a set is what it adds to the rank, so the 
 (E. B. Wilson, J. C. Decius, P. C. Cross, Molecular Vibrations, 1955, sections 6-3 and 6-6.)
 """
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from functools import cached_property
 
 import numpy as np
 
 from vibsym.groups.bases import Basis
-from vibsym.groups.projection import symmetry_vectors
+from vibsym.groups.projection import invariant_seeds, site_group
 from vibsym.structures.symmetry import Symmetry
 from vibsym.vibrations.bmatrix import b_matrix
 from vibsym.vibrations.cartesian import displacements
@@ -27,7 +27,7 @@ from vibsym.vibrations.representation import coordinate_basis
 RANK = 1e-6                                # of the largest singular value
 
 
-@dataclass(frozen=True, eq=False)
+@dataclass(frozen=True, eq=False, repr=False)
 class Independence:
     """Ranks of internal coordinates in each species (labels of the group, table order; zeros left out).
 
@@ -39,6 +39,20 @@ class Independence:
     gammas: tuple[dict[str, int], ...]
     shares: tuple[dict[str, int], ...]
     gamma_vib: dict[str, int]
+    blocks: tuple[np.ndarray, ...]         # rows of B, set by set
+    frames: tuple[tuple, ...]              # (label, vectors, norm) of the species of the displacements
+    floor: float                           # singular values above it count
+
+    @cached_property
+    def joined(self) -> tuple[tuple[str, str], ...]:
+        """Pairs (set, species) where a redundancy with the sets before takes a part of the set away."""
+        found = []
+        for each, block, gamma, share in zip(self.sets, self.blocks, self.gammas, self.shares, strict=True):
+            for label, frame, norm in self.frames:
+                counted = share.get(label, 0)
+                if gamma.get(label, 0) > counted and rank_of(block @ frame, self.floor) > norm * counted:
+                    found.append((each.name, label))
+        return tuple(found)
 
     @cached_property
     def rank(self) -> dict[str, int]:
@@ -78,8 +92,8 @@ def independence(symmetry: Symmetry, sets: Sequence[CoordinateSet]) -> Independe
     blocks = [b_matrix(symmetry.positions, [each]) for each in sets]
     floor = RANK * _largest_singular_value(blocks)
     shares: list[dict[str, int]] = [{} for _ in sets]
-    for label, frame, norm in species_frames(symmetry):
-        name = labels.get(label, label)
+    frames = tuple((labels.get(label, label), frame, norm) for label, frame, norm in species_frames(symmetry, gamma_vib))
+    for name, frame, norm in frames:
         most = norm * gamma_vib.get(name, 0)
         ladder = RankLadder(frame.shape[1], floor)
         for gamma, share, block in zip(gammas, shares, blocks, strict=True):
@@ -88,19 +102,36 @@ def independence(symmetry: Symmetry, sets: Sequence[CoordinateSet]) -> Independe
                 if added:
                     share[name] = added // norm
     ordered = tuple({label: share[label] for label in symmetry.group.labels if label in share} for share in shares)
-    return Independence(symmetry, tuple(sets), gammas, ordered, gamma_vib)
+    return Independence(symmetry, tuple(sets), gammas, ordered, gamma_vib, tuple(blocks), frames, floor)
 
 
-def species_frames(symmetry: Symmetry):
+def species_frames(symmetry: Symmetry, gamma: Mapping[str, int] | None = None):
     """Yield (image label, vectors, norm): orthonormal columns (3N, k) of one component of the species in the displacements.
 
-    In a conjugate pair (norm 2) both components stand side by side.
+    In a conjugate pair (norm 2) both components stand side by side.  `gamma` restricts to the species it holds.
     """
-    group = symmetry.group.image
-    norms = dict(zip(group.labels, group.norms.tolist(), strict=True))
-    for label, vectors in symmetry_vectors(Basis.displacements(group, symmetry.permutations)).items():
-        rows = vectors.reshape(-1, vectors.shape[-1]) if norms[label] == 2 else vectors[:, 0]
-        yield label, rows.T, norms[label]
+    group, labels = symmetry.group.image, symmetry.group.image_labels
+    basis = Basis.displacements(group, symmetry.permutations)
+    sites = [(orbit, *site_group(basis, orbit)) for orbit in basis.orbits()]
+    for label, norm in zip(group.labels, group.norms.tolist(), strict=True):
+        if gamma is not None and labels.get(label, label) not in gamma:
+            continue
+        irrep, columns = group.irrep(label), []
+        for orbit, seed, transport, site in sites:
+            seeds = invariant_seeds(irrep[site], basis.blocks[site, seed], norm == 2)
+            if len(seeds):
+                columns.append(_first_components(irrep[transport, :norm], seeds, basis.blocks[transport, seed], orbit,
+                                                 basis.size, irrep.shape[1]))
+        if columns:
+            yield label, np.concatenate(columns, axis=1), norm
+
+
+def _first_components(rows, seeds, blocks, orbit, atoms: int, degeneracy: int) -> np.ndarray:
+    """Return (3N, copies × rows): rows of D(g) U R(g)' at every atom of an orbit (vibsym/groups/projection.py)."""
+    values = rows[:, None] @ seeds @ blocks[:, None].swapaxes(2, 3)        # atom of the orbit, copy, row, x y z
+    full = np.zeros((atoms, 3, len(seeds) * rows.shape[1]))
+    full[orbit] = values.transpose(0, 3, 1, 2).reshape(len(orbit), 3, -1) * (degeneracy / len(orbit)) ** 0.5
+    return full.reshape(3 * atoms, -1)
 
 
 def rank_of(rows: np.ndarray, floor: float) -> int:
@@ -140,7 +171,7 @@ def _largest_singular_value(blocks: Sequence[np.ndarray]) -> float:
     if not blocks:
         return 0.0
     stacked = np.concatenate(blocks)
-    vector = np.random.default_rng(1).normal(size=stacked.shape[1])
+    vector = np.cos(np.arange(stacked.shape[1]) ** 1.5)    # any start without symmetry
     size = 0.0
     for _ in range(12):
         vector = stacked.T @ (stacked @ vector)

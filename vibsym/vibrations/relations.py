@@ -128,16 +128,14 @@ def _centres(rows: _Rows):
             at.setdefault(int(first_of[centre]), set()).add(number)
     for centre, orbits in sorted(at.items()):
         count = int((first_of == centre).sum())
-        yield _angles_at(rows, centre, orbits) + _alike(rows, centre, count), orbits
+        yield _angles_at(rows, centre, count, orbits), orbits
 
 
-def _alike(rows: _Rows, atom: int, count: int) -> str:
-    return f" (and at {count - 1} equivalent)" if count > 1 else ""
-
-
-def _angles_at(rows: _Rows, centre: int, orbits: set[int]) -> str:
-    """Say which sums of the angles at one centre are constant."""
+def _angles_at(rows: _Rows, centre: int, count: int, orbits: set[int]) -> str:
+    """Say which sums of the angles at one centre, of `count` equivalent ones, are constant."""
     name = f"{rows.symmetry.structure.labels[centre]}{centre + 1}"
+    if count > 1:
+        name += f" and at each of {count - 1} equivalent" if count > 2 else " and at its equivalent"
     groups, start = [], {}
     place = 0
     for each in rows.sets:
