@@ -1,6 +1,6 @@
 """The ladder: distortions whose deviations are known exactly, near-linear molecules, noise, and what spoils a rung."""
 
-from itertools import pairwise
+from itertools import pairwise, permutations
 
 import numpy as np
 import pytest
@@ -10,9 +10,12 @@ from orbits import noise, orbit_structure, posed, random_rotation
 
 from vibsym.errors import VibsymError
 from vibsym.groups.pointgroup import point_group
-from vibsym.structures.finder import find_symmetry
+from vibsym.structures.finder import centre, find_symmetry
 from vibsym.structures.ladder import as_group, ladder
+from vibsym.structures.matching import residuals
+from vibsym.structures.placement import correlation, fitted_maps, place
 from vibsym.structures.structure import Structure
+from vibsym.structures.subsets import closed_subsets
 
 SQUARE = np.array([[0, 0, 0], [1.95, 0, 0], [0, 1.95, 0], [-1.95, 0, 0], [0, -1.95, 0.0]])
 
@@ -166,3 +169,53 @@ def test_linear_rung_by_name():
     symmetry = as_group(bent, "Dinfh")
     assert symmetry.group.symbol == "D∞h"
     assert symmetry.deviation == pytest.approx(0.2, abs=1e-9)        # O 0.2 Å and H 0.1 Å from the line between them
+
+
+# Numbers of subgroups of the abstract groups A4 10, S4 30, S4 x C2 98, A5 59, A5 x C2 164: from memory, any text on
+# finite groups; of D_n: sum of the divisors of n + number of divisors of n.
+@pytest.mark.parametrize(("symbol", "count"), [("T", 10), ("Td", 30), ("O", 30), ("Oh", 98), ("I", 59), ("Ih", 164),
+                                               ("D6", 16), ("C5v", 8), ("D9", 16), ("C12", 6)])
+def test_all_subgroups_are_found(symbol, count):
+    assert len(closed_subsets(point_group(symbol).product)) == count
+
+
+def exhaustive_groups(structure, limit):
+    """Return {order: smallest deviation}, trying every permutation of like atoms with either determinant."""
+    points, kinds = structure.positions - structure.positions.mean(axis=0), structure.kinds
+    moves = np.array([p for p in permutations(range(len(points))) if (kinds[list(p)] == kinds).all()])
+    moves, signs = np.concatenate((moves, moves)), np.repeat([1, -1], len(moves))
+    maps = fitted_maps(correlation(points, moves), signs)
+    near = residuals(points, maps, moves).max(axis=1) <= 3 * limit
+    moves, signs, maps = moves[near], signs[near], maps[near]
+    place_of = {(row.tobytes(), sign): k for k, (row, sign) in enumerate(zip(moves, signs.tolist()))}
+    table = np.array([[place_of.get((a[b].tobytes(), s * t), -1) for b, t in zip(moves, signs.tolist())]
+                      for a, s in zip(moves, signs.tolist())])
+    best = {}
+    for members in closed_subsets(table):
+        inside = np.full(len(table), -1)
+        inside[members] = np.arange(len(members))
+        products = inside[table[np.ix_(members, members)]]
+        placement = place(points, moves[members], signs[members], maps[members], products)
+        if placement is not None and placement.deviation <= limit:
+            best[placement.order] = min(placement.deviation, best.get(placement.order, np.inf))
+    return best
+
+
+@pytest.mark.parametrize("seed", range(12))
+def test_against_every_permutation(seed):
+    """The search through pairs of atoms finds what trying all permutations finds, up to a quarter of the shortest
+    distance.
+    """
+    rng = np.random.default_rng(seed)
+    shapes = [SQUARE, np.array([[0, 0, 0], [1, 1, 1], [1, -1, -1], [-1, 1, -1], [-1, -1, 1.0]]),
+              1.7 * np.array([[0, 0, 0], [1, 0, 0], [-0.5, 0.866, 0], [-0.5, -0.866, 0], [0, 0, 1]])]
+    structure = Structure.from_atoms(["C", "F", "F", "F", "F"], shapes[seed % 3] + noise(rng, 5, 0.25))
+    centred = centre(structure)
+    limit = 0.25 * centred.shortest
+    expected = exhaustive_groups(structure, limit)
+    for order, deviation in expected.items():
+        symmetry = find_symmetry(structure, max(deviation + 1e-9, 1e-6))
+        assert symmetry.group.infinite or symmetry.group.order >= order
+    highest = find_symmetry(structure, limit)
+    assert highest.group.order == max(expected)
+    assert highest.deviation == pytest.approx(expected[max(expected)], abs=1e-7)

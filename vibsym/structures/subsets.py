@@ -12,7 +12,7 @@ import numpy as np
 
 from vibsym.structures.candidates import Operations, codes_of
 
-MOST_SUBSETS = 1500            # the largest are extended first, so the large groups are among the first so many
+MOST_WORK = 60_000             # subsets times operations; the largest are extended first, so large groups come first
 
 
 def product_table(operations: Operations) -> np.ndarray:
@@ -106,15 +106,19 @@ def cyclic_groups(table) -> list[tuple[int, list[int]]]:
     return result
 
 
-def closed_subsets(table, start=None, accept=None, most=MOST_SUBSETS) -> list[list[int]]:
+def closed_subsets(table, start=None, accept=None) -> list[list[int]]:
     """Return the closed subsets that hold the group `start` (default the identity alone), smallest first.
 
-    `accept(members)` may refuse a subset, and with it all that hold it.
+    `accept(members)` may refuse a subset, and with it all that hold it. Sets of more than a hundred operations (Ih
+    has 164 subgroups, large rings thousands) are searched from the largest groups downwards as far as MOST_WORK goes.
     """
-    rows = table.tolist()
+    rows, most = table.tolist(), max(100, MOST_WORK // len(table))
     first = [identity_of(table)] if start is None else list(start)
     steps = [generator for generator, members in cyclic_groups(table) if accept is None or accept(members)]
     known = {frozenset(first): (first, list(first) if start is not None else [])}
+    everything = list(range(len(rows)))
+    if table.min() >= 0 and (accept is None or accept(everything)):
+        known[frozenset(everything)] = (everything, [])
     waiting = [(-len(first), 0, frozenset(first))]
     while waiting and len(known) < most:
         _, _, held = heappop(waiting)
