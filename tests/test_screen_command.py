@@ -111,3 +111,20 @@ def test_a_named_point_lets_weak_bands_through(tmp_path):
 def test_bonds_that_are_not_there_name_the_structure():
     answer = run(TUBE[0], *REGION)
     assert answer.exit_code == 1 and "tube-clf3-triangle.xyz" in answer.stderr and answer.stderr.count("\n") == 1
+
+
+def test_isomers_with_bands_in_one_command():
+    """Which isomer of ML2(CO)4 is in the flask."""
+    arguments = ["isomers", "OC-6", "--centre", "Mo", "--ligand", "CO=4", "--ligand", "L=2", *REGION[:2]]
+    answer = json.loads(CliRunner().invoke(cli, [*arguments, "--format", "json"]).stdout)
+    assert [(each["name"], each["rank"], each["verdict"]) for each in answer["isomers"]] == [
+        ("cis", 1, "fits"), ("trans", 2, "excluded")]
+    assert {"score", "excuses", "explanation", "unseen", "oscillators", "arrangement"} <= set(answer["isomers"][0])
+    assert answer["separating"] == [] and answer["bands"]["pairs"] == 3
+    page = CliRunner().invoke(cli, arguments).stdout
+    assert page.index("Fits without excuses: cis") < page.index("Burnside")
+    assert page.rstrip().endswith("one that was not proposed may fit as well.")
+    table = CliRunner().invoke(cli, [*arguments, "--format", "csv"]).stdout.splitlines()
+    assert table[0].endswith("rank,score,verdict,excuses,unseen") and len(table) == 3
+    short = CliRunner().invoke(cli, [*arguments, "--limit", "1"]).stdout
+    assert "2 isomers" in short and "Proofs of the other 1" in short

@@ -3,6 +3,7 @@
 import click
 
 from vibsym.cli import options
+from vibsym.cli.bands import bands_options
 from vibsym.cli.delivery import deliver
 
 
@@ -16,8 +17,10 @@ from vibsym.cli.delivery import deliver
 @click.option("--oscillators", metavar="BOND", help="The stretches to count: C-O, Mo-Cl; C-O by default.")
 @click.option("--limit", type=int, default=200, show_default=True, metavar="N", help="How many isomers to list.")
 @click.option("--write", metavar="DIR", help="Save the listed isomers as XYZ in this folder (idealised).")
+@bands_options
+@click.option("--mixture", is_flag=True, help="With bands: also let every two isomers share the lines.")
 @options.output_options
-def command(symbol, centre, ligands, donors, oscillators, limit, write, form, output):
+def command(symbol, centre, ligands, donors, oscillators, limit, write, form, output, **bands):
     """List every isomer of a composition on the shape SYMBOL.
 
     SYMBOL is a polyhedral symbol of IUPAC: SP-4, T-4, TBPY-5, SPY-5, OC-6, TPR-6, PBPY-7, SAPR-8, TPRS-9, ...
@@ -28,6 +31,7 @@ def command(symbol, centre, ligands, donors, oscillators, limit, write, form, ou
       vibsym isomers OC-6 --centre Mo --ligand CO=4 --ligand L=2 --donor L=P
       vibsym isomers OC-6 --centre Co --ligand 'en(N,N)=2' --ligand Cl=2
       vibsym isomers SP-4 --centre Pt --ligand CO=2 --ligand Cl=2 --write cis-trans
+      vibsym isomers OC-6 --centre Mo --ligand CO=4 --ligand L=2 --bands try-it/flask-bands.csv
     """
     from vibsym.report import isomers as view
     from vibsym.spectra.isomer_bands import list_isomers
@@ -35,7 +39,21 @@ def command(symbol, centre, ligands, donors, oscillators, limit, write, form, ou
     result = list_isomers(symbol, centre, ligands, donors, oscillators, limit)
     if write is not None:
         save(result, write)
+    if bands["bands"] or bands["infrared"] or bands["raman"]:
+        from vibsym.report import isomer_screening as view
+
+        result = screened(list_isomers(symbol, centre, ligands, donors, oscillators, None), limit, **bands)
     deliver([result], view, form, output)
+
+
+def screened(listing, limit, bands, infrared, raman, between, window, allow, light, mixture):
+    """Return all isomers, ranked by how well they explain the observed bands."""
+    from vibsym.evidence.bandlist import read_bands
+    from vibsym.evidence.isomer_screening import screen_isomers
+    from vibsym.evidence.screening import ScreenOptions
+
+    observed = read_bands(bands, infrared, raman, between=between, light=light)
+    return screen_isomers(listing, observed, ScreenOptions(window, allow, mixture), limit)
 
 
 def save(result, directory: str) -> None:

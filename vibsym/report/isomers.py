@@ -9,6 +9,19 @@ from vibsym.spectra.isomer_bands import IsomerBands, IsomerList
 def parts(result: IsomerList, **_) -> list:
     """Return the page."""
     among = result.isomers
+    proof = Paragraph(f"From {count_text(among.orbits.arrangements, 'arrangement')}; Burnside's lemma over the "
+                      f"{among.shape.image.order} operations of {typeset(among.shape.image.symbol)} gives the same.")
+    caption = Paragraph(f"Bands of the oscillators {result.oscillators.name}, at most: infrared, Raman, in both, "
+                        "polarised in Raman. The group is that of the ideal shape with its ligands on it.")
+    page = [*opening(result), proof, _table(result), caption]
+    if result.indices_open:
+        page.append(_open_indices(result))
+    return [*page, _sites(result), *_beware(result)]
+
+
+def opening(result: IsomerList) -> list:
+    """Return the title and the count, which open the page."""
+    among = result.isomers
     title = Title(f"{composition(result)}   {among.shape.symbol}, {among.shape.name}")
     pairs = among.stereoisomers - among.count
     counted = count_text(among.count, "isomer")
@@ -18,15 +31,7 @@ def parts(result: IsomerList, **_) -> list:
         counted += f", {pairs} of them {'a pair' if pairs == 1 else 'pairs'} of enantiomers"
     if pairs:
         counted += f" ({among.stereoisomers} stereoisomers in all)"
-    head = Paragraph(counted if pairs else counted + ", no pairs of enantiomers", strong=True)
-    proof = Paragraph(f"From {count_text(among.orbits.arrangements, 'arrangement')}; Burnside's lemma over the "
-                      f"{among.shape.image.order} operations of {typeset(among.shape.image.symbol)} gives the same.")
-    caption = Paragraph(f"Bands of the oscillators {result.oscillators.name}, at most: infrared, Raman, in both, "
-                        "polarised in Raman. The group is that of the ideal shape with its ligands on it.")
-    page = [title, head, proof, _table(result), caption]
-    if result.indices_open:
-        page.append(_open_indices(result))
-    return [*page, _sites(result), *_beware(result)]
+    return [title, Paragraph(counted if pairs else counted + ", no pairs of enantiomers", strong=True)]
 
 
 def rows(result: IsomerList, **_) -> list[dict]:

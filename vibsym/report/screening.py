@@ -9,15 +9,15 @@ from vibsym.report.wording import NOTHING, count_text
 MOST_DETAILED = 8    # candidates with all their excuses on the page; JSON and CSV hold them all
 
 
-def parts(result: Screening, every: bool = False, **_) -> list:
-    """Return the page; `every` details each candidate instead of the first few."""
+def parts(result: Screening, most: int | None = None, **_) -> list:
+    """Return the page; at most `most` candidates are ranked on it, and the first few told in detail."""
     page = [Title("Observed bands against structures", result.observed.source), Paragraph(_seen(result)),
-            Paragraph(_verdict(result), strong=True), _ranking(result)]
-    detailed = result.candidates if every else result.candidates[:MOST_DETAILED]
+            Paragraph(_verdict(result), strong=True), _ranking(result, most)]
+    detailed = result.candidates[:min(MOST_DETAILED, len(result.candidates) if most is None else most)]
     for candidate in detailed:
         page += _details(candidate)
     if len(detailed) < len(result.candidates):
-        page.append(Paragraph(f"{len(result.candidates) - len(detailed)} more candidates: --format json or csv"))
+        page.append(Paragraph(f"Proofs of the other {len(result.candidates) - len(detailed)}: --format json or csv"))
     if result.separating:
         page.append(Listing(result.separating, "What would separate those that survive, cheapest first"))
     beware = (*result.limits, *result.notes)
@@ -85,14 +85,14 @@ def _verdict(result: Screening) -> str:
         names = [each.prediction.name for each in result.candidates if each.verdict == verdict]
         if names:
             more = f" and {len(names) - 8} more" if len(names) > 8 else ""
-            told.append(f"{title}: {', '.join(names[:8])}{more}")
+            told.append(f"{title}: {('; ' if any(',' in each for each in names) else ', ').join(names[:8])}{more}")
     return "\n".join(told)
 
 
-def _ranking(result: Screening) -> Table:
+def _ranking(result: Screening, most: int | None) -> Table:
     ranks = [each.rank for each in result.candidates]
     table = []
-    for each in result.candidates:
+    for each in result.candidates[:most]:
         counts = each.prediction.counts
         table.append((f"{each.rank}{'=' if ranks.count(each.rank) > 1 else ''}", each.prediction.name, each.verdict,
                       _groups(each), f"{each.score:.2f}", f"{each.weight:g}", str(len(each.unseen)),
