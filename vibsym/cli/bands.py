@@ -15,8 +15,11 @@ def bands_options(command):
         click.option("--window", type=float, default=5.0, show_default=True, metavar="CM-1",
                      help="Largest difference of an infrared and a Raman line that coincide."),
         click.option("--between", type=float, nargs=2, metavar="LOW HIGH", help="Use only the lines of this region."),
-        click.option("--raman", metavar="FILE", help="Raman lines, without a spectrum column."),
-        click.option("--ir", "infrared", metavar="FILE", help="Infrared lines, without a spectrum column."),
+        click.option("--raman", metavar="FILE",
+                     help="Raman lines without a spectrum column, or a measured Raman spectrum (two "
+                          "columns, or JCAMP-DX) whose peaks are taken."),
+        click.option("--ir", "infrared", metavar="FILE",
+                     help="Infrared lines without a spectrum column, or a measured infrared spectrum."),
         click.option("--bands", metavar="FILE", help="Observed lines: CSV with wavenumber, spectrum, strength, "
                                                     "polarisation, uncertainty, together, note."),
     ):

@@ -8,7 +8,7 @@ commas.  A decimal comma is read where it cannot be mistaken: within quotes, or 
 Every doubtful row is named: the error tells file, line and value of the first ones and the lines of the others.
 """
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, field, replace
 
 from vibsym.errors import VibsymError
 from vibsym.evidence.lines import SPECTRA, Band, Line, bands_of
@@ -29,6 +29,7 @@ class BandList:
     source: str = ""
     notes: tuple[str, ...] = ()
     between: tuple[float, float] | None = None    # stated range, cm-1
+    measured: tuple = field(default=(), compare=False)   # `Peaks` of each measured spectrum given instead of a list
 
     @property
     def bands(self) -> tuple[Band, ...]:
@@ -63,11 +64,42 @@ def read_bands(bands: str | None = None, infrared: str | None = None, raman: str
         raise VibsymError("no observed bands: give --bands FILE, or --ir FILE and --raman FILE")
     if bands and len(given) > 1:
         raise VibsymError("--bands names both spectra: give it alone, or --ir and --raman without it")
-    lists = [parse_bands(_load(path), path, spectrum, light=light) for path, spectrum in given]
+    lists = [_list_of(path, spectrum, between, light) for path, spectrum in given]
     together = BandList(tuple(line for each in lists for line in each.lines),
                         tuple(name for name in SPECTRA if any(name in each.spectra for each in lists)),
-                        ", ".join(str(path) for path, _ in given), tuple(note for each in lists for note in each.notes))
+                        ", ".join(str(path) for path, _ in given), tuple(note for each in lists for note in each.notes),
+                        measured=tuple(found for each in lists for found in each.measured))
     return within(together, between)
+
+
+def _list_of(path: str, spectrum: str | None, between, light: str) -> BandList:
+    """Return the lines of a file; where the spectrum is named it may be a measured one, whose peaks are the lines."""
+    text = _load(path, spectrum is not None)
+    if spectrum is not None:
+        from vibsym.evidence.spectrum import is_spectrum
+
+        if is_spectrum(text):
+            return _peaks_of(text.lstrip("\ufffe"), path, spectrum, between)
+    if len(text) > LARGEST_FILE:
+        raise VibsymError(_TOO_LARGE.format(path=path))
+    if text.startswith("##"):
+        raise VibsymError(f"{path}: a measured spectrum (JCAMP-DX); give it to --ir or --raman")
+    return parse_bands(text, path, spectrum, light=light)
+
+
+def _peaks_of(text: str, path: str, spectrum: str, between) -> BandList:
+    """Return the peaks of a measured spectrum as lines, and a note that tells how they were picked."""
+    from vibsym.evidence.peaks import pick_peaks
+    from vibsym.evidence.spectrum import parse_spectrum
+
+    found = pick_peaks(parse_spectrum(text, str(path), spectrum), between=between)
+    if not found.peaks:
+        raise VibsymError(f"{path}: no peak of {found.statement}; see vibsym peaks --prominence")
+    lines = tuple(Line(peak.wavenumber, spectrum, peak.strength, uncertainty=peak.uncertainty, source=str(path))
+                  for peak in found.peaks)
+    note = (f"{path}: {len(lines)} {'peak' if len(lines) == 1 else 'peaks'} picked from the measured spectrum, "
+            f"{found.statement}; vibsym peaks writes them as a list to correct")
+    return BandList(lines, (spectrum,), str(path), (*found.notes, note), measured=(found,))
 
 
 def within(observed: BandList, between: tuple[float, float] | None) -> BandList:
@@ -123,24 +155,33 @@ def parse_bands(text: str, source: str = "band list", spectrum: str | None = Non
     return BandList(tuple(lines), spectra, source, tuple(notes))
 
 
-def _load(path: str) -> str:
-    """Return the text of a file; `-` is standard input.  A text that is not UTF-8 opens with U+FFFE."""
+_TOO_LARGE = (f"{{path}}: more than {LARGEST_FILE // 1_000_000} MB; a band list has one row a line: "
+              "is it a measured spectrum?")
+
+
+def _load(path: str, measured: bool = False) -> str:
+    """Return the text of a file; `-` is standard input.  A text that is not UTF-8 opens with U+FFFE.
+
+    A measured spectrum may be larger than a band list.
+    """
     import sys
     from pathlib import Path
 
+    from vibsym.files import LARGEST_FILE as LARGEST_SPECTRUM
+
+    most = LARGEST_SPECTRUM if measured else LARGEST_FILE
     try:
         if str(path) == "-":
-            raw = sys.stdin.buffer.read(LARGEST_FILE + 1)
+            raw = sys.stdin.buffer.read(most + 1)
         else:
             with Path(path).open("rb") as file:
-                raw = file.read(LARGEST_FILE + 1)
+                raw = file.read(most + 1)
     except IsADirectoryError:
         raise VibsymError(f"{path}: is a folder; name a band list (CSV)") from None
     except (OSError, ValueError) as error:
         raise VibsymError(f"{path}: cannot be read ({getattr(error, 'strerror', None) or error})") from None
-    if len(raw) > LARGEST_FILE:
-        raise VibsymError(f"{path}: more than {LARGEST_FILE // 1_000_000} MB; a band list has one row a line: "
-                          "is it a measured spectrum?")
+    if len(raw) > most:
+        raise VibsymError(_TOO_LARGE.format(path=path))
     if raw[:2] in (b"\xff\xfe", b"\xfe\xff"):
         return raw.decode("utf-16", errors="replace")
     if b"\0" in raw:

@@ -1,11 +1,12 @@
-"""Results to text: terminal, JSON, CSV, Markdown. Functions from a result to a string.
+"""Results to text: terminal, JSON, CSV, Markdown, LaTeX. Functions from a result to a string.
 
 A *view* is a module with three functions of a result and the options of its page:
 `parts(result, **options)` the page, `rows(result, **options)` the CSV rows, `as_object(result, **options)` the JSON
-object.  `render` sets one or several results in any format.
+object; it may have `head(result, **options)`, comment lines above the CSV.  `render` sets one or several results in any
+format.
 """
 
-FORMATS = ("table", "json", "csv", "markdown")
+FORMATS = ("table", "json", "csv", "markdown", "latex")
 
 
 def render(results, view, form: str = "table", width: int = 80, colour: bool = False, **options) -> str:
@@ -17,11 +18,21 @@ def render(results, view, form: str = "table", width: int = 80, colour: bool = F
     if form == "csv":
         from vibsym.report.csv import set_csv
 
-        return set_csv([row for result in results for row in view.rows(result, **options)])
+        notes = [line for result in results for line in getattr(view, "head", _no_head)(result, **options)]
+        return ("".join(f"# {' '.join(line.split())}\n" for line in notes)
+                + set_csv([row for result in results for row in view.rows(result, **options)]))
     if form == "markdown":
         from vibsym.report.markdown import set_markdown
 
         return "\n".join(set_markdown(view.parts(result, **options)) for result in results)
+    if form == "latex":
+        from vibsym.report.latex import set_latex
+
+        return "\n".join(set_latex(view.parts(result, **options)) for result in results)
     from vibsym.report.terminal import set_page
 
     return "\n\n".join(set_page(view.parts(result, **options), width, colour) for result in results)
+
+
+def _no_head(result, **_) -> list[str]:
+    return []
