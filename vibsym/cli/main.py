@@ -19,6 +19,9 @@ COMMANDS = {
     "isomers": "vibsym.cli.isomers",
     "screen": "vibsym.cli.screen",
     "peaks": "vibsym.cli.peaks",
+    "combine": "vibsym.cli.combine",
+    "descend": "vibsym.cli.descend",
+    "isotopes": "vibsym.cli.isotopes",
     "samples": "vibsym.cli.samples",
 }
 

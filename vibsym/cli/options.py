@@ -1,7 +1,7 @@
 """Options that several commands share, one decorator each; they mean the same everywhere.
 
-Values are taken as text or numbers and checked by the library, so that a wrong value is one line and exit code 1; only
-what click refuses without reading anything leaves with 2.
+Values are taken as text or numbers and checked by the library, so that a wrong value is one line and exit code 1;
+only what click refuses without reading anything leaves with 2.
 """
 
 import click
@@ -29,6 +29,16 @@ atoms_option = click.option(
     "--atoms", metavar="1,5,6", help="Only coordinates whose atoms are all among these.")
 write_option = click.option(
     "--write", metavar="FILE", help="Save the symmetrised structure of the suggested rung (or of --as) as XYZ.")
+modes_option = click.option(
+    "--mode", "modes", multiple=True, metavar="ν4:T2=1306",
+    help="A fundamental with its species and cm-1, once for each; v4 is read as ν4, and the number may be left out.")
+assignment_option = click.option(
+    "--assignment", multiple=True, metavar="FILE", help="Fundamentals from an assignment (CSV of vibsym assign).")
+doublet_option = click.option(
+    "--doublet", "doublets", multiple=True, metavar="1388:1285=1.6",
+    help="Two lines in Fermi resonance and the intensity of the first over that of the second.")
+temperature_option = click.option(
+    "--temperature", type=float, default=296.0, show_default=True, metavar="K", help="Temperature of the sample.")
 
 
 def oscillator_options(command):

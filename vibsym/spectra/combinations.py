@@ -3,8 +3,8 @@
 The upper level of ν_i + 2ν_j has the species Γ_i × [Γ_j²] (symmetric power: quanta of one vibration are alike); a
 difference starts from an excited level, and its transition is allowed where (upper level) × (lower level) holds an
 active species (E. B. Wilson, J. C. Decius, P. C. Cross, Molecular Vibrations, 1955, ch. 7; G. Herzberg, Infrared and
-Raman Spectra, 1945, ch. III,2). Positions are sums of the observed fundamentals; anharmonicity puts overtones and sums
-a little lower, as a rule.
+Raman Spectra, 1945, ch. III,2). Positions are sums of the observed fundamentals; anharmonicity puts overtones and
+sums a little lower, as a rule.
 """
 
 from collections.abc import Iterator, Sequence
@@ -121,8 +121,9 @@ def combine(group, modes: Sequence[Mode], quanta: int = 2, *, temperature: float
             resonance: float = DEFAULT_RESONANCE, doublets: Sequence[Doublet] = ()) -> Combinations:
     """Return every overtone, sum and difference with 2 to `quanta` quanta.
 
-    `resonance` (cm-1) is how near a fundamental and a combination of a common species count as a Fermi pair; `doublets`
-    are observed pairs of lines with their intensity ratio.  A combination without a known wavenumber has none.
+    `resonance` (cm-1) is how near a fundamental and a combination of a common species count as a Fermi pair;
+    `doublets` are observed pairs of lines with their intensity ratio.  A combination without a known wavenumber has
+    none.
 
     >>> from vibsym.groups.pointgroup import point_group
     >>> result = combine(point_group("Td"), [Mode("ν4", "T2", 1306.0)])
@@ -238,10 +239,11 @@ def _with_fermi(found: list[Combination], modes, resonance: float, doublets) -> 
     for mode in modes:
         if mode.wavenumber is None:
             continue
-        for k in np.flatnonzero(np.abs(positions - mode.wavenumber) <= resonance):
+        doublet = next((each for each in doublets if each.holds(mode.wavenumber)), None)
+        reach = max(resonance, doublet.upper - doublet.lower) if doublet else resonance
+        for k in np.flatnonzero(np.abs(positions - mode.wavenumber) <= reach):
             each = found[k]
             if mode.species in each.species and set(each.quanta) != {mode.name}:
-                doublet = next((d for d in doublets if d.holds(mode.wavenumber)), None)
                 pairs.setdefault(int(k), []).append(FermiPair(mode.name, each.label, (mode.species,),
                                                               each.wavenumber - mode.wavenumber, doublet))
     for k, own in pairs.items():

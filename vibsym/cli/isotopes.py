@@ -1,0 +1,79 @@
+"""`vibsym isotopes`: isotopic substitution, the product rule, isotopologues and carbonyl satellites."""
+
+import click
+
+from vibsym.cli import options
+from vibsym.cli.assigned import check_group, one_structure
+
+
+@click.command("isotopes")
+@options.structure_argument
+@click.option("--replace", metavar="1=D,2=D", help="Isotopes: 1=D for an atom (from 1), H=D for all of a kind.")
+@click.option("--enumerate", "every", is_flag=True,
+              help="List every distinct isotopologue with none, some or all of the replacements made.")
+@click.option("--satellites", is_flag=True, help="Carbon-13 satellites of the carbonyls at natural abundance.")
+@options.modes_option
+@options.assignment_option
+@options.doublet_option
+@options.output_options
+@options.tolerance_option
+@options.axes_option
+@options.reading_options
+def command(structure, replace, every, satellites, modes, assignment, doublets, form, output, tolerance, axes,
+            **reading):
+    """Compare a STRUCTURE with its isotopologue: group, activity, and the product rule.
+
+    With two --assignment files, first that of STRUCTURE, then that of the isotopologue, observed products stand
+    beside theory. With --satellites, --mode A1g=2117 once for each C-O stretch gives the positions.
+
+    \b
+    Examples:
+      vibsym isotopes try-it/cylinder-bf3.xyz --replace 1=10B
+      vibsym isotopes try-it/rinse-dichloromethane.mol --replace H=D
+      vibsym isotopes try-it/rinse-dichloromethane.mol --replace H=D --enumerate
+    """
+    from vibsym.cli.delivery import deliver
+    from vibsym.errors import VibsymError
+    from vibsym.report import isotopes as view
+
+    molecule = one_structure(structure, reading)
+    if satellites:
+        if replace or assignment or every:
+            raise VibsymError("--satellites goes with --mode only; leave the other options out")
+        deliver([_satellites(molecule, modes, tolerance)], view, form, output)
+        return
+    if not replace:
+        raise VibsymError("nothing to replace; write --replace 1=D,2=D, --replace H=D, or --satellites")
+    if every:
+        from vibsym.spectra.isotopologues import list_isotopologues
+
+        deliver([list_isotopologues(molecule, replace, tolerance)], view, form, output)
+        return
+    deliver([_effect(molecule, replace, tolerance, axes, assignment, doublets)], view, form, output)
+
+
+def _effect(molecule, replace, tolerance, axes, assignment, doublets):
+    from vibsym.errors import VibsymError
+    from vibsym.evidence.assignment_file import read_assignment
+    from vibsym.spectra.fermi import parse_doublet
+    from vibsym.spectra.isotopes import isotope_effect
+    from vibsym.structures.isotopes import substitution
+
+    if len(assignment) not in (0, 2):
+        raise VibsymError("give --assignment twice: that of the structure first, then that of the isotopologue")
+    pair = substitution(molecule, replace, tolerance, axes)
+    lines = []
+    for path, symmetry in zip(assignment, (pair.original, pair.substituted)):
+        file = read_assignment(path)
+        check_group(file, symmetry.group)
+        lines.append(file.modes(symmetry.group))
+    return isotope_effect(pair, *(lines or ((), ())), [parse_doublet(text) for text in doublets])
+
+
+def _satellites(molecule, modes, tolerance):
+    from vibsym.spectra.modes import parse_modes
+    from vibsym.spectra.satellites import satellites
+    from vibsym.structures.finder import find_symmetry
+
+    group = find_symmetry(molecule, tolerance).group
+    return satellites(molecule, {mode.species: mode.wavenumber for mode in parse_modes(modes, group)}, tolerance)
