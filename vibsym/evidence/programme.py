@@ -60,6 +60,8 @@ def least(kinds: tuple, capacities: tuple, by_chance: int, spectra: tuple, order
     programme.minimise((column["halves"] * size + left) * size - column["polarised"])
     programme.keep(column["halves"], left, column["polarised"])
     programme.minimise((column["odd"] - column["covered"] * size) * size * len(kinds) + late)
+    programme.keep(column["odd"], column["covered"], late)
+    programme.minimise(np.array([(each.kind + 1) * (each.activity + 1) for each in unknowns], float))  # for one answer
     return _solution(unknowns, programme.answer, kinds, capacities, round(float(column["halves"] @ programme.answer)))
 
 
