@@ -27,8 +27,9 @@ def command(structures, bands, infrared, raman, between, window, allow, light, m
     Fewer bands than predicted never exclude a structure; forbidden bands that are seen do.
 
     \b
-    Example:
-      vibsym screen try-it/cis.xyz try-it/trans.xyz --bands try-it/bands.csv --oscillators C-O
+    Examples:
+      vibsym screen try-it/tube-clf3-*.xyz --bands try-it/tube-clf3-bands.csv
+      vibsym screen try-it/flask-cis.xyz try-it/flask-trans.xyz --bands try-it/flask-bands.csv --oscillators C-O --local
     """
     from vibsym.evidence.bandlist import read_bands
     from vibsym.evidence.proposals import Proposal, screen
