@@ -1,0 +1,84 @@
+"""Estimated wavenumbers of a structure with their uncertainty: the force field, and the error model of its calibration."""
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from functools import cache
+
+from vibsym.structures.symmetry import Symmetry
+from vibsym.tables import read_table
+from vibsym.vibrations.forcefield import ForceField, standard_field
+from vibsym.vibrations.internal import internal_coordinates
+from vibsym.vibrations.normal_modes import Mode, normal_modes
+
+DOMINANT = 0.5            # share from which a kind names a mode
+HALOGENS = ("F", "Cl", "Br", "I")
+
+
+@dataclass(frozen=True, eq=False)
+class Estimates:
+    """Modes of the valence force field, the sets whose constants are fall-backs, and the coordinates used."""
+
+    symmetry: Symmetry
+    modes: tuple[Mode, ...]
+    fallback: tuple[dict, ...]
+    sets: Sequence
+
+    @property
+    def lacking(self) -> set[str]:
+        """Names of the sets whose bonds have no entry."""
+        return {each["set"] for each in self.fallback}
+
+    def spread(self, mode: Mode) -> float:
+        """Return the standard error of ln(estimate) of a mode."""
+        return error_model(mode_class(mode, self.lacking))[0]
+
+    def shift(self, mode: Mode) -> float:
+        """Return the median of ln(estimate/observed) of modes of this kind."""
+        return error_model(mode_class(mode, self.lacking))[1]
+
+
+def estimate(symmetry: Symmetry, field: ForceField | None = None, bonds=None) -> Estimates:
+    """Return the modes of a structure by the valence force field (the standard one by default)."""
+    field = standard_field() if field is None else field
+    sets = internal_coordinates(symmetry, bonds)
+    symbols, positions = symmetry.structure.symbols, symmetry.positions
+    F = field.matrix(symbols, positions, sets)
+    return Estimates(symmetry, normal_modes(symmetry, sets, F), field.fallback(symbols, positions, sets), sets)
+
+
+def mode_class(mode: Mode, lacking: set[str]) -> str:
+    """Return the class of a mode in the error model, from its energy distribution.
+
+    `stretch H`, `stretch`, `stretch fallback`, `bend H`, `bend`, `linear bend`, `wag`, `torsion`, or `mixed`.
+    """
+    totals: dict[str, float] = {}
+    for name, share in mode.shares:
+        kind, _, elements = name.rpartition(" ")
+        if name in lacking:
+            kind = "stretch fallback"
+        elif kind in ("stretch", "bend"):
+            ends = elements.split("-")
+            light = any(_hydrogen(end) for end in (ends if kind == "stretch" else (ends[0], ends[-1])))
+            kind += " H" if light else ""
+        totals[kind] = totals.get(kind, 0.0) + share
+    kind = max(totals, key=totals.get, default="mixed")
+    if totals.get(kind, 0) < DOMINANT:
+        return "mixed"
+    if kind == "stretch H" and any(name.startswith("stretch ") and name.rpartition(" ")[2] in ("C-H", "C-D") for name, _ in mode.shares[:1]):
+        return "stretch C-H"
+    return kind
+
+
+def _hydrogen(label: str) -> bool:
+    return label in ("H", "D", "T", "1H", "2H", "3H")
+
+
+@cache
+def _errors() -> dict[str, tuple[float, float]]:
+    return {row["class"]: (float(row["spread"]), float(row["shift"])) for row in read_table("estimate_errors.csv")}
+
+
+def error_model(name: str) -> tuple[float, float]:
+    """Return (spread, shift) of a class; a class without enough cases takes those of all."""
+    errors = _errors()
+    return errors.get(name) or errors["any"]
