@@ -172,6 +172,14 @@ def test_impossible_tolerances(tolerance):
     assert "\n" not in str(error.value)
 
 
+def test_a_tolerance_below_rounding():
+    for labels, places in ((["H", "F"], [[0.1, 0.2, 0.3], [0.7, 0.3, 0.9]]),
+                           (["O", "H", "H"], [[9, 0, 0], [9.76, 0.59, 0], [8.24, 0.59, 0]])):
+        symmetry = find_symmetry(Structure.from_atoms(labels, places), 1e-200)
+        assert symmetry.group.symbol in ("C∞v", "C2v", "Cs")
+        assert symmetry.deviation < 1e-11
+
+
 def test_half_the_shortest_distance_is_the_largest_tolerance():
     structure = Structure.from_atoms(["H", "H"], [[0, 0, 0], [0, 0, 0.74]])
     assert find_symmetry(structure, 0.37).group.symbol == "D∞h"

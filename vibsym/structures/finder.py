@@ -37,6 +37,16 @@ class Centred:
     centroid: np.ndarray
     shortest: float
 
+    @property
+    def most(self) -> float:
+        """The largest legal tolerance, Å."""
+        return min(LARGEST_TOLERANCE, 0.5 * self.shortest)
+
+    @property
+    def rounding(self) -> float:
+        """What rounding alone moves the atoms by, Å; no tolerance can be smaller."""
+        return 1e-13 * (1.0 + float(np.abs(self.structure.positions).max()))
+
 
 def find_symmetry(structure, tolerance: float = DEFAULT_TOLERANCE, axes: str | None = None, bonds=None) -> Symmetry:
     """Return the largest point group within `tolerance` (Å) of a structure, with its standard frame.
@@ -45,7 +55,7 @@ def find_symmetry(structure, tolerance: float = DEFAULT_TOLERANCE, axes: str | N
     `bonds` (B, 2) are used by the ladder of choice, by default those of `find_bonds`.
     """
     centred = centre(structure_of(structure))
-    tolerance = legal_tolerance(tolerance, centred.shortest)
+    tolerance = legal_tolerance(tolerance, centred)
     found = line_within(centred, tolerance)
     if found is None:
         found = largest_group(centred, tolerance)
@@ -59,7 +69,7 @@ def centre(structure) -> Centred:
     return Centred(structure, positions - centroid, np.asarray(structure.kinds), centroid, closest_pair(positions)[2])
 
 
-def legal_tolerance(tolerance, shortest: float) -> float:
+def legal_tolerance(tolerance, centred: Centred) -> float:
     """Return the tolerance as a number, or raise: it must lie between zero and the smaller of 0.5 Å and half the
     shortest distance.
     """
@@ -67,13 +77,13 @@ def legal_tolerance(tolerance, shortest: float) -> float:
         value = float(tolerance)
     except (TypeError, ValueError):
         raise VibsymError(f"the tolerance '{tolerance}' is not a number; give a length in Å such as 0.02") from None
-    most = min(LARGEST_TOLERANCE, 0.5 * shortest)
+    most = centred.most
     if not value > 0:
         raise VibsymError(f"the tolerance {value:g} Å is not above zero; give a length in Å such as 0.02")
     if value > most + 1e-12:
         why = "0.5 Å" if most == LARGEST_TOLERANCE else f"{most:.3f} Å, half the shortest distance between atoms"
         raise VibsymError(f"the tolerance {value:g} Å is too large; here it can be at most {why}")
-    return value
+    return max(value, centred.rounding)
 
 
 def line_within(centred: Centred, tolerance: float) -> LinearPlacement | None:

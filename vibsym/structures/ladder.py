@@ -16,7 +16,6 @@ from vibsym.groups.pointgroup import point_group
 from vibsym.structures.candidates import Operations, codes_of, find_operations
 from vibsym.structures.finder import (
     DEFAULT_TOLERANCE,
-    LARGEST_TOLERANCE,
     Centred,
     centre,
     largest_group,
@@ -66,13 +65,13 @@ class Ladder:
 def ladder(structure, tolerance: float = DEFAULT_TOLERANCE, axes: str | None = None, bonds=None) -> Ladder:
     """Return the ladder of a structure; `axes` and `bonds` choose the axes of the group found as in `find_symmetry`."""
     centred = centre(structure_of(structure))
-    tolerance = legal_tolerance(tolerance, centred.shortest)
+    tolerance = legal_tolerance(tolerance, centred)
     found, higher = _climb(centred, tolerance)
     rungs = _nested(found, higher)
     symmetries = [symmetry_of(centred, rungs[0], tolerance, axes, bonds)]
     for placement in rungs[1:]:
         symmetry = symmetry_of(centred, placement, tolerance, None, bonds)
-        symmetries.append(replace(symmetry, tolerance=_tolerance_of(symmetry.deviation, tolerance)))
+        symmetries.append(replace(symmetry, tolerance=_tolerance_of(symmetry.deviation, tolerance, centred.most)))
     spoilers = [_spoilers(above.shifts, tolerance) for above in symmetries[1:]] + [()]
     return Ladder(tuple(map(Rung, symmetries, spoilers)), _suggested([s.deviation for s in symmetries]))
 
@@ -84,22 +83,22 @@ def as_group(structure, symbol: str, tolerance: float = DEFAULT_TOLERANCE, axes:
     """
     wanted = point_group(symbol).symbol
     centred = centre(structure_of(structure))
-    tolerance = legal_tolerance(tolerance, centred.shortest)
+    tolerance = legal_tolerance(tolerance, centred)
     found, higher = _climb(centred, tolerance)
     fitting = [p for p in (found, *higher) if symbol_of(p) == wanted]
     if fitting:
         best = min(fitting, key=lambda p: p.deviation)
         symmetry = symmetry_of(centred, best, tolerance, axes, bonds)
-        return replace(symmetry, tolerance=_tolerance_of(symmetry.deviation, tolerance))
+        return replace(symmetry, tolerance=_tolerance_of(symmetry.deviation, tolerance, centred.most))
     rungs = ", ".join(f"{symbol_of(p)} ({p.deviation:.3f} Å)" for p in _nested(found, higher))
     name = f"{centred.structure.source}: " if centred.structure.source else ""
     raise VibsymError(f"{name}the structure does not approach {wanted}; its rungs are {rungs}")
 
 
-def _tolerance_of(deviation: float, tolerance: float) -> float:
+def _tolerance_of(deviation: float, tolerance: float, most: float) -> float:
     """Return the tolerance at which a rung is reached: the one given, or its deviation rounded up to the next 0.01 Å.
     """
-    return max(tolerance, float(np.ceil(deviation * 100 - 1e-9) / 100), deviation)
+    return max(tolerance, min(most, float(np.ceil(deviation * 100 - 1e-9) / 100)), deviation)
 
 
 def symbol_of(placement) -> str:
@@ -111,9 +110,8 @@ def symbol_of(placement) -> str:
 
 def largest_tolerance(centred: Centred) -> float:
     """Return the largest legal tolerance; structures of many atoms are searched less far, for time."""
-    most = min(LARGEST_TOLERANCE, 0.5 * centred.shortest)
     atoms = len(centred.points)
-    return most if atoms <= MOST_ATOMS else most * (MOST_ATOMS / atoms) ** (2 / 3)
+    return centred.most if atoms <= MOST_ATOMS else centred.most * (MOST_ATOMS / atoms) ** (2 / 3)
 
 
 def _climb(centred: Centred, tolerance: float):
