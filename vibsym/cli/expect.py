@@ -16,8 +16,11 @@ from vibsym.cli.reading import finish, results_of
 @options.working_option
 @options.light_option
 @options.oscillator_options
+@click.option("--gas", is_flag=True, help="Add rotor, rotational constants and band contours of the gas.")
+@click.option("--temperature", type=float, metavar="K", help="Temperature of the gas [296].")
+@click.option("--zeta", metavar="T2=0.05", help="Coriolis constant of degenerate species: a number, or one a species.")
 def command(structures, form, output, tolerance, as_group, axes, working, light, oscillators, local, local_tolerance,
-            distinguish, **reading):
+            distinguish, gas, temperature, zeta, **reading):
     """Tell which infrared and Raman bands each STRUCTURE can show.
 
     A STRUCTURE is an XYZ or MDL mol file, or - for standard input.
@@ -32,7 +35,12 @@ def command(structures, form, output, tolerance, as_group, axes, working, light,
     from vibsym.report import expectation as view
     from vibsym.spectra.expectation import expect
 
+    if zeta is not None:
+        from vibsym.spectra.contours import parse_zeta
+
+        zeta = parse_zeta(zeta)
     chosen = {"as_group": as_group, "axes": axes, "oscillators": oscillators, "local": local,
-              "local_tolerance": local_tolerance, "distinguish": distinguish}
+              "local_tolerance": local_tolerance, "distinguish": distinguish, "gas": gas, "temperature": temperature,
+              "zeta": zeta}
     results, failures = results_of(structures, lambda structure: expect(structure, tolerance, **chosen), **reading)
     finish(results, failures, view, form, output, working=working, light=light)

@@ -31,6 +31,10 @@ def parts(result: Expectation, working: bool = False, light: str = "plane", **_)
     page.append(Paragraph(_counts(result), strong=True))
     page += [_species_table(result), Paragraph(_ratio_line(result, light))]
     page += [*_oscillators(result), *_regions(result), *_representations(result)]
+    if result.gas is not None:
+        from vibsym.report.contours import gas_parts
+
+        page += gas_parts(result.gas)
     if working:
         from vibsym.report.working import working_parts
 
@@ -52,6 +56,10 @@ def rows(result: Expectation, **_) -> list[dict]:
     row |= {name: gamma_plain(gamma) for name, gamma in gammas.items()}
     row |= result.counts.to_dict()
     row |= _oscillator_columns(result)
+    if result.gas is not None:
+        from vibsym.report.contours import gas_columns
+
+        row |= gas_columns(result.gas)
     row |= {f"axis_{name}": result.axes.words.get(name, "") for name in "xyz"}
     return [row | {"exchange": "; ".join(result.axes.exchange)}]
 

@@ -105,5 +105,6 @@ def _satellites(result: Satellites) -> list:
     notes = "Weight: molecules with one carbon-13 among the equivalent carbonyls, relative to those with none."
     if not result.molecules[0].positions:
         notes += " Positions need one C-O stretch of every species (--mode)."
-    table = Table(head, tuple(rows), right=frozenset({2}), flow=True, heading="Carbon-13 satellites at natural abundance")
+    table = Table(head, tuple(rows), right=frozenset({2}), flow=True,
+                  heading="Carbon-13 satellites at natural abundance")
     return [about_structure(result.structure), table, Paragraph(notes)]

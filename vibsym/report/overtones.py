@@ -70,8 +70,8 @@ def _fermi(result: Combined) -> list:
         if pair.doublet:
             line += (f": lines {pair.doublet.upper:g} and {pair.doublet.lower:g}, undisturbed fundamental "
                      f"{pair.doublet.fundamental:.1f}, undisturbed {_text(pair.combination)} "
-                     f"{pair.doublet.partner:.1f}, W = {pair.doublet.interaction:.1f} cm-1 (two levels, all intensity from the fundamental; "
-                     "Langseth & Lord 1938, Herzberg 1945)")
+                     f"{pair.doublet.partner:.1f}, W = {pair.doublet.interaction:.1f} cm-1 "
+                     "(two levels, all intensity from the fundamental; Langseth & Lord 1938, Herzberg 1945)")
         items.append(line)
     heading = f"Possible Fermi resonance (within {result.result.resonance:g} cm-1)"
     return [Listing(tuple(items), heading)] if items else []

@@ -15,6 +15,7 @@ from vibsym.structures.symmetry import Symmetry
 from vibsym.vibrations.cartesian import Displacements, displacements
 
 if TYPE_CHECKING:
+    from vibsym.spectra.contours import GasPhase
     from vibsym.spectra.oscillators import Oscillators
 
 DEFAULT_TOLERANCE = 0.02  # Å
@@ -25,14 +26,15 @@ LOCAL_TOLERANCE = 0.3  # Å; for the group of oscillators, wide enough for the a
 class Expectation:
     """Γ3N, Γvib and the number of bands of a structure in its group.
 
-    `found` is the symmetry within the tolerance when the analysis was made in another group of the ladder (`as_group`);
-    `oscillators` one set of stretches, where it was asked for.
+    `found` is the symmetry within the tolerance when the analysis was made in another group of the ladder
+    (`as_group`); `oscillators` one set of stretches, `gas` the band contours, where they were asked for.
     """
 
     symmetry: Symmetry
     displacements: Displacements
     found: Symmetry | None = None
     oscillators: "Oscillators | None" = None
+    gas: "GasPhase | None" = None
 
     @property
     def structure(self) -> Structure:
@@ -113,7 +115,7 @@ class Expectation:
             "species": [row.to_dict() for row in self.species], "counts": self.counts.to_dict(),
             **self.regions.to_dict(), **(self.oscillators.to_dict() if self.oscillators else {}),
             "axes": dict(self.axes.words), "exchange": list(self.axes.exchange), "next_rung": self._next_rung(),
-            "notes": list(self.notes)}
+            "notes": list(self.notes), **({"gas": self.gas.to_dict()} if self.gas else {})}
 
     def _next_rung(self) -> dict | None:
         rung = self.ladder.next if self.found is None else None
@@ -122,13 +124,15 @@ class Expectation:
 
 def expect(source, tolerance: float = DEFAULT_TOLERANCE, *, as_group: str | None = None, axes: str | None = None,
            oscillators: str | None = None, local: bool = False, local_tolerance: float = LOCAL_TOLERANCE,
-           distinguish: bool = False) -> Expectation:
+           distinguish: bool = False, gas: bool = False, temperature: float | None = None,
+           zeta=None) -> Expectation:
     """Return what infrared and Raman spectra of a structure can show.
 
-    `source` is a `Structure`, a `Symmetry`, or any object that offers chemical symbols and positions; `tolerance` in Å.
-    With `as_group` the analysis is made in that group of the ladder, with `axes` in another choice
-    of axes (`swap`, or an order such as `yxz`).  `oscillators` (`C-O`, `Mo-C-O`, `2-3,4-5`) looks at one set of stretches,
-    with `local` also in the group of what they see (vibsym/spectra/oscillators.py).
+    `source` is a `Structure`, a `Symmetry`, or any object that offers chemical symbols and positions; `tolerance` in
+    Å. With `as_group` the analysis is made in that group of the ladder, with `axes` in another choice of axes
+    (`swap`, or an order such as `yxz`).  `oscillators` (`C-O`, `Mo-C-O`, `2-3,4-5`) looks at one set of stretches,
+    with `local` also in the group of what they see (vibsym/spectra/oscillators.py).  `gas` adds the contours of a gas
+    at `temperature` (K; 296 by default) with the Coriolis constant `zeta` (vibsym/spectra/contours.py).
     """
     if local and not oscillators:
         raise VibsymError("--local needs --oscillators: name the stretches, as in --oscillators C-O")
@@ -138,7 +142,15 @@ def expect(source, tolerance: float = DEFAULT_TOLERANCE, *, as_group: str | None
         from vibsym.spectra.oscillators import oscillators as look_at
 
         chosen = look_at(symmetry, oscillators, local, local_tolerance, distinguish)
-    return Expectation(symmetry, displacements(symmetry), found, chosen)
+    counted = displacements(symmetry)
+    contours = None
+    if gas:
+        from vibsym.spectra.contours import DEFAULT_TEMPERATURE, gas_phase
+
+        contours = gas_phase(symmetry, counted.gamma_vib, DEFAULT_TEMPERATURE if temperature is None else temperature, zeta)
+    elif temperature is not None or zeta is not None:
+        raise VibsymError("--temperature and --zeta belong to --gas: they shape the bands of a gas")
+    return Expectation(symmetry, counted, found, chosen, contours)
 
 
 def _symmetry(source, tolerance: float, as_group: str | None, axes: str | None) -> tuple[Symmetry, Symmetry | None]:
