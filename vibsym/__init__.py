@@ -19,11 +19,13 @@ _OWNERS = {
     "point_group": "vibsym.groups.pointgroup",
     "read": "vibsym.structures.reading",
     "read_all": "vibsym.structures.reading",
+    "read_bands": "vibsym.evidence.bandlist",
     "reduce": "vibsym.groups.reduction",
+    "screen": "vibsym.evidence.proposals",
     "write_reduction": "vibsym.groups.reduction",
 }
 __all__ = ["Structure", "VibsymError", "character_table", "climb", "expect", "find_symmetry", "ladder", "point_group",
-           "read", "read_all", "reduce", "write_reduction"]
+           "read", "read_all", "read_bands", "reduce", "screen", "write_reduction"]
 
 
 def __getattr__(name: str):

@@ -10,20 +10,19 @@ from vibsym.cli.reading import finish, read_structures
 @click.command("screen")
 @options.structures_argument
 @bands_options
-@click.option("--oscillators", metavar="SET", help="Compare in the region of these bonds: C-O, Mo-C-O, or 2-3,4-5.")
-@click.option("--local", is_flag=True, help="Use the local group of the oscillators.")
-@click.option("--local-tolerance", type=float, default=0.3, show_default=True, metavar="Å",
-              help="How far the surroundings of the oscillators may be from the local group.")
+@options.oscillator_options
 @click.option("--mixture", is_flag=True, help="Also let every two structures share the lines.")
 @click.option("--every-rung", is_flag=True, help="Screen each structure in every group of its ladder.")
 @options.output_options
 @options.tolerance_option
 @options.as_option
+@options.axes_option
 @options.reading_options
 def command(structures, bands, infrared, raman, between, window, allow, light, mixture, form, output, frame, bonds,
             no_bonds, average_masses, **proposal):
     """Tell which STRUCTURE the observed infrared and Raman bands allow, and what speaks against the others.
 
+    With --oscillators the comparison is made in that region, with --local in the group of what the oscillators see.
     Fewer bands than predicted never exclude a structure; forbidden bands that are seen do.
 
     \b

@@ -24,10 +24,12 @@ class Proposal:
 
     tolerance: float = DEFAULT_TOLERANCE  # Å
     as_group: str | None = None
+    axes: str | None = None               # the other choice of axes, where labels depend on it
     every_rung: bool = False
     oscillators: str | None = None        # "C-O", "Mo-C-O" or atom pairs
     local: bool = False
     local_tolerance: float = 0.3          # Å
+    distinguish: bool = False             # donors are alike only if their ligands have one formula
 
 
 def screen(structures: Sequence, observed: BandList, proposal: Proposal | None = None,
@@ -54,9 +56,9 @@ def predictions_of(structure: Structure, proposal: Proposal) -> list[Prediction]
     if proposal.every_rung:
         from vibsym.structures.ladder import ladder
 
-        rungs = [rung.symmetry for rung in ladder(structure, proposal.tolerance).rungs]
+        rungs = [rung.symmetry for rung in ladder(structure, proposal.tolerance, proposal.axes).rungs]
         return [whole_molecule(structure, each, rungs[0] if number else None) for number, each in enumerate(rungs)]
-    found = expect(structure, proposal.tolerance, as_group=proposal.as_group)
+    found = expect(structure, proposal.tolerance, as_group=proposal.as_group, axes=proposal.axes)
     return [whole_molecule(structure, found.symmetry, found.found)]
 
 

@@ -18,12 +18,12 @@ from vibsym.structures.symmetry import Symmetry
 def regional_predictions(structure: Structure, proposal: Proposal) -> list[Prediction]:
     """Return the prediction of the oscillators: one, or with `every_rung` one for each group of the ladder."""
     if proposal.every_rung:
-        true, *higher = (rung.symmetry for rung in ladder(structure, proposal.tolerance).rungs)
+        true, *higher = (rung.symmetry for rung in ladder(structure, proposal.tolerance, proposal.axes).rungs)
         return [_of_molecule(structure, true, None, proposal),
                 *(_of_molecule(structure, each, true, proposal) for each in higher)]
-    found = find_symmetry(structure, proposal.tolerance)
+    found = find_symmetry(structure, proposal.tolerance, axes=None if proposal.as_group else proposal.axes)
     if proposal.as_group:
-        symmetry = as_group(structure, proposal.as_group, proposal.tolerance)
+        symmetry = as_group(structure, proposal.as_group, proposal.tolerance, proposal.axes)
         true = found if found.group.symbol != symmetry.group.symbol else None
     else:
         symmetry, true = found, None
@@ -34,7 +34,8 @@ def regional_predictions(structure: Structure, proposal: Proposal) -> list[Predi
 
 def _stretches(structure: Structure, symmetry: Symmetry, proposal: Proposal) -> Oscillators:
     try:
-        return oscillators(symmetry, proposal.oscillators, proposal.local, proposal.local_tolerance)
+        return oscillators(symmetry, proposal.oscillators, proposal.local, proposal.local_tolerance,
+                           proposal.distinguish)
     except VibsymError as error:
         raise VibsymError(f"{structure.source or structure.formula}: {error}") from None
 
