@@ -60,7 +60,7 @@ def _bends(positions, each: CoordinateSet) -> np.ndarray:
     u, r = _unit(positions[i] - positions[j])
     v, s = _unit(positions[k] - positions[j])
     cosine = (u * v).sum(axis=1)[:, None]
-    sine = np.sqrt(((1 - cosine) * (1 + cosine)))
+    sine = np.sqrt((1 - cosine) * (1 + cosine))
     first, last = (cosine * u - v) / (r * sine), (cosine * v - u) / (s * sine)
     return _scatter(positions, len(each), (i, j, k), (first, -first - last, last))
 

@@ -1,9 +1,9 @@
 """Internal coordinates from the bonds: stretches, linear bends, valence bends, out-of-plane wags and torsions.
 
 - stretch: every bond;
-- linear bend: a centre with two neighbours at a straight angle (above 175 degrees), with two perpendicular components;
-- bend: every other angle between two bonds; a straight angle at a centre with more neighbours (trans ligands) is left
-  out, since the angles beside it say the same;
+- linear bend: a centre with two neighbours at a nearly straight angle (above 165 degrees), with two components;
+- bend: every other angle between two bonds; a straight one (above 175 degrees) at a centre with more neighbours (trans
+  ligands) is left out, since the angles beside it say the same;
 - wag: a planar centre with three neighbours, out of the plane; with four (square planar), one for each pair of opposite
   neighbours; with five and more, one for each three that follow each other round the centre;
 - torsion: one a bond, or one a straight chain of bonds (allene, 2-butyne): the sum over its dihedral angles, those with a
@@ -29,6 +29,7 @@ from vibsym.structures.symmetry import Symmetry
 from vibsym.vibrations.naming import KINDS, bend_name, bond_name, same_set, wag_name
 
 STRAIGHT = np.cos(np.radians(175.0))      # cosine; a smaller one is a straight angle
+NEARLY_STRAIGHT = np.cos(np.radians(165.0))     # ... of a chain: M-C-O, C-C-N as crystals and force fields have them
 PLANAR = 0.15                             # smallest singular value of the unit bond vectors; 5 degrees out of plane for three
 LETTERS = dict(zip(KINDS, "rlawt", strict=True))
 
@@ -178,7 +179,8 @@ class _Frame:
         self.beside = neighbours(len(self.labels), bonds)
         triples = np.array([(i, j, k) for j, around in enumerate(self.beside) for i, k in combinations(around, 2)],
                            dtype=int).reshape(-1, 3)
-        straight = _cosines(self.positions, triples) < STRAIGHT
+        chain = np.array([len(around) == 2 for around in self.beside])[triples[:, 1]]
+        straight = _cosines(self.positions, triples) < np.where(chain, NEARLY_STRAIGHT, STRAIGHT)
         self.triples = list(zip(map(tuple, triples.tolist()), straight.tolist(), strict=True))
         self.passed = {triple[1] for triple, flat in self.triples if flat and len(self.beside[triple[1]]) == 2}
 
