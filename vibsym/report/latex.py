@@ -12,23 +12,26 @@ from vibsym.report.document import Facts, Listing, Paragraph, Table, Title
 PREAMBLE = "% needs \\usepackage{booktabs,longtable,array}; made by vibsym --format latex"
 LONG = 40                      # rows; a longer table may break across pages
 _ESCAPED = {"\\": r"\textbackslash{}", "{": r"\{", "}": r"\}", "$": r"\$", "&": r"\&", "%": r"\%", "#": r"\#",
-            "_": r"\_", "^": r"\textasciicircum{}", "~": r"\textasciitilde{}", "<": r"\textless{}", ">": r"\textgreater{}",
-            "|": r"\textbar{}", '"': r"\textquotedbl{}", "[": "{[}", "]": "{]}"}
+            "_": r"\_", "^": r"\textasciicircum{}", "~": r"\textasciitilde{}",
+            "<": r"\textless{}", ">": r"\textgreater{}", "|": r"\textbar{}",
+            '"': r"\textquotedbl{}", "[": "{[}", "]": "{]}"}
 _GREEK = {"Γ": r"\Gamma", "Δ": r"\Delta", "Π": r"\Pi", "Σ": r"\Sigma", "Φ": r"\Phi", "Ω": r"\Omega", "Λ": r"\Lambda",
           "α": r"\alpha", "β": r"\beta", "γ": r"\gamma", "δ": r"\delta", "ε": r"\varepsilon", "η": r"\eta",
           "θ": r"\theta", "κ": r"\kappa", "λ": r"\lambda", "μ": r"\mu", "µ": r"\mu", "ν": r"\nu", "π": r"\pi",
           "ρ": r"\rho", "σ": r"\sigma", "τ": r"\tau", "φ": r"\varphi", "χ": r"\chi", "ψ": r"\psi", "ω": r"\omega",
           "ζ": r"\zeta", "ϕ": r"\phi"}
 _SIGNS = {"−": "-", "×": r"\times", "·": r"\cdot", "∞": r"\infty", "≤": r"\le", "≥": r"\ge", "±": r"\pm", "→": r"\to",
-          "↔": r"\leftrightarrow", "⊗": r"\otimes", "⊕": r"\oplus", "≈": r"\approx", "Å": r"\mathrm{\AA}", 
-          "½": r"\tfrac12", "⅓": r"\tfrac13", "√": r"\surd", "⁄": "/", "∑": r"\sum", "⟨": r"\langle", "⟩": r"\rangle", "°": r"^{\circ}"}
+          "↔": r"\leftrightarrow", "⊗": r"\otimes", "⊕": r"\oplus", "≈": r"\approx", "Å": r"\mathrm{\AA}",
+          "½": r"\tfrac12", "⅓": r"\tfrac13", "√": r"\surd", "⁄": "/",
+          "∑": r"\sum", "⟨": r"\langle", "⟩": r"\rangle", "°": r"^{\circ}"}
 _TEXT = {"–": "--", "—": "---", "…": r"\ldots{}", "’": "'", "‘": "`", "“": "``", "”": "''", "\u00a0": "~", "─": "--",
          "Å": r"\AA{}"}
 _UPPER, _LOWER = {}, {}
-for _character in "⁰¹²³⁴⁵⁶⁷⁸⁹⁺⁻ᵠ":
-    _UPPER[_character] = {"⁺": "+", "⁻": "-", "ᵠ": r"\varphi"}.get(_character, unicodedata.normalize("NFKC", _character))
+for _character in "⁰¹²³⁴⁵⁶⁷⁸⁹⁺⁻":
+    _UPPER[_character] = {"⁺": "+", "⁻": "-"}.get(_character, unicodedata.normalize("NFKC", _character))
 for _character in "₀₁₂₃₄₅₆₇₈₉₊₋":
     _LOWER[_character] = {"₊": "+", "₋": "-"}.get(_character) or unicodedata.normalize("NFKC", _character)
+_UPPER["ᵠ"] = r"\varphi"
 
 
 def set_latex(parts) -> str:
