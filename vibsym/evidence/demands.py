@@ -134,13 +134,13 @@ _WORDS = {
     + " active in both",
     "polarised": _must("line"),
     "pairs": _pairs,
-    "pairs or polarised": lambda items, capacity, gamma: f"{_count(items, 'band')} coincide or must be totally "
-    f"symmetric, {_named(capacity, 'fundamental', gamma)} active in both or totally symmetric",
+    "pairs or polarised": lambda items, capacity, gamma: f"{_count(items, 'band')} must be active in both "
+    f"spectra or totally symmetric, the structure has {_named(capacity, 'such fundamental', gamma)}",
     "infrared": lambda items, capacity, gamma: f"{_count(items, 'infrared band')}, "
     + _named(capacity, "infrared-active fundamental", gamma),
     "Raman": lambda items, capacity, gamma: f"{_count(items, 'Raman band')}, "
     + _named(capacity, "Raman-active fundamental", gamma),
-    "infrared or polarised": lambda items, capacity, gamma: f"{_count(items, 'band')} infrared or polarised, "
-    + _named(capacity, "fundamental", gamma) + " infrared-active or totally symmetric",
+    "infrared or polarised": lambda items, capacity, gamma: f"{_count(items, 'band is', 'bands are')} infrared or "
+    "polarised, infrared-active or totally symmetric: " + _named(capacity, "fundamental", gamma),
     "all": lambda items, capacity, gamma: f"{_count(items, 'band')}, " + _named(capacity, "active fundamental", gamma),
 }
