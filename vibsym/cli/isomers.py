@@ -3,7 +3,7 @@
 import click
 
 from vibsym.cli import options
-from vibsym.cli.bands import bands_options
+from vibsym.cli.bands import bands_options, progress
 from vibsym.cli.delivery import deliver
 
 
@@ -53,7 +53,8 @@ def screened(listing, limit, bands, infrared, raman, between, window, allow, lig
     from vibsym.evidence.screening import ScreenOptions
 
     observed = read_bands(bands, infrared, raman, between=between, light=light)
-    return screen_isomers(listing, observed, ScreenOptions(window, allow, mixture), limit)
+    with progress("isomers") as callback:
+        return screen_isomers(listing, observed, ScreenOptions(window, allow, mixture), limit, callback)
 
 
 def save(result, directory: str) -> None:

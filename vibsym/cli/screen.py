@@ -3,7 +3,7 @@
 import click
 
 from vibsym.cli import options
-from vibsym.cli.bands import bands_options
+from vibsym.cli.bands import bands_options, progress
 from vibsym.cli.reading import finish, read_structures
 
 
@@ -37,5 +37,6 @@ def command(structures, bands, infrared, raman, between, window, allow, light, m
 
     observed = read_bands(bands, infrared, raman, between=between, light=light)
     read = [each for path in structures for each in read_structures(path, frame, bonds, no_bonds, average_masses)]
-    result = screen(read, observed, Proposal(**proposal), ScreenOptions(window, allow, mixture))
+    with progress() as callback:
+        result = screen(read, observed, Proposal(**proposal), ScreenOptions(window, allow, mixture), callback)
     finish([result], 0, view, form, output)
