@@ -128,4 +128,6 @@ def _fitness(parent: str, group: PointGroup, matrices: np.ndarray, names: list[s
         return along, x[2] if parent == "D3h" else y[2]
     if parent in ("D6", "D6h") and group.symbol in ("D2", "D2h"):
         return along, y[0]                                # C2' along y, as the columns of D6h are printed
+    if parent[0] in "TOI":                                # axes along those of the cube
+        return along, x[0], y[1]
     return along, kept, x[0], y[1]

@@ -147,7 +147,8 @@ def expect(source, tolerance: float = DEFAULT_TOLERANCE, *, as_group: str | None
     if gas:
         from vibsym.spectra.contours import DEFAULT_TEMPERATURE, gas_phase
 
-        contours = gas_phase(symmetry, counted.gamma_vib, DEFAULT_TEMPERATURE if temperature is None else temperature, zeta)
+        kelvin = DEFAULT_TEMPERATURE if temperature is None else temperature
+        contours = gas_phase(symmetry, counted.gamma_vib, kelvin, zeta)
     elif temperature is not None or zeta is not None:
         raise VibsymError("--temperature and --zeta belong to --gas: they shape the bands of a gas")
     return Expectation(symmetry, counted, found, chosen, contours)
