@@ -11,9 +11,10 @@ from orbits import gamma_3n, orbit_structure, random_rotation
 
 from vibsym.errors import VibsymError
 from vibsym.groups.pointgroup import point_group
+from vibsym.groups.settings import settings
 from vibsym.structures.axes import axis_words
+from vibsym.structures.axis_choice import Elements, compare
 from vibsym.structures.finder import find_symmetry
-from vibsym.structures.settings import Elements, compare, settings
 from vibsym.structures.structure import Structure
 
 RING4 = np.array([[1, 0, 0], [0, 1, 0], [-1, 0, 0], [0, -1, 0.0]])

@@ -4,25 +4,37 @@ In a wheel both folders lie inside the package, in a checkout beside it.  Tables
 and tell source and convention.
 """
 
+import os
 from functools import cache
-from pathlib import Path
+from typing import TYPE_CHECKING
 
 from vibsym.errors import VibsymError
 
+if TYPE_CHECKING:
+    from pathlib import Path
 
-def folder(name: str) -> Path:
+
+def folder(name: str) -> "Path":
     """Return the folder `tables` or `samples`: inside the package if it is there, else beside the package."""
-    package = Path(__file__).parent
-    inside = package / name
-    return inside if inside.is_dir() else package.parent / name
+    from pathlib import Path
+
+    return Path(_folder(name))
+
+
+def _folder(name: str) -> str:
+    """The same as text; pathlib would cost a thirtieth of the whole main job."""
+    package = os.path.dirname(os.path.abspath(__file__))
+    inside = os.path.join(package, name)
+    return inside if os.path.isdir(inside) else os.path.join(os.path.dirname(package), name)
 
 
 @cache
 def table_text(filename: str) -> str:
     """Return the text of a file in `tables/`."""
-    path = folder("tables") / filename
+    path = os.path.join(_folder("tables"), filename)
     try:
-        return path.read_text(encoding="utf-8")
+        with open(path, encoding="utf-8") as file:
+            return file.read()
     except OSError as error:
         raise VibsymError(f"{path}: cannot be read ({error.strerror}); is the installation complete?") from None
 

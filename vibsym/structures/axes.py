@@ -11,7 +11,8 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from vibsym.structures.settings import ON, settings
+from vibsym.groups.settings import settings
+from vibsym.structures.axis_choice import ON
 from vibsym.structures.symmetry import Symmetry
 
 MOST_NAMES = 4     # atoms named before "and n more"

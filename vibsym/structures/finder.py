@@ -3,7 +3,7 @@
 A structure has group G at tolerance t when its deviation from G, the largest distance of an atom from its
 group-averaged position with the elements placed by least squares, is at most t (Å). The largest such group is sought:
 candidate operations (`candidates.py`), the closed sets among them (`subsets.py`), their best placement
-(`placement.py`), symbol and standard frame (`identify.py`), axes by the ladder of choice (`settings.py`). Single
+(`placement.py`), symbol and standard frame (`groups/identify.py`), axes by the ladder of choice (`axis_choice.py`). Single
 atoms and linear molecules are exact cases (`linear.py`).
 """
 
@@ -12,13 +12,13 @@ from dataclasses import dataclass
 import numpy as np
 
 from vibsym.errors import VibsymError
+from vibsym.groups.identify import identified
 from vibsym.groups.pointgroup import point_group
+from vibsym.structures.axis_choice import chosen_setting, free_frame, settled
 from vibsym.structures.candidates import Operations, find_operations
 from vibsym.structures.distances import closest_pair
-from vibsym.structures.identify import identified
 from vibsym.structures.linear import LinearPlacement, image_permutations, line_frame, linear_placements
 from vibsym.structures.placement import Placement, place
-from vibsym.structures.settings import chosen_setting, free_frame, settled
 from vibsym.structures.structure import structure_of
 from vibsym.structures.subsets import closed_subsets, consistent, product_table
 from vibsym.structures.symmetry import Symmetry

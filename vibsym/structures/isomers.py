@@ -15,17 +15,18 @@ from itertools import combinations
 import numpy as np
 
 from vibsym.errors import VibsymError
+from vibsym.groups.identify import identified
 from vibsym.groups.pointgroup import point_group
+from vibsym.groups.settings import settings
 from vibsym.structures.arrangements import Orbits, orbits
+from vibsym.structures.axis_choice import chosen_setting, free_frame
 from vibsym.structures.configuration_index import INDEXED, Priority, configuration_index
 from vibsym.structures.handedness import MIRRORED, chirality_symbol, helicity
-from vibsym.structures.identify import identified
 from vibsym.structures.isomer_names import label, trade_names
 from vibsym.structures.ligands import Ligand, read_ligands
 from vibsym.structures.placing import centre_atom, placed
 from vibsym.structures.polyhedra import Shape, shape
 from vibsym.structures.priorities import rankings
-from vibsym.structures.settings import chosen_setting, free_frame, settings
 from vibsym.structures.symmetry import Symmetry
 
 _LINE = {"D4h": "D∞h", "C4v": "C∞v"}        # finite image of the group of a linear shape

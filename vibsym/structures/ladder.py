@@ -12,6 +12,7 @@ from itertools import pairwise
 import numpy as np
 
 from vibsym.errors import VibsymError
+from vibsym.groups.identify import schoenflies
 from vibsym.groups.pointgroup import point_group
 from vibsym.structures.candidates import Operations, codes_of, find_operations
 from vibsym.structures.finder import (
@@ -24,7 +25,6 @@ from vibsym.structures.finder import (
     place_subset,
     symmetry_of,
 )
-from vibsym.structures.identify import schoenflies
 from vibsym.structures.linear import LinearPlacement, linear_placements
 from vibsym.structures.placement import Placement
 from vibsym.structures.structure import structure_of

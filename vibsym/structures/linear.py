@@ -10,8 +10,8 @@ from functools import cached_property
 
 import numpy as np
 
+from vibsym.groups.identify import completed
 from vibsym.groups.pointgroup import point_group
-from vibsym.structures.identify import completed
 
 
 @dataclass(frozen=True)

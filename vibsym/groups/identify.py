@@ -5,7 +5,7 @@ The rotations alone are C_n (one of order n = their number), D_n (largest order 
 rest follows from the inversion and the number of mirror planes (the table in any textbook, e.g. F. A. Cotton,
 Chemical Applications of Group Theory, ch. 3). The frame follows the standard orientation of vibsym.groups: z
 principal axis; sigma_v holds xz; C2' along x; cubic: C4, S4 or C2 along x, y, z; icosahedral: C2 along x, y, z and C5
-through (0, 1, phi).
+through (0, 1, phi). No atoms and no tolerance are involved: the matrices multiply exactly.
 """
 
 import numpy as np
@@ -35,7 +35,7 @@ def schoenflies(matrices, signs) -> str:
         return f"D{largest}h" if mirrors == largest + 1 else f"D{largest}d"
     letter = _POLYHEDRAL.get(count)
     if letter is None:
-        raise VibsymError(f"{count} rotations, the largest of order {largest}, are no point group; "
+        raise VibsymError(f"{count} rotations, the largest of order {largest}, do not close into a point group; "
                           "this is an error of vibsym")
     if not improper:
         return letter
