@@ -1,4 +1,5 @@
-"""Complexes with ligands too large for the symmetry of their metal: built from ideal parts, then shaken and turned, seeded.
+"""Complexes with ligands too large for the symmetry of their metal: built from ideal parts, then shaken and turned,
+seeded.
 
 `python tests/complexes.py` writes the sample `samples/carbonyl-w-pcy3.xyz`; a test proves that the file is this recipe.
 Lengths are ordinary values in Å, from memory, and carry no claim.
@@ -37,13 +38,14 @@ def cyclohexyl(start, direction, twist):
 
 
 def tricyclohexylphosphine():
-    """Return P(C6H11)3, P at the origin and its lone pair along z, the rings turned so that they stay farthest apart."""
+    """Return P(C6H11)3, P at the origin and its lone pair along z, the rings turned so that they stay farthest
+    apart."""
     foot = np.array((1.68, 0, -0.80))
     twists = np.radians(np.arange(0, 360, 10))
     thirds = [about(np.array((0, 0, 1.0)), 2 * np.pi * k / 3).T for k in range(3)]
     names = cyclohexyl(foot, foot / np.linalg.norm(foot), 0.0)[0]
     first = [cyclohexyl(foot, foot / np.linalg.norm(foot), twist)[1] for twist in twists]
-    room = np.array([[closest(one[1:], other[1:] @ thirds[1]) for other in first] for one in first])   # a ring and the next
+    room = np.array([[closest(one[1:], other[1:] @ thirds[1]) for other in first] for one in first])   # ring and next
     worst = np.minimum(np.minimum(room[:, :, None], room[None]), room.T[:, None, :])
     chosen = np.unravel_index(np.argmax(worst), worst.shape)
     rings = [first[twist] @ third for twist, third in zip(chosen, thirds)]
@@ -85,12 +87,14 @@ def sample_complex():
 
 def written(symbols, positions):
     """Return the atoms as the sample file has them."""
+    head = [str(len(symbols)), "pentacarbonyl(tricyclohexylphosphane)tungsten, built and shaken"]
     lines = [f"{symbol:<2} {x:11.5f} {y:11.5f} {z:11.5f}" for symbol, (x, y, z) in zip(symbols, positions)]
-    return "\n".join([str(len(lines)), "pentacarbonyl(tricyclohexylphosphane)tungsten, built and shaken", *lines]) + "\n"
+    return "\n".join([*head, *lines]) + "\n"
 
 
 def half_sandwich(metal, n, radius, height, directions, extra=(), tilt=0.0):
-    """Return (ηn-CnHn)M with carbonyls along directions (z from the ring), other (symbol, place) atoms, the ring turned by `tilt`."""
+    """Return (ηn-CnHn)M with carbonyls along directions (z from the ring), other (symbol, place) atoms, the ring
+    turned by `tilt`."""
     phase = tilt / (360 / n)
     parts = [(metal, (0, 0, 0)), ("C", ring(n, radius, height, phase)), ("H", ring(n, radius + 1.08, height, phase))]
     return atoms(*parts, *carbonyls(directions, 1.85), *extra)

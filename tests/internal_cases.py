@@ -1,4 +1,5 @@
-"""Structures for the tests of internal coordinates: ordinary molecules, rarer groups, clusters, what computers leave nearly straight."""
+"""Structures for the tests of internal coordinates: ordinary molecules, rarer groups, clusters, what computers leave
+nearly straight."""
 
 import numpy as np
 from molecules import MOLECULES, OCTAHEDRON, PHI, TETRAHEDRON, atoms, ligands, mirrored, on_axis, ring, turned

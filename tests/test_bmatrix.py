@@ -56,8 +56,8 @@ def differences(each, x):
     return np.array(columns).T
 
 
-@pytest.mark.parametrize("name", ["H2O2, C2", "C3H4", "XeF4", "XeF5-, D5h", "C2H4", "C3O2", "CH3CCH", "Pt(CN)4, D4h", "ClF3",
-                                  "B(OH)3, C3h", "C4H6 (2-butyne)"])
+@pytest.mark.parametrize("name", ["H2O2, C2", "C3H4", "XeF4", "XeF5-, D5h", "C2H4", "C3O2", "CH3CCH", "Pt(CN)4, D4h",
+                                  "ClF3", "B(OH)3, C3h", "C4H6 (2-butyne)"])
 def test_analytic_derivatives_are_those_of_the_coordinates(name):
     symmetry = cases.symmetry(name)
     for each in internal_coordinates(symmetry):
@@ -98,7 +98,8 @@ def test_bent_chains_notice_no_rotation():
 
 
 def test_g_of_water():
-    """G of a bent XY2: G_rr = 1/m_Y + 1/m_X, G_rr' = cos(a)/m_X, G_ra = -sin(a)/(m_X r), G_aa = 2/r² (1/m_Y + (1 - cos a)/m_X).
+    """G of a bent XY2: G_rr = 1/m_Y + 1/m_X, G_rr' = cos(a)/m_X, G_ra = -sin(a)/(m_X r), G_aa = 2/r² (1/m_Y + (1 -
+    cos a)/m_X).
 
     E. B. Wilson, J. C. Decius, P. C. Cross, Molecular Vibrations (1955), appendix VI.
     """

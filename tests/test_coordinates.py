@@ -23,9 +23,9 @@ from vibsym.vibrations.symmetry_coordinates import Term, symmetry_coordinates
 
 ROOT = Path(__file__).parent.parent
 SAMPLES = ROOT / "samples"
-SHOWN = ("H2O", "CH4", "SO3", "SF6", "XeF4", "C2H4", "CO2", "C2H2", "C3H4", "CH3Cl", "C2H6", "P4", "Fe(CO)5", "S8", "C6H12",
-         "B(OH)3, C3h", "P(OH)3, C3", "Si(OH)4, S4", "Al(OH2)6, Th", "IF7, D5h", "MoF8 antiprism, D4d", "B12H12, Ih",
-         "twisted ferrocene, D5", "twisted neopentane, T", "Mn2(CO)10")
+SHOWN = ("H2O", "CH4", "SO3", "SF6", "XeF4", "C2H4", "CO2", "C2H2", "C3H4", "CH3Cl", "C2H6", "P4", "Fe(CO)5", "S8",
+         "C6H12", "B(OH)3, C3h", "P(OH)3, C3", "Si(OH)4, S4", "Al(OH2)6, Th", "IF7, D5h", "MoF8 antiprism, D4d",
+         "B12H12, Ih", "twisted ferrocene, D5", "twisted neopentane, T", "Mn2(CO)10")
 
 
 @pytest.mark.parametrize("name", SHOWN)
@@ -95,7 +95,8 @@ def test_linear_bends_have_two_components_with_directions():
 
 @pytest.mark.parametrize("group, gamma", [("C3", {"A": 12, "E": 12}), ("S4", {"A": 18, "B": 18, "E": 15})])
 def test_many_copies_of_a_conjugate_pair_in_one_set(group, gamma):
-    """UF9 (C3) and UF12 (S4) of general shape: 36 and 66 angles; orthonormal against both components of earlier copies."""
+    """UF9 (C3) and UF12 (S4) of general shape: 36 and 66 angles; orthonormal against both components of earlier
+    copies."""
     places = [(2.0, 0.1, 0.3), (-1.0, 1.1, 1.5), (0.6, 1.2, -1.6)]
     symbols, positions = cases.atoms(("U", (0, 0, 0)), *(("F", cases.images(group, place)) for place in places))
     symmetry = find_symmetry(Structure.from_atoms(symbols, positions))
@@ -114,7 +115,8 @@ def test_many_copies_of_a_conjugate_pair_in_one_set(group, gamma):
 def test_sixty_atoms_exactly():
     """The 90 stretches of C60 (2Ag + T1g + T2g + 3Gg + 5Hg + 3T1u + 3T2u + 3Gu + 3Hu), golden ratios in exact form."""
     found = symmetry_coordinates(find_symmetry(read(SAMPLES / "soot-c60.xyz")), ["stretch C-C"])
-    assert found.independence.gammas[0] == {"Ag": 2, "T1g": 1, "T2g": 1, "Gg": 3, "Hg": 5, "T1u": 3, "T2u": 3, "Gu": 3, "Hu": 3}
+    assert found.independence.gammas[0] == {"Ag": 2, "T1g": 1, "T2g": 1, "Gg": 3, "Hg": 5, "T1u": 3, "T2u": 3, "Gu": 3,
+                                            "Hu": 3}
     assert len(found.combinations) == 90
     distinct = {term.exact: term.value for each in found.combinations for term in each.terms}
     assert all(abs(float(sympy.N(exact, 20)) - value) < 1e-12 for exact, value in distinct.items())

@@ -1,4 +1,5 @@
-"""Internal coordinates: which there are, how they are named, what every operation does to them, and that they suffice."""
+"""Internal coordinates: which there are, how they are named, what every operation does to them, and that they
+suffice."""
 
 from dataclasses import replace
 
@@ -31,7 +32,8 @@ def gammas(symmetry):
 
 @pytest.mark.parametrize("name", EVERY)
 def test_coordinates_move_as_the_representation_says(name):
-    """Law: B R = T(R) B for every operation, R on displacements, T on coordinates: it proves every sign and direction."""
+    """Law: B R = T(R) B for every operation, R on displacements, T on coordinates: it proves every sign and
+    direction."""
     symmetry = cases.symmetry(name)
     group = symmetry.group.image
     displaced = Basis.displacements(group, symmetry.permutations)
@@ -71,11 +73,12 @@ def test_bonded_molecules_are_described_completely(name):
     ("C2H2", {"stretch C-C": {"Σg+": 1}, "stretch C-H": {"Σg+": 1, "Σu+": 1},
               "linear bend C-C-H": {"Πg": 1, "Πu": 1}}),
     ("HCN", {"stretch C-H": {"Σ+": 1}, "stretch C-N": {"Σ+": 1}, "linear bend H-C-N": {"Π": 1}}),
-    ("C3H4", {"stretch C-C": {"A1": 1, "B2": 1}, "stretch C-H": {"A1": 1, "B2": 1, "E": 1}, "linear bend C-C-C": {"E": 1},
-              "bend C-C-H": {"A1": 1, "B2": 1, "E": 1}, "bend H-C-H": {"A1": 1, "B2": 1}, "wag CCH2": {"E": 1},
-              "torsion C-C-C": {"B1": 1}}),
+    ("C3H4", {"stretch C-C": {"A1": 1, "B2": 1}, "stretch C-H": {"A1": 1, "B2": 1, "E": 1},
+              "linear bend C-C-C": {"E": 1}, "bend C-C-H": {"A1": 1, "B2": 1, "E": 1}, "bend H-C-H": {"A1": 1, "B2": 1},
+              "wag CCH2": {"E": 1}, "torsion C-C-C": {"B1": 1}}),
     ("C2H6", {"stretch C-C": {"A1g": 1}, "stretch C-H": {"A1g": 1, "Eg": 1, "A2u": 1, "Eu": 1},
-              "bend C-C-H": {"A1g": 1, "Eg": 1, "A2u": 1, "Eu": 1}, "bend H-C-H": {"A1g": 1, "Eg": 1, "A2u": 1, "Eu": 1},
+              "bend C-C-H": {"A1g": 1, "Eg": 1, "A2u": 1, "Eu": 1},
+              "bend H-C-H": {"A1g": 1, "Eg": 1, "A2u": 1, "Eu": 1},
               "torsion C-C": {"A1u": 1}}),
     ("H2O2, C2", {"stretch O-H": {"A": 1, "B": 1}, "stretch O-O": {"A": 1}, "bend H-O-O": {"A": 1, "B": 1},
                   "torsion O-O": {"A": 1}}),
@@ -96,7 +99,8 @@ def test_fivefold_bipyramid_and_fluxional_trans_angles():
 
 
 def test_benzene_stretches():
-    """Benzene: nu(CH) A1g + B1u + E2g + E1u, nu(CC) A1g + B2u + E2g + E1u with C2' through the atoms (E. B. Wilson, 1934)."""
+    """Benzene: nu(CH) A1g + B1u + E2g + E1u, nu(CC) A1g + B2u + E2g + E1u with C2' through the atoms (E. B. Wilson,
+    1934)."""
     symbols, positions = cases.atoms(("C", cases.ring(6, 1.39)), ("H", cases.ring(6, 2.48)))
     found = gammas(find_symmetry(Structure.from_atoms(symbols, positions)))
     assert found["stretch C-H"] == {"A1g": 1, "E2g": 1, "B1u": 1, "E1u": 1}
@@ -124,8 +128,8 @@ def test_a_chain_that_is_not_quite_straight_changes_nothing(angle):
     symmetry = find_symmetry(Structure.from_atoms(symbols, positions), 0.001)
     assert symmetry.group.symbol == ("C3v" if angle == 180 else "Cs")
     sets = internal_coordinates(symmetry)
-    assert [each.name for each in sets] == ["stretch C-C", "stretch C-H", "stretch C-N", "linear bend C-C-N", "bend C-C-H",
-                                            "bend H-C-H"]
+    assert [each.name for each in sets] == ["stretch C-C", "stretch C-H", "stretch C-N", "linear bend C-C-N",
+                                            "bend C-C-H", "bend H-C-H"]
     assert regions(symmetry).missing == {}
     assert sum(regions(symmetry).independence.rank.values()) == (8 if angle == 180 else 12)
 

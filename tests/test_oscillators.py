@@ -59,7 +59,8 @@ def counts(bands):
 @pytest.mark.parametrize("shake", [0.0, 0.05], ids=["ideal", "shaken by 0.05 Å"])
 @pytest.mark.parametrize("formula", BUILT)
 def test_published_counts_with_local(formula, shake):
-    """tests/reference/carbonyls.csv: local group and predicted counts; a shaken complex has none of that symmetry left."""
+    """tests/reference/carbonyls.csv: local group and predicted counts; a shaken complex has none of that symmetry
+    left."""
     row, (shape, centre, ligands) = ROWS[formula], BUILT[formula]
     ideal = place(shape, centre, ligands.split())
     structure = built(ideal.symbols, ideal.positions, shake=shake)
@@ -75,10 +76,11 @@ def test_published_counts_with_local(formula, shake):
 
 def test_published_species_of_the_stretches():
     """Γ letter by letter where no choice of axes enters."""
-    for formula in ("W(CO)6", "Fe(CO)5", "[Co(CO)4]-", "Ni(CO)3(PPh3)", "Fe(CO)4(PPh3)", "trans-Fe(CO)3(PPh3)2", "IF7", "BF3",
-                    "fac-Mo(CO)3(PPh3)3", "[Fe(CN)6]4-", "W(CO)5(PPh3)"):
+    for formula in ("W(CO)6", "Fe(CO)5", "[Co(CO)4]-", "Ni(CO)3(PPh3)", "Fe(CO)4(PPh3)", "trans-Fe(CO)3(PPh3)2", "IF7",
+                    "BF3", "fac-Mo(CO)3(PPh3)3", "[Fe(CN)6]4-", "W(CO)5(PPh3)"):
         shape, centre, ligands = BUILT[formula]
-        result = expect(place(shape, centre, ligands.split()), oscillators=NAMES[ROWS[formula]["oscillators"]], local=True)
+        name = NAMES[ROWS[formula]["oscillators"]]
+        result = expect(place(shape, centre, ligands.split()), oscillators=name, local=True)
         published = {}
         for term in ROWS[formula]["gamma_stretch"].replace(" ", "").split("+"):
             digits = len(term) - len(term.lstrip("0123456789"))
@@ -91,7 +93,8 @@ def test_the_sample_is_its_recipe():
 
 
 def test_bulky_ligand_leaves_the_carbonyls_their_c4v():
-    """W(CO)5(PCy3), 63 atoms shaken by 0.05 Å: C1 as a whole, 2A1 + B1 + E locally, and B1 leaks (P. S. Braterman, 1975)."""
+    """W(CO)5(PCy3), 63 atoms shaken by 0.05 Å: C1 as a whole, 2A1 + B1 + E locally, and B1 leaks (P. S. Braterman,
+    1975)."""
     result = expect(read(SAMPLE), oscillators="C-O", local=True)
     local = result.oscillators.local
     assert len(result.structure) >= 60 and result.symmetry.group.symbol == "C1"
@@ -146,8 +149,8 @@ def test_an_alkene_is_one_point():
 def test_two_centres_and_bridges():
     """Fe2(CO)9: terminal A1' + E' + A2'' + E'', bridging A1' + E' (three bridges), the whole set from both."""
     terminal, bridge = ring(3, 1.65, 2.05), ring(3, 1.35, phase=0.5)
-    symbols, positions = atoms(("Fe", on_axis(1.26, -1.26)), ("C", mirrored(terminal)), ("O", mirrored(ring(3, 2.55, 2.75))),
-                               ("C", bridge), ("O", ring(3, 2.52, phase=0.5)))
+    symbols, positions = atoms(("Fe", on_axis(1.26, -1.26)), ("C", mirrored(terminal)),
+                               ("O", mirrored(ring(3, 2.55, 2.75))), ("C", bridge), ("O", ring(3, 2.52, phase=0.5)))
     structure = built(symbols, positions)
     names = [f"{1 + k}-{1 + k + 6}" for k in range(2, 8)]
     found = expect(structure, oscillators=",".join(names), local=True).oscillators
@@ -166,7 +169,8 @@ def test_leaks_are_restrictions_to_the_molecule():
     carbon = ideal.positions[list(ideal.symbols).index("C")] - metal
     places = [ideal.positions[k] + 1.0 * (ideal.positions[k] - metal) / np.linalg.norm(ideal.positions[k] - metal)
               + 1.1 * carbon / np.linalg.norm(carbon) for k in phosphorus]
-    result = expect(Structure.from_atoms(symbols, np.vstack([ideal.positions, places])), oscillators="Mo-C-O", local=True)
+    structure = Structure.from_atoms(symbols, np.vstack([ideal.positions, places]))
+    result = expect(structure, oscillators="Mo-C-O", local=True)
     local = result.oscillators.local
     assert result.symmetry.group.symbol == "C2v" and local.symmetry.group.symbol == "D4h"
     assert local.bands.gamma == {"A1g": 1, "B1g": 1, "Eu": 1}
@@ -184,7 +188,8 @@ def test_distinguish_compares_the_formulas_of_ligands():
     symbols, positions = list(ideal.symbols), [ideal.positions]
     for number, (donor, tail) in enumerate(zip((1, 2), "HF")):
         axis = (ideal.positions[donor] - metal) / np.linalg.norm(ideal.positions[donor] - metal)
-        frame = complexes.rotation_between(np.array((0, 0, 1.0)), axis) if abs(axis[2] + 1) > 1e-9 else np.diag([1, -1, -1.0])
+        down = abs(axis[2] + 1) < 1e-9
+        frame = np.diag([1, -1, -1.0]) if down else complexes.rotation_between(np.array((0, 0, 1.0)), axis)
         positions.append(ideal.positions[donor] + ring(3, 1.25, 0.6, 0.1 * number) @ frame.T)
         symbols += [tail] * 3
     structure = Structure.from_atoms(symbols, np.vstack(positions))
@@ -211,8 +216,8 @@ def test_linear_local_group():
 def test_json_and_page():
     result = expect(read(SAMPLE), oscillators="W-C-O", local=True)
     answer = json.loads(render([result], view, "json"))
-    assert answer["oscillators"] == {"set": "stretch C-O", "gamma": {"A": 5}, "infrared": 5, "raman": 5, "coincident": 5,
-                                     "polarised": 5}
+    assert answer["oscillators"] == {"set": "stretch C-O", "gamma": {"A": 5}, "infrared": 5, "raman": 5,
+                                     "coincident": 5, "polarised": 5}
     assert set(answer["local"]) >= {"point_group", "atoms", "oscillators", "ladder", "leaks"}
     assert answer["gamma_vib"] == {"A": 183}                # top-level keys describe the whole molecule
     page = render([result], view)

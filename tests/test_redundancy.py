@@ -24,8 +24,9 @@ def found(name, *wanted):
 
 
 @pytest.mark.parametrize("name, wanted, redundant", [
-    # E. B. Wilson, J. C. Decius, P. C. Cross, Molecular Vibrations (1955), section 6-3; F. A. Cotton, Chemical Applications of
-    # Group Theory, ch. 10 (from memory): six tetrahedral angles A1, planar AB3 A1', twelve octahedral angles A1g + Eg
+    # E. B. Wilson, J. C. Decius, P. C. Cross, Molecular Vibrations (1955), section 6-3; F. A. Cotton, Chemical
+    # Applications of Group Theory, ch. 10 (from memory): six tetrahedral angles A1, planar AB3 A1', twelve
+    # octahedral angles A1g + Eg
     ("CH4", ["bend"], {"A1": 1}), ("SO3", ["bend"], {"A1'": 1}), ("SF6", ["bend"], {"A1g": 1, "Eg": 1}),
     ("XeF4", ["bend"], {"A1g": 1}), ("Fe(CO)5", ["bend"], {"A1'": 2}), ("CH3Cl", ["bend"], {"A1": 1}),
     ("PCl3", [], {}), ("H2O", [], {}), ("CO2", [], {}), ("C2H4", [], {"Ag": 1, "B1u": 1}),
@@ -50,7 +51,8 @@ def test_planar_rings(n, redundant):
 
 @pytest.mark.parametrize("name", tuple(cases.SHAPES))
 def test_every_redundancy_is_told(name):
-    """Each relation is a unit vector with c B = 0, they are independent, and as many as the ranks leave in each species."""
+    """Each relation is a unit vector with c B = 0, they are independent, and as many as the ranks leave in each
+    species."""
     symmetry = cases.symmetry(name)
     sets = internal_coordinates(symmetry)
     b, ids = b_matrix(symmetry.positions, sets), [one for each in sets for one in each.ids]
@@ -138,8 +140,8 @@ def frequencies(g, f):
     return np.sort(np.linalg.eigvals(g @ f).real)
 
 
-@pytest.mark.parametrize("name", [*PAIRS, "CH4", "SF6", "C2H4", "C3H4", "Fe(CO)5", "C2H2", "MoF8 antiprism, D4d", "C6H12",
-                                  "twisted neopentane, T", "Mn2(CO)10"])
+@pytest.mark.parametrize("name", [*PAIRS, "CH4", "SF6", "C2H4", "C3H4", "Fe(CO)5", "C2H2", "MoF8 antiprism, D4d",
+                                  "C6H12", "twisted neopentane, T", "Mn2(CO)10"])
 def test_blocks_of_g_and_f(name):
     """The blocks give the eigenvalues of the whole GF; partners have one block, a conjugate pair [[A, -B], [B, A]]."""
     symmetry = cases.symmetry(name)

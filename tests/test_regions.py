@@ -69,8 +69,8 @@ def test_shares_are_differences_of_ranks(name):
 
 
 @pytest.mark.parametrize("shape, centre, ligands, expected", [
-    # AB3 planar, AB4, AB5, AB6, AB7: K. Nakamoto, Infrared and Raman Spectra of Inorganic and Coordination Compounds, 5th ed.
-    # (1997), part II (from memory): stretches, then deformations
+    # AB3 planar, AB4, AB5, AB6, AB7: K. Nakamoto, Infrared and Raman Spectra of Inorganic and Coordination
+    # Compounds, 5th ed. (1997), part II (from memory): stretches, then deformations
     ("TP-3", "B", "F", [{"A1'": 1, "E'": 1}, {"E'": 1}, {"A2''": 1}]),
     ("TPY-3", "P", "F", [{"A1": 1, "E": 1}, {"A1": 1, "E": 1}]),
     ("T-4", "C", "F", [{"A1": 1, "T2": 1}, {"E": 1, "T2": 1}]),
@@ -78,7 +78,8 @@ def test_shares_are_differences_of_ranks(name):
     ("TBPY-5", "P", "F", [{"A1'": 2, "E'": 1, "A2''": 1}, {"E'": 2, "A2''": 1, "E''": 1}]),
     ("SPY-5", "Br", "F", [{"A1": 2, "B1": 1, "E": 1}, {"A1": 1, "B1": 1, "B2": 1, "E": 2}]),
     ("OC-6", "S", "F", [{"A1g": 1, "Eg": 1, "T1u": 1}, {"T2g": 1, "T1u": 1, "T2u": 1}]),
-    ("PBPY-7", "I", "F", [{"A1'": 2, "E1'": 1, "E2'": 1, "A2''": 1}, {"E1'": 2, "E2'": 1, "A2''": 1, "E1''": 1, "E2''": 1}]),
+    ("PBPY-7", "I", "F", [{"A1'": 2, "E1'": 1, "E2'": 1, "A2''": 1},
+                           {"E1'": 2, "E2'": 1, "A2''": 1, "E1''": 1, "E2''": 1}]),
 ], ids=lambda value: value if isinstance(value, str) else "")
 def test_divisions_of_the_textbook_shapes(shape, centre, ligands, expected):
     structure = place(shape, centre, [ligands] * int(shape.split("-")[1]))
@@ -87,14 +88,16 @@ def test_divisions_of_the_textbook_shapes(shape, centre, ligands, expected):
 
 
 def test_pentagonal_bipyramid_sums_to_its_vibrations():
-    """IF7: 2A1' + 3E1' + 2E2' + 2A2'' + E1'' + E2'' (H. H. Claassen, E. L. Gasner, H. Selig, J. Chem. Phys. 49, 1803 (1968))."""
+    """IF7: 2A1' + 3E1' + 2E2' + 2A2'' + E1'' + E2'' (H. H. Claassen, E. L. Gasner, H. Selig, J. Chem. Phys. 49, 1803
+    (1968))."""
     found = expect(place("PBPY-7", "I", ["F"] * 7))
     assert found.gamma_vib == {"A1'": 2, "E1'": 3, "E2'": 2, "A2''": 2, "E1''": 1, "E2''": 1}
 
 
 CARBONYLS = {"[PtCl4]2-": ("SP-4", "Pt", "Cl"), "[SiF6]2-": ("OC-6", "Si", "F"), "PF5": ("TBPY-5", "P", "F"),
-             "GeCl4": ("T-4", "Ge", "Cl"), "IF7": ("PBPY-7", "I", "F"), "BF3": ("TP-3", "B", "F"), "W(CO)6": ("OC-6", "W", "CO"),
-             "Fe(CO)5": ("TBPY-5", "Fe", "CO"), "[Co(CO)4]-": ("T-4", "Co", "CO"), "[Fe(CN)6]4-": ("OC-6", "Fe", "CN")}
+             "GeCl4": ("T-4", "Ge", "Cl"), "IF7": ("PBPY-7", "I", "F"), "BF3": ("TP-3", "B", "F"),
+             "W(CO)6": ("OC-6", "W", "CO"), "Fe(CO)5": ("TBPY-5", "Fe", "CO"), "[Co(CO)4]-": ("T-4", "Co", "CO"),
+             "[Fe(CN)6]4-": ("OC-6", "Fe", "CN")}
 
 
 @pytest.mark.parametrize("formula", CARBONYLS)
@@ -118,7 +121,8 @@ def test_sets_that_share_a_species_are_named():
 
 
 def test_cages_have_more_stretches_than_vibrations():
-    """The 12 edges of the octahedron of six atoms: 12 stretches, 12 vibrations; B12: 30 edges, 30 vibrations; with caps more."""
+    """The 12 edges of the octahedron of six atoms: 12 stretches, 12 vibrations; B12: 30 edges, 30 vibrations; with
+    caps more."""
     symbols, positions = cases.atoms(("Mo", 1.85 * cases.OCTAHEDRON), ("Mo", [(0, 0, 0)]))
     found = regions(find_symmetry(Structure.from_atoms(symbols, positions)))
     assert found.crowded and "more stretches than vibrations" in found.notes[0]
@@ -154,7 +158,8 @@ def test_large_structures_are_left_out_with_a_note():
 def test_json_of_regions():
     answer = expect(read(ROOT / "samples" / "cylinder-bf3.xyz")).to_dict()
     assert answer["regions"] == [
-        {"set": "stretch B-F", "gamma": {"A1'": 1, "E'": 1}, "infrared": 1, "raman": 2, "coincident": 1, "polarised": 1},
+        {"set": "stretch B-F", "gamma": {"A1'": 1, "E'": 1}, "infrared": 1, "raman": 2, "coincident": 1,
+         "polarised": 1},
         {"set": "bend F-B-F", "gamma": {"E'": 1}, "infrared": 1, "raman": 1, "coincident": 1, "polarised": 0},
         {"set": "wag BF3", "gamma": {"A2''": 1}, "infrared": 1, "raman": 0, "coincident": 0, "polarised": 0}]
     assert answer["missing"] == {} and answer["shared"] == {"E'": ["stretch B-F", "bend F-B-F"]}

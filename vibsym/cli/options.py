@@ -24,7 +24,7 @@ light_option = click.option(
     "--light", type=click.Choice(("plane", "natural")), default="plane", show_default=True,
     help="Light of the Raman measurement; decides the ratio of a depolarised line (3/4 or 6/7).")
 select_option = click.option(
-    "--select", multiple=True, metavar="SET", help='Only this set of coordinates ("stretch C-O") or this kind ("bend").')
+    "--select", multiple=True, metavar="SET", help='Only these coordinates: a set ("stretch C-O") or a kind ("bend").')
 atoms_option = click.option(
     "--atoms", metavar="1,5,6", help="Only coordinates whose atoms are all among these.")
 write_option = click.option(

@@ -1,7 +1,7 @@
 """A combination of coordinates as it is printed: `1/(2√3) (2 r1 − r2 − r3 + 2 r4 − r5 − r6)`.
 
-The common factor is the one that leaves small whole numbers; where there is none (golden ratio, cosines) each coordinate
-keeps its own exact coefficient.  Nothing is rounded.
+The common factor is the one that leaves small whole numbers; where there is none (golden ratio, cosines) each
+coordinate keeps its own exact coefficient.  Nothing is rounded.
 """
 
 from collections.abc import Sequence
@@ -43,10 +43,11 @@ def exact_text(exact) -> str:
 
 
 def _whole_numbers(values: Sequence[float]) -> tuple[str, list[int]] | None:
-    """Return (factor, whole numbers) with value = factor × number, the factor the root of a fraction; None: there is none."""
+    """Return (factor, whole numbers) with value = factor × number, the factor the root of a fraction; None: there is
+    none."""
     smallest = min(abs(value) for value in values)
     ratios = [Fraction(value / smallest).limit_denominator(LARGEST) for value in values]
-    if any(abs(float(ratio) - value / smallest) > CLOSE * abs(value / smallest) * 10 for ratio, value in zip(ratios, values)):
+    if any(abs(float(ratio) * smallest / value - 1) > 10 * CLOSE for ratio, value in zip(ratios, values, strict=True)):
         return None
     common = lcm(*(ratio.denominator for ratio in ratios))
     numbers = [int(ratio * common) for ratio in ratios]

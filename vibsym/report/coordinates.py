@@ -92,8 +92,9 @@ def _remarks(result: SymmetryCoordinates) -> list:
     pairs = [species.label for species in result.symmetry.group.species if species.pair
              and any(gamma.get(species.label) for gamma in result.independence.gammas)]
     if pairs:
-        remarks.append(f"{', '.join(map(typeset, pairs))}: two complex-conjugate species taken as one; its components a and b "
-                       "are coupled in G and F ([[A, −B], [B, A]]) and count as one band.")
+        names = ", ".join(map(typeset, pairs))
+        remarks.append(f"{names}: two complex-conjugate species taken as one; its components a and b are coupled "
+                       "in G and F ([[A, −B], [B, A]]) and count as one band.")
     if any(each.kind == "linear bend" for each in result.sets):
         remarks.append("A linear bend has two components (a, b) across its axis; JSON gives their directions.")
     return [Listing(tuple(remarks), "Beware")] if remarks else []

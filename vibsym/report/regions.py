@@ -56,13 +56,15 @@ def _local_parts(local: LocalSymmetry) -> list:
     if points:
         kept += "; as one point: " + ", ".join(points)
     left = len(labels) - len(reduced.atoms)
-    rungs = ", ".join(f"{typeset(rung.symmetry.group.symbol)} within {within(rung.deviation)} Å" for rung in local.ladder.rungs)
+    rungs = ", ".join(f"{typeset(rung.symmetry.group.symbol)} within {within(rung.deviation)} Å"
+                      for rung in local.ladder.rungs)
     facts = (("group", f"{group_text(symmetry.group.symbol)}, deviation {symmetry.deviation:.3f} Å, "
                        f"tolerance {symmetry.tolerance:g} Å"),
              ("kept", f"{kept} ({count_text(left, 'atom')} left out)"), ("ladder", rungs))
     leaks = []
     for leak in local.leaks:
         spectra = " and ".join(name for name, lets in (("infrared", leak.infrared), ("Raman", leak.raman)) if lets)
-        leaks.append(f"{typeset(leak.species)} is silent in {spectra} in {typeset(symmetry.group.symbol)}; the molecule "
-                     f"({typeset(local.whole.group.symbol)}) makes it {gamma_text(leak.becomes)} and lets it through, weakly")
+        own, whole = typeset(symmetry.group.symbol), typeset(local.whole.group.symbol)
+        leaks.append(f"{typeset(leak.species)} is silent in {spectra} in {own}; the molecule ({whole}) makes it "
+                     f"{gamma_text(leak.becomes)} and lets it through, weakly")
     return [Facts(facts, "Local symmetry")] + ([Listing(tuple(leaks), "Leaks")] if leaks else [])

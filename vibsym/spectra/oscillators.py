@@ -1,9 +1,10 @@
-"""Oscillators: the stretches of one kind of bond as a region of their own, in the group of the molecule and in their own.
+"""Oscillators: the stretches of one kind of bond as a region of their own, in the group of the molecule and in their
+own.
 
 ν(CO) of a complex follows the symmetry of its carbonyls, not that of the whole molecule with its bulky ligands (P. S.
-Braterman, Metal Carbonyl Spectra, 1975).  The local group is the group of a reduced object (vibsym/structures/reduced.py),
-found with its own tolerance and ladder.  A band that the local group forbids and the group of the molecule allows is a *leak*:
-it can be seen, weakly.
+Braterman, Metal Carbonyl Spectra, 1975).  The local group is the group of a reduced object
+(vibsym/structures/reduced.py), found with its own tolerance and ladder.  A band that the local group forbids and the
+group of the molecule allows is a *leak*: it can be seen, weakly.
 """
 
 from collections.abc import Sequence
@@ -131,7 +132,8 @@ def stretch_bands(symmetry: Symmetry, name: str, pairs: np.ndarray) -> Oscillato
 
 
 def find_oscillators(structure: Structure, bonds: np.ndarray, wanted: str) -> tuple[str, np.ndarray, str | None]:
-    """Return the name of the set, its pairs of bonded atoms (n, 2) from 0, and the element of the centre if one is named."""
+    """Return the name of the set, its pairs of bonded atoms (n, 2) from 0, and the element of the centre if one is
+    named."""
     text = " ".join(wanted.replace("–", "-").split()).removeprefix("stretch ")
     if text and not text.strip("0123456789-, "):
         return (*_numbered(structure, bonds, text, wanted), None)
@@ -149,7 +151,8 @@ def find_oscillators(structure: Structure, bonds: np.ndarray, wanted: str) -> tu
                 break
     if not pairs:
         present = sorted({bond_name((structure.symbols[i], structure.symbols[j])) for i, j in bonds.tolist()})
-        raise VibsymError(f"oscillators '{wanted}': no such bonds; the structure has {', '.join(present) or 'no bonds'}")
+        has = ", ".join(present) or "no bonds"
+        raise VibsymError(f"oscillators '{wanted}': no such bonds; the structure has {has}")
     return f"stretch {bond_name((first, second))}", np.array(pairs, dtype=int), centre
 
 
@@ -202,8 +205,8 @@ def _leaks(local: LocalSymmetry):
 def _restriction(local: LocalSymmetry):
     """Return the function from a local species to the species of the molecule's group that it becomes.
 
-    Every operation of the molecule moves the reduced object like one local operation; the characters of that one are reduced
-    in the group of the molecule.
+    Every operation of the molecule moves the reduced object like one local operation; the characters of that one are
+    reduced in the group of the molecule.
     """
     from vibsym.groups.reduction import reduce
 
@@ -232,8 +235,8 @@ def _same_operations(local: LocalSymmetry) -> np.ndarray:
     distance = np.abs(turned[:, None] - own.group.image.matrices[None]).max(axis=(2, 3))
     alike = (moved[:, None] == own.permutations[None]).all(axis=2)
     if not alike.any(axis=1).all():
-        raise VibsymError(f"the local group {own.group.symbol} lacks operations that the molecule ({whole.group.symbol}) has; "
-                          "choose a smaller --local-tolerance")
+        raise VibsymError(f"the local group {own.group.symbol} lacks operations that the molecule "
+                          f"({whole.group.symbol}) has; choose a smaller --local-tolerance")
     return np.where(alike, distance, np.inf).argmin(axis=1)
 
 

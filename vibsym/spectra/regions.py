@@ -1,8 +1,9 @@
-"""Γvib by region: which vibrations are stretches of which bonds, which are bends, and how many bands each region can show.
+"""Γvib by region: which vibrations are stretches of which bonds, which are bends, and how many bands each region can
+show.
 
-The sets stand in the order stretch, linear bend, bend, wag, torsion, those of a kind by name; the share of a set in a species is
-what it adds to the rank of B (vibsym/vibrations/redundancy.py).  Shares and what is missing add up to Γvib.  Within a
-species the division is a way of speaking: the normal modes mix all sets of one species.
+The sets stand in the order stretch, linear bend, bend, wag, torsion, those of a kind by name; the share of a set in
+a species is what it adds to the rank of B (vibsym/vibrations/redundancy.py).  Shares and what is missing add up to
+Γvib.  Within a species the division is a way of speaking: the normal modes mix all sets of one species.
 """
 
 from dataclasses import dataclass

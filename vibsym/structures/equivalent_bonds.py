@@ -1,8 +1,8 @@
 """The bonds of a structure as its symmetry has them: equivalent pairs of atoms are bonded alike or not at all.
 
 Bonds by distance are found at the symmetrised positions and are alike by themselves.  Bonds that a file or an option
-states may break the symmetry (one of six equivalent bonds is taken away, say); a broken set is completed in the sense of
-the change: it differs from what the distances say.
+states may break the symmetry (one of six equivalent bonds is taken away, say); a broken set is completed in the
+sense of the change: it differs from what the distances say.
 """
 
 from dataclasses import replace

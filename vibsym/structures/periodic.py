@@ -1,4 +1,5 @@
-"""Where an element stands in the periodic table: its group, whether it is a metal, which of two comes first in a formula."""
+"""Where an element stands in the periodic table: its group, whether it is a metal, which of two comes first in a
+formula."""
 
 NOBLE_GASES = (0, 2, 10, 18, 36, 54, 86, 118)
 METALS_OF_THE_P_BLOCK = (13, 31, 49, 50, 81, 82, 83, 84)
@@ -20,14 +21,16 @@ def column(number: int) -> int:
 
 
 def is_metal(number: int) -> bool:
-    """Tell whether an atomic number is a metal's: groups 1 to 12 without hydrogen, and the heavy elements of the p block."""
+    """Tell whether an atomic number is a metal's: groups 1 to 12 without hydrogen, and the heavy elements of the p
+    block."""
     return number > 1 and (number in METALS_OF_THE_P_BLOCK or column(number) <= 12)
 
 
 def formula_place(number: int) -> tuple[int, int]:
     """Return the place in formulas, electropositive elements first.
 
-    The element sequence of IUPAC (Nomenclature of Inorganic Chemistry, Recommendations 2005, table VI): the groups 18, 1,
-    2, ... 17, each from the heaviest down; but chlorine, bromine and iodine before oxygen, as the trade writes Cl-O.
+    The element sequence of IUPAC (Nomenclature of Inorganic Chemistry, Recommendations 2005, table VI): the groups
+    18, 1, 2, ... 17, each from the heaviest down; but chlorine, bromine and iodine before oxygen, as the trade
+    writes Cl-O.
     """
     return (17, -13) if number == 8 else (column(number) % 18, -number)

@@ -1,10 +1,10 @@
 """The reduced object that gives oscillators their local symmetry: what a carbonyl stretch in a complex really sees.
 
 Kept are the atoms of the oscillators, their centres, and the atoms bound to a centre, no further.  A centre is an atom
-that oscillators share or, where they share none, a metal in them, else an atom bound to them.  Donor atoms of one ligand
-that are bonded to each other (an η2-alkene, η5-Cp, η6-arene) become one point at their centroid.  Donors compare by element, or
-also by the formula of their ligand.  (Local symmetry of oscillators: P. S. Braterman, Metal Carbonyl Spectra, 1975; the rule
-for the points is common practice.)
+that oscillators share or, where they share none, a metal in them, else an atom bound to them.  Donor atoms of one
+ligand that are bonded to each other (an η2-alkene, η5-Cp, η6-arene) become one point at their centroid.  Donors
+compare by element, or also by the formula of their ligand.  (Local symmetry of oscillators: P. S. Braterman, Metal
+Carbonyl Spectra, 1975; the rule for the points is common practice.)
 """
 
 from collections import Counter
@@ -21,7 +21,8 @@ from vibsym.structures.structure import Structure
 
 @dataclass(frozen=True, eq=False)
 class ReducedObject:
-    """A structure of few atoms and points; `origins` tells for each the atoms (from 0) of the whole that it stands for."""
+    """A structure of few atoms and points; `origins` tells for each the atoms (from 0) of the whole that it stands
+    for."""
 
     structure: Structure
     origins: tuple[tuple[int, ...], ...]
@@ -37,13 +38,14 @@ class ReducedObject:
 
 def reduced_object(structure: Structure, pairs: np.ndarray, bonds: np.ndarray, centre: str | None = None,
                    distinguish: bool = False) -> ReducedObject:
-    """Return what is kept of a structure around the oscillators `pairs` (n, 2); `centre` restricts centres to an element."""
+    """Return what is kept of a structure around the oscillators `pairs` (n, 2); `centre` restricts centres to an
+    element."""
     beside = neighbours(len(structure), bonds)
     oscillating = set(np.asarray(pairs).ravel().tolist())
     centres = find_centres(structure, pairs, beside, centre)
     if not centres:
-        raise VibsymError("--local: the oscillators have no centre (an atom bound to them or shared by them that binds others "
-                          "too); name one, as in Mo-C-O, or leave --local out")
+        raise VibsymError("--local: the oscillators have no centre (an atom bound to them or shared by them that binds "
+                          "others too); name one, as in Mo-C-O, or leave --local out")
     kept = sorted(oscillating | set(centres))
     donors: list[list[int]] = []
     for atom in centres:
@@ -68,7 +70,9 @@ def find_centres(structure: Structure, pairs: np.ndarray, beside, element: str |
     times = Counter(atom for pair in pairs for atom in pair)
     centres = set()
     for pair in pairs:
-        near = [atom for atom in pair if times[atom] > 1] or [atom for atom in pair if is_metal(structure.numbers[atom])]
+        near = [atom for atom in pair if times[atom] > 1]
+        if not near:
+            near = [atom for atom in pair if is_metal(structure.numbers[atom])]
         if not near:
             near = [other for atom in pair for other in beside[atom] if other not in times and len(beside[other]) > 1]
         centres.update(near)

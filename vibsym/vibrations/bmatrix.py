@@ -9,9 +9,9 @@ Vibrations, 1955, ch. 4):
     wag          u_a . (u_b x u_c), the sine of the angle between bond a and the plane of b and c, times sin(b, c)
     torsion      sum of the dihedral angles i-a-b-k
 
-Rows run over the coordinates set by set (two for a linear bend), columns over x, y, z of atom 1, 2, ...; lengths in Å, angles in
-radian.  A linear bend at an angle that is not quite straight would notice a rotation of the whole; it is taken in the
-frame in which the displacements hold no translation or rotation.
+Rows run over the coordinates set by set (two for a linear bend), columns over x, y, z of atom 1, 2, ...; lengths in
+Å, angles in radian.  A linear bend at an angle that is not quite straight would notice a rotation of the whole; it
+is taken in the frame in which the displacements hold no translation or rotation.
 """
 
 from collections.abc import Sequence
@@ -26,7 +26,8 @@ STRAIGHT_ENOUGH = 1e-9
 
 
 def b_matrix(positions: np.ndarray, sets: Sequence[CoordinateSet]) -> np.ndarray:
-    """Return B (m, 3N) of the sets at (N, 3) positions in the frame in which the directions of linear bends are given."""
+    """Return B (m, 3N) of the sets at (N, 3) positions in the frame in which the directions of linear bends are
+    given."""
     positions = np.asarray(positions, dtype=float)
     blocks = [_ROWS[each.kind](positions, each) for each in sets if len(each)]
     return np.concatenate(blocks) if blocks else np.zeros((0, positions.size))

@@ -6,15 +6,15 @@
   ligands) is left out, since the angles beside it say the same;
 - wag: a planar centre with three neighbours, out of the plane; with four (square planar), one for each pair of opposite
   neighbours; with five and more, one for each three that follow each other round the centre;
-- torsion: one a bond, or one a straight chain of bonds (allene, 2-butyne): the sum over its dihedral angles, those with a
-  straight angle left out.
+- torsion: one a bond, or one a straight chain of bonds (allene, 2-butyne): the sum over its dihedral angles, those
+  with a straight angle left out.
 
-E. B. Wilson, J. C. Decius, P. C. Cross, Molecular Vibrations (1955), ch. 4.  What is straight or planar is decided at the
-symmetrised positions, so that equivalent coordinates are treated alike.  A set is kind and elements.
+E. B. Wilson, J. C. Decius, P. C. Cross, Molecular Vibrations (1955), ch. 4.  What is straight or planar is decided
+at the symmetrised positions, so that equivalent coordinates are treated alike.  A set is kind and elements.
 """
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from itertools import combinations
 from typing import NamedTuple
 
@@ -30,7 +30,7 @@ from vibsym.vibrations.naming import KINDS, bend_name, bond_name, same_set, wag_
 
 STRAIGHT = np.cos(np.radians(175.0))      # cosine; a smaller one is a straight angle
 NEARLY_STRAIGHT = np.cos(np.radians(165.0))     # ... of a chain: M-C-O, C-C-N as crystals and force fields have them
-PLANAR = 0.15                             # smallest singular value of the unit bond vectors; 5 degrees out of plane for three
+PLANAR = 0.15                             # smallest singular value of the unit bond vectors (5 degrees for three)
 LETTERS = dict(zip(KINDS, "rlawt", strict=True))
 
 
@@ -46,10 +46,10 @@ class Coordinate(NamedTuple):
 class CoordinateSet:
     """All coordinates of one kind and one set of elements.
 
-    `atoms` (n, k): stretch (i, j); bends (i, centre, k); wag (centre, reference atoms in order); torsion the chain from end to
-    end.  `directions` (n, 2, 3) are the components of linear bends in the standard frame.  Wags and torsions are sums of
-    `parts` (p, 4) with `weights` (p,), each belonging to the coordinate `owners` (p,): triples (centre, a, b, c), dihedral
-    angles (i, a, b, k).  `first` is the number of the first id.
+    `atoms` (n, k): stretch (i, j); bends (i, centre, k); wag (centre, reference atoms in order); torsion the chain
+    from end to end.  `directions` (n, 2, 3) are the components of linear bends in the standard frame.  Wags and
+    torsions are sums of `parts` (p, 4) with `weights` (p,), each belonging to the coordinate `owners` (p,): triples
+    (centre, a, b, c), dihedral angles (i, a, b, k).  `first` is the number of the first id.
     """
 
     name: str
@@ -112,7 +112,8 @@ def internal_coordinates(given: "Symmetry | Structure", bonds=None) -> tuple[Coo
     frame = _Frame(symmetry, bonds)
     numbers = dict.fromkeys(KINDS, 1)
     sets = []
-    for kind, found in (("stretch", frame.stretches()), *frame.bends(), ("wag", frame.wags()), ("torsion", frame.torsions())):
+    kinds = (("stretch", frame.stretches()), *frame.bends(), ("wag", frame.wags()), ("torsion", frame.torsions()))
+    for kind, found in kinds:
         named: dict[str, list] = {}
         for name, *entry in found:
             named.setdefault(name, []).append(entry)
@@ -123,7 +124,8 @@ def internal_coordinates(given: "Symmetry | Structure", bonds=None) -> tuple[Coo
     return tuple(sets)
 
 
-def select(sets: Sequence[CoordinateSet], wanted: Sequence[str] = (), atoms: Sequence[int] = ()) -> tuple[CoordinateSet, ...]:
+def select(sets: Sequence[CoordinateSet], wanted: Sequence[str] = (),
+           atoms: Sequence[int] = ()) -> tuple[CoordinateSet, ...]:
     """Return the sets named in `wanted`, and of them the coordinates whose atoms are all among `atoms` (from 0).
 
     A name is a set (`stretch C-O`, or `C-O` for short) or a kind (`bend`).  What matches nothing is an error.
@@ -132,14 +134,15 @@ def select(sets: Sequence[CoordinateSet], wanted: Sequence[str] = (), atoms: Seq
     if wanted:
         for text in wanted:
             if not any(same_set(each.name, text) for each in sets):
-                raise VibsymError(f"no coordinates '{text}'; the sets are {', '.join(each.name for each in sets) or 'none'}")
+                names = ", ".join(each.name for each in sets)
+                raise VibsymError(f"no coordinates '{text}'; the sets are {names or 'none'}")
         chosen = [each for each in sets if any(same_set(each.name, text) for text in wanted)]
     if len(atoms):
         chosen = [each.chosen(np.flatnonzero(np.isin(each.atoms, atoms).all(axis=1))) for each in chosen]
         chosen = [each for each in chosen if len(each)]
         if not chosen:
             numbers = ",".join(str(atom + 1) for atom in atoms)
-            raise VibsymError(f"no internal coordinates among the atoms {numbers}; name atoms that are bonded to each other")
+            raise VibsymError(f"no internal coordinates among the atoms {numbers}; name atoms that are bonded")
     return renumbered(chosen)
 
 
@@ -148,8 +151,7 @@ def renumbered(sets: Sequence[CoordinateSet]) -> tuple[CoordinateSet, ...]:
     numbers = dict.fromkeys(KINDS, 1)
     result = []
     for each in sets:
-        result.append(CoordinateSet(each.name, each.kind, each.atoms, each.directions, each.parts, each.weights, each.owners,
-                                    numbers[each.kind]))
+        result.append(replace(each, first=numbers[each.kind]))
         numbers[each.kind] += len(each)
     return tuple(result)
 
@@ -241,7 +243,8 @@ class _Frame:
 
 
 def _wags_round(centre: int, circle: list[int]):
-    """Yield (atoms, [(triple, weight), ...]) of the wags of a planar centre whose neighbours follow each other as given."""
+    """Yield (atoms, [(triple, weight), ...]) of the wags of a planar centre whose neighbours follow each other as
+    given."""
     if len(circle) == 3:
         a, b, c = sorted(circle)
         yield (centre, a, b, c), [((centre, a, b, c), 1.0)]

@@ -1,4 +1,5 @@
-"""Names of sets of internal coordinates as the trade writes them: `stretch C-O`, `bend H-C-H`, `wag BF3`, `torsion C-C`.
+"""Names of sets of internal coordinates as the trade writes them: `stretch C-O`, `bend H-C-H`, `wag BF3`, `torsion
+C-C`.
 
 The two ends of a bond stand as in formulas, the more electropositive element first (the element sequence of IUPAC,
 Nomenclature of Inorganic Chemistry, Recommendations 2005, table VI), with two habits of the trade: hydrogen comes last
@@ -56,7 +57,8 @@ def wag_name(centre: str, neighbours) -> str:
 
 
 def same_set(name: str, wanted: str) -> bool:
-    """Tell whether `wanted`, as typed, names the set: in full, by its kind, or a stretch by its elements, read either way.
+    """Tell whether `wanted`, as typed, names the set: in full, by its kind, or a stretch by its elements, read
+    either way.
 
     >>> same_set("stretch C-O", "O-C"), same_set("bend H-C-H", "bend"), same_set("bend H-C-H", "C-H")
     (True, True, False)

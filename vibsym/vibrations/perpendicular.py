@@ -1,8 +1,9 @@
 """The two perpendicular components of a linear bend, chosen once for each orbit and carried to the others by symmetry.
 
-The pair (p, q) across the axis of a straight angle is free up to a turn about the axis.  Taken along a mirror plane or a
-twofold axis of the site, and carried from one member of the orbit to the next by the operations themselves, it makes the
-blocks of the representation those of the site group, and the symmetry coordinates come out with simple coefficients.
+The pair (p, q) across the axis of a straight angle is free up to a turn about the axis.  Taken along a mirror plane
+or a twofold axis of the site, and carried from one member of the orbit to the next by the operations themselves, it
+makes the blocks of the representation those of the site group, and the symmetry coordinates come out with simple
+coefficients.
 """
 
 import numpy as np
@@ -13,7 +14,8 @@ CLOSE = 1e-6
 
 
 def perpendicular_directions(symmetry: Symmetry, atoms: np.ndarray) -> np.ndarray:
-    """Return (n, 2, 3) orthonormal directions across the axes of the straight angles `atoms` (n, 3), in the standard frame."""
+    """Return (n, 2, 3) orthonormal directions across the axes of the straight angles `atoms` (n, 3), in the standard
+    frame."""
     matrices = symmetry.group.image.matrices
     images = symmetry.permutations[:, atoms]
     images = np.where((images[:, :, :1] > images[:, :, 2:]), images[:, :, ::-1], images)
@@ -33,7 +35,8 @@ def perpendicular_directions(symmetry: Symmetry, atoms: np.ndarray) -> np.ndarra
 
 
 def _across(axis: np.ndarray, site: np.ndarray) -> np.ndarray:
-    """Return (2, 3) unit vectors across the axis, the first along an element of the site group where one lies across."""
+    """Return (2, 3) unit vectors across the axis, the first along an element of the site group where one lies
+    across."""
     candidates = []
     for matrix in site:
         trace, sign = np.trace(matrix), np.linalg.det(matrix)

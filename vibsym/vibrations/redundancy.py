@@ -2,7 +2,8 @@
 
 The rank of B in a species is the rank of B C, C the Cartesian symmetry vectors of one component of it; singular values
 above 1e-6 of the largest of B count.  In a conjugate pair both components are taken together and the rank is halved.
-Sets are taken in order; the share of a set is what it adds to the rank, so the shares and what is missing add up to Γvib:
+Sets are taken in order; the share of a set is what it adds to the rank, so the shares and what is missing add up to
+Γvib:
 
     share_k(i) = rank_i(sets 1 ... k) - rank_i(sets 1 ... k - 1)
     redundancies_i = copies of i among the coordinates - rank_i ,     missing_i = n_i(Γvib) - rank_i
@@ -92,7 +93,7 @@ def independence(symmetry: Symmetry, sets: Sequence[CoordinateSet]) -> Independe
     blocks = [b_matrix(symmetry.positions, [each]) for each in sets]
     floor = RANK * _largest_singular_value(blocks)
     shares: list[dict[str, int]] = [{} for _ in sets]
-    frames = tuple((labels.get(label, label), frame, norm) for label, frame, norm in species_frames(symmetry, gamma_vib))
+    frames = tuple((labels.get(label, label), *rest) for label, *rest in species_frames(symmetry, gamma_vib))
     for name, frame, norm in frames:
         most = norm * gamma_vib.get(name, 0)
         ladder = RankLadder(frame.shape[1], floor)
@@ -106,7 +107,8 @@ def independence(symmetry: Symmetry, sets: Sequence[CoordinateSet]) -> Independe
 
 
 def species_frames(symmetry: Symmetry, gamma: Mapping[str, int] | None = None):
-    """Yield (image label, vectors, norm): orthonormal columns (3N, k) of one component of the species in the displacements.
+    """Yield (image label, vectors, norm): orthonormal columns (3N, k) of one component of the species in the
+    displacements.
 
     In a conjugate pair (norm 2) both components stand side by side.  `gamma` restricts to the species it holds.
     """

@@ -1,9 +1,10 @@
 """Redundancies one by one: which combinations of internal coordinates vanish, in which species, and why.
 
-In each species the symmetry coordinates of all sets give the rows S B C (C the Cartesian symmetry vectors of one component); what is
-redundant are the combinations of rows that vanish.  They are sought first among the angles at one kind of centre, then in one kind of
-ring, then in everything together, so that each is told with the smallest reason: angles at a centre whose sum is
-constant, a ring that has to stay closed (E. B. Wilson, J. C. Decius, P. C. Cross, Molecular Vibrations, 1955, section 6-3).
+In each species the symmetry coordinates of all sets give the rows S B C (C the Cartesian symmetry vectors of one
+component); what is redundant are the combinations of rows that vanish.  They are sought first among the angles at
+one kind of centre, then in one kind of ring, then in everything together, so that each is told with the smallest
+reason: angles at a centre whose sum is constant, a ring that has to stay closed (E. B. Wilson, J. C. Decius, P. C.
+Cross, Molecular Vibrations, 1955, section 6-3).
 """
 
 from collections.abc import Sequence
@@ -164,8 +165,9 @@ def _angles_at(rows: _Rows, centre: int, count: int, orbits: set[int]) -> str:
 def _circles(rows: _Rows, centre: int, angles: np.ndarray) -> list[int]:
     """Return the sizes of the sets of angles in one plane that go round a centre."""
     positions = rows.symmetry.positions
-    atoms = np.concatenate([each.atoms[:, [0, 2]] if each.kind == "bend" else np.repeat(each.atoms[:, :2], each.components, axis=0)
-                            for each in rows.sets])[angles]
+    ends = [each.atoms[:, [0, 2]] if each.kind == "bend" else np.repeat(each.atoms[:, :2], each.components, axis=0)
+            for each in rows.sets]
+    atoms = np.concatenate(ends)[angles]
     first, last = (positions[atoms[:, k]] - positions[centre] for k in (0, 1))
     normals = np.cross(first, last)
     normals /= np.linalg.norm(normals, axis=1)[:, None]

@@ -38,7 +38,8 @@ def coordinate_basis(symmetry: Symmetry, each: CoordinateSet) -> Basis:
 
 
 def _ordered(images: np.ndarray, kind: str) -> tuple[np.ndarray, np.ndarray]:
-    """Return the rows of atoms (..., k) in the order in which sets keep them, and the parity of the reordering (...)."""
+    """Return the rows of atoms (..., k) in the order in which sets keep them, and the parity of the reordering
+    (...)."""
     if kind == "wag":
         centre, references = images[..., :1], images[..., 1:]
         if references.shape[-1] == 3:
@@ -61,7 +62,8 @@ def _places(each: CoordinateSet, images: np.ndarray, symmetry: Symmetry) -> np.n
     astray = own[places] != wanted
     if astray.any():
         operation, number = np.argwhere(astray)[0]
-        given, lost = ("-".join(str(atom + 1) for atom in row) for row in (each.atoms[number], images[operation, number]))
+        rows = each.atoms[number], images[operation, number]
+        given, lost = ("-".join(str(atom + 1) for atom in row) for row in rows)
         raise VibsymError(f"{each.name}: {given} is there but not its equivalent {lost} in {symmetry.group.symbol}; "
                           "choose all equivalent atoms")
     return places

@@ -1,8 +1,10 @@
-"""Symmetry coordinates: for each set the normalised, orthogonal combinations that belong to one component of one species.
+"""Symmetry coordinates: for each set the normalised, orthogonal combinations that belong to one component of one
+species.
 
-S = Σ_k c_k s_k with exact c_k (radicals, or cosines of 2πk/n where there is no simple radical); partners are oriented alike in
-every set, so that G and F fall into one block for each component (E. B. Wilson, J. C. Decius, P. C. Cross, Molecular Vibrations,
-1955, ch. 6).  In a conjugate pair the two components are coupled, [[A, -B], [B, A]], and count as one.
+S = Σ_k c_k s_k with exact c_k (radicals, or cosines of 2πk/n where there is no simple radical); partners are
+oriented alike in every set, so that G and F fall into one block for each component (E. B. Wilson, J. C. Decius, P.
+C. Cross, Molecular Vibrations, 1955, ch. 6).  In a conjugate pair the two components are coupled, [[A, -B], [B, A]],
+and count as one.
 """
 
 from collections.abc import Sequence
@@ -101,8 +103,8 @@ def symmetry_coordinates(symmetry: Symmetry, wanted: Sequence[str] = (), atoms: 
                          bonds=None) -> SymmetryCoordinates:
     """Return the symmetry coordinates of a structure.
 
-    `wanted` chooses sets by name or kind, `atoms` (from 0) restricts them to coordinates among these atoms, which must be
-    all of the atoms that symmetry makes equivalent.
+    `wanted` chooses sets by name or kind, `atoms` (from 0) restricts them to coordinates among these atoms, which
+    must be all of the atoms that symmetry makes equivalent.
     """
     return SymmetryCoordinates(symmetry, select(internal_coordinates(symmetry, bonds), wanted, atoms))
 
