@@ -21,7 +21,8 @@ def parts(result: Combined, **_) -> list:
     page.append(Paragraph(f"{len(found.combinations)} overtones, sums and differences up to {found.quanta} quanta",
                           strong=True))
     for title, differences in (("Overtones and sums", False), ("Differences", True)):
-        rows = [each for each in found.combinations if each.is_difference == differences and each not in silent]
+        rows = [each for each in found.combinations
+                if each.is_difference == differences and (each.infrared or each.raman)]
         if rows:
             page.append(_combinations(rows, f"{title} (harmonic positions, cm-1)", differences, found.temperature))
     if silent:

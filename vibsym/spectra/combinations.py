@@ -18,7 +18,7 @@ import numpy as np
 from vibsym.errors import VibsymError
 from vibsym.groups.products import product_of, symmetric_power
 from vibsym.spectra.fermi import DEFAULT_RESONANCE, Doublet, FermiPair
-from vibsym.spectra.modes import Mode
+from vibsym.spectra.modes import Mode, mode_number
 from vibsym.spectra.populations import (
     DEFAULT_TEMPERATURE,
     boltzmann,
@@ -130,7 +130,7 @@ def combine(group, modes: Sequence[Mode], quanta: int = 2, *, temperature: float
     >>> result.combinations[0].label, result.combinations[0].species
     ('2ν4', {'A1': 1, 'E': 1, 'T2': 1})
     """
-    modes = tuple(modes)
+    modes = tuple(sorted(modes, key=mode_number))
     temperature = checked_temperature(temperature)
     if not modes:
         raise VibsymError("no fundamentals: give --mode ν4:T2=1306 (once for each) or --assignment FILE")

@@ -60,6 +60,12 @@ def mode_name(text: str) -> str:
     return f"ν{int(match[1])}" if match else text.strip()
 
 
+def mode_number(mode: Mode) -> float:
+    """Return the number in the name of a mode, by which modes are sorted; those without one come last."""
+    match = re.fullmatch(r"ν(\d+)", mode.name)
+    return int(match[1]) if match else float("inf")
+
+
 def _parse(text: str, group) -> Mode:
     match = _MODE.fullmatch(text.strip())
     if match is None:
