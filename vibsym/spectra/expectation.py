@@ -113,8 +113,8 @@ class Expectation:
             "gamma_3n": dict(self.gamma_3n), "gamma_translation": dict(self.gamma_translation),
             "gamma_rotation": dict(self.gamma_rotation), "gamma_vib": dict(self.gamma_vib),
             "species": [row.to_dict() for row in self.species], "counts": self.counts.to_dict(),
-            **self.regions.to_dict(), **(self.oscillators.to_dict() if self.oscillators else {}),
-            "axes": dict(self.axes.words), "exchange": list(self.axes.exchange), "next_rung": self._next_rung(),
+            "axes": dict(self.axes.words), "exchange": list(self.axes.exchange), **self.regions.to_dict(),
+            **(self.oscillators.to_dict() if self.oscillators else {}), "next_rung": self._next_rung(),
             "notes": list(self.notes), **({"gas": self.gas.to_dict()} if self.gas else {})}
 
     def _next_rung(self) -> dict | None:
