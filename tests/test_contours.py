@@ -1,4 +1,4 @@
-"""Band contours of gases: published band types, published separations, limits of the formulas, spins of linear molecules."""
+"""Band contours of gases: published band types, separations, limits of the formulas, spins of linear molecules."""
 
 import csv
 import json
@@ -101,7 +101,7 @@ def test_published_band_types(row):
 
 
 def test_hybrids_are_decided_by_the_tensor():
-    """HCOOH: the axis across the plane is c, so A'' is C and A' an A/B hybrid; heavy ends turned across would give others."""
+    """HCOOH: the axis across the plane is c, so A'' is C and A' an A/B hybrid; another shape gives others."""
     gas, _ = gas_of("HCOOH")
     assert {each.species: each.type for each in gas.contours} == {"A'": "A/B hybrid", "A''": "C"}
     # a mirror plane that holds the short axis: HClC(Br) arranged so that the heavy atoms lie across the plane
@@ -212,9 +212,11 @@ def test_command():
     answer = json.loads(run("samples/cylinder-bf3.xyz", "--gas", "--format", "json").output)["gas"]
     assert answer["rotor"] == "oblate" and answer["temperature"] == 296
     assert {each["species"]: each["type"] for each in answer["contours"]} == {"E'": "perpendicular", "A2''": "parallel"}
-    assert "Dennison 1933" in run("samples/cylinder-bf3.xyz", "--gas").output
+    assert "A₂″      parallel       P Q R" in run("samples/cylinder-bf3.xyz", "--gas").output
     assert "oblate" in run("samples/cylinder-bf3.xyz", "--gas", "--format", "csv").output
-    assert "Gas phase" in run("samples/cylinder-argon.xyz", "--gas", "--format", "markdown").output
+    assert "### Gas phase" in run("samples/cylinder-n2o.xyz", "--gas", "--format", "markdown").output
+    atom = json.loads(run("samples/cylinder-argon.xyz", "--gas", "--format", "json").output)["gas"]
+    assert atom["rotor"] == "atom" and atom["contours"] == []
 
 
 @pytest.mark.parametrize(

@@ -57,8 +57,8 @@ AXES = {
     "propane": SWAP,
     "ethylene": TURN,
 }
-# What the rule puts in doubt: D2S ν3 = 1999 (a known fault of the source), two species of cyclohexane (6 % above theory),
-# three of propane (the README of the collection names them); acetone and CH3NC just above 5 %, bands in Fermi resonance.
+# What the rule puts in doubt: D2S ν3 = 1999 (a known fault of the source), two species of cyclohexane (6 % above
+# theory), three of propane (the README of the collection names them), one each of acetone and CH3NC just above 5 %.
 DOUBTFUL = {
     ("hydrogen-sulfide-d2", "B2"),
     ("cyclohexane-d12", "A2u"),
@@ -392,7 +392,7 @@ def test_command_json_and_formats(tmp_path):
     rows = run(path, "--replace", "2=D", "--format", "csv").output.splitlines()
     assert rows[0] == "from,to,common,species,modes,product_rule" and len(rows) == 3
     assert len(run(path, "--replace", "H=D", "--enumerate", "--format", "csv").output.splitlines()) == 6
-    assert "| CH3D | C₃v | 4 | 2 |" in run(path, "--replace", "H=D", "--enumerate", "--format", "markdown").output
+    assert "| CH₃D | C₃v | 4 | 2 |" in run(path, "--replace", "H=D", "--enumerate", "--format", "markdown").output
 
 
 @pytest.mark.parametrize(

@@ -37,7 +37,7 @@ def command(target, modes, assignment, quanta, temperature, resonance, doublets,
     \b
     Examples:
       vibsym combine Td --mode v1:A1=2917 --mode v2:E=1534 --mode v3:T2=3019 --mode v4:T2=1306
-      vibsym combine try-it/cylinder-n2o.xyz --assignment n2o.csv --quanta 3
+      vibsym combine try-it/cylinder-n2o.xyz --mode v1:Sigma+=2224 --mode v2:Pi=589 --mode v3:Sigma+=1285
     """
     from vibsym.cli.delivery import deliver
     from vibsym.evidence.leftovers import Combined, explain_lines

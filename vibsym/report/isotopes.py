@@ -1,5 +1,7 @@
 """Pages, rows and objects of isotopic substitution (`vibsym isotopes`): one pair, all isotopologues, or satellites."""
 
+import re
+
 from vibsym.groups.symbols import typeset
 from vibsym.report.descent import changes_table
 from vibsym.report.document import Paragraph, Table
@@ -7,6 +9,9 @@ from vibsym.report.wording import NOTHING, about_structure, gamma_plain, gamma_t
 from vibsym.spectra.isotopes import IsotopeEffect
 from vibsym.spectra.isotopologues import IsotopologueList
 from vibsym.spectra.satellites import Satellites
+
+_RAISED = str.maketrans("0123456789", "⁰¹²³⁴⁵⁶⁷⁸⁹")
+_LOWERED = str.maketrans("0123456789", "₀₁₂₃₄₅₆₇₈₉")
 
 
 def parts(result, **_) -> list:
@@ -46,9 +51,9 @@ def _pair(result: IsotopeEffect) -> list:
     pair = result.pair
     before, after = result.counts
     page = [about_structure(pair.original.structure),
-            Paragraph(f"{pair.original.structure.formula}: {group_text(pair.original.group.symbol)}, "
+            Paragraph(f"{_formula(pair.original.structure)}: {group_text(pair.original.group.symbol)}, "
                       f"Γvib = {gamma_text(result.gammas[0])}\n"
-                      f"{pair.substituted.structure.formula}: {group_text(pair.substituted.group.symbol)}, "
+                      f"{_formula(pair.substituted.structure)}: {group_text(pair.substituted.group.symbol)}, "
                       f"Γvib = {gamma_text(result.gammas[1])}"),
             Paragraph(f"Infrared at most {before.infrared} before, {after.infrared} after; "
                       f"Raman at most {before.raman} before, {after.raman} after", strong=True)]
@@ -58,12 +63,18 @@ def _pair(result: IsotopeEffect) -> list:
     if pair.common.group.symbol != pair.substituted.group.symbol:
         rows = tuple((typeset(label), gamma_text(parts)) for label, parts in pair.correlation_substituted.items()
                      if label in result.gammas[1])
-        page.append(Table(("species", "becomes"), rows, heading=f"{pair.substituted.structure.formula} in the common "
+        page.append(Table(("species", "becomes"), rows, heading=f"{_formula(pair.substituted.structure)} in the common "
                                                                 f"group {typeset(pair.common.group.symbol)}"))
     page.append(_rule(result))
     page.append(Paragraph("Product rule: Π ω(to)/Π ω(from), each degenerate set once (Redlich 1935). Observed products "
                           "normally exceed it a little, because anharmonicity lowers the lighter molecule more."))
     return page
+
+
+def _formula(structure) -> str:
+    """A formula as printed: mass numbers raised before their element, `CH₂(³⁷Cl)₂`."""
+    raised = re.sub(r"\((\d+)(?=[A-Z])", lambda m: "(" + m[1].translate(_RAISED), structure.formula)
+    return re.sub(r"(?<=\))\d+", lambda m: m[0].translate(_LOWERED), typeset(raised))
 
 
 def _rule(result: IsotopeEffect) -> Table:
@@ -87,7 +98,7 @@ def _rule(result: IsotopeEffect) -> Table:
 
 
 def _list(result: IsotopologueList) -> list:
-    rows = tuple((each.structure.formula, typeset(each.symmetry.group.symbol), str(each.weight),
+    rows = tuple((_formula(each.structure), typeset(each.symmetry.group.symbol), str(each.weight),
                   " ".join(str(site + 1) for site in each.sites) or NOTHING) for each in result.isotopologues)
     return [about_structure(result.structure), Paragraph(f"{len(rows)} distinct isotopologues of {result.arrangements} "
                                                          "arrangements", strong=True),
