@@ -244,3 +244,39 @@ def test_words_of_bf3():
     assert choice.words["z"] == "perpendicular to the molecular plane"
     assert choice.words["x"] == "C2 axis, in the molecular plane, through atoms B1 and F2"
     assert choice.exchange == ()
+
+
+@pytest.mark.parametrize("symbol", ["C2v", "D2", "D2h", "C4v", "C6v", "C8v", "D4", "D6", "D4h", "D6h", "D8h"])
+@pytest.mark.parametrize("special", [True, False], ids=["special", "general"])
+def test_words_tell_every_setting_from_the_others(symbol, special):
+    """Whoever reads the words can say which setting it is: they differ wherever the labels do, with a central atom too."""
+    names, points = orbit_structure(symbol, np.random.default_rng(5), special=special)
+    if symbol[-1] != "v":
+        names, points = [*names, "S"], np.vstack((points, np.zeros(3)))
+    structure = Structure.from_atoms(names, points)
+    told = [tuple(axis_words(find_symmetry(structure, axes=None if axes == "xyz" else axes)).words.values())
+            for axes in settings(symbol)]
+    assert len(set(told)) == len(settings(symbol))
+
+
+@pytest.mark.parametrize(("symbol", "z", "x"), [
+    ("C1", "not fixed by symmetry", "not fixed by symmetry"), ("Ci", "not fixed by symmetry", "not fixed by symmetry"),
+    ("Cs", "perpendicular to the mirror plane", "in the mirror plane, direction not fixed by symmetry"),
+    ("C2h", "C2 axis", "in the mirror plane, direction not fixed by symmetry"), ("C3", "C3 axis", "not fixed by symmetry"),
+    ("S4", "S4 axis", "not fixed by symmetry")])
+def test_axes_that_no_operation_fixes_are_called_so(symbol, z, x):
+    names, points = orbit_structure(symbol, np.random.default_rng(8), special=symbol not in ("C1", "Ci"))
+    words = axis_words(find_symmetry(Structure.from_atoms(names, points))).words
+    assert words["z"].startswith(z)
+    assert words["x"] == words["y"] == x
+
+
+def test_planes_are_named_by_atoms_off_the_axis():
+    """The four atoms on the axis of M(CO)5X lie in all planes; the carbonyls tell which plane is meant."""
+    on_axis = [[0, 0, 0], [0, 0, -2.6], [0, 0, 1.85], [0, 0, 3.0]]
+    names = ["Mn", "Br", "C", "O"] + ["C"] * 4 + ["O"] * 4
+    points = np.vstack((on_axis, 1.85 * RING4 - [0, 0, 0.1], 3.0 * RING4 - [0, 0, 0.1]))
+    words = axis_words(find_symmetry(Structure.from_atoms(names, points))).words
+    assert {words["x"], words["y"]} == {
+        "perpendicular to the mirror plane through atoms C5, C7, O9, O11 and 4 more",
+        "perpendicular to the mirror plane through atoms C6, C8, O10, O12 and 4 more"}

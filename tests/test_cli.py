@@ -145,7 +145,7 @@ def test_table_object_is_exact():
     answer = json.loads(run("table", "C5v", "--format", "json").stdout)
     assert answer["classes"][1] == {"symbol": "2C5", "size": 2}
     species = answer["species"][2]
-    assert species["label"] == "E1" and species["exact"] == ["2", "(-1+√5)/2", "-(1+√5)/2", "0"]
+    assert species["label"] == "E1" and species["exact"] == ["2", "(-1+sqrt(5))/2", "-(1+sqrt(5))/2", "0"]
     assert species["characters"][1] == pytest.approx((5**0.5 - 1) / 2)
     assert answer["point_group"]["order"] == 10
 
@@ -159,7 +159,7 @@ def test_tables_of_several_groups_share_one_csv_head():
 def test_table_of_an_infinite_group():
     answer = json.loads(run("table", "Cinfv", "--format", "json").stdout)
     assert answer["point_group"]["symbol"] == "C∞v" and answer["point_group"]["order"] is None
-    assert answer["species"][2]["exact"] == ["2", "2cos(φ)", "0"] and answer["species"][2]["characters"] == [2, None, 0]
+    assert answer["species"][2]["exact"] == ["2", "2*cos(phi)", "0"] and answer["species"][2]["characters"] == [2, None, 0]
 
 
 def test_samples_are_copied_once(tmp_path):

@@ -15,7 +15,7 @@ from vibsym.evidence.screening import Screening, ScreenOptions, screen_predictio
 from vibsym.spectra.expectation import DEFAULT_TOLERANCE, expect
 from vibsym.spectra.prediction import Prediction, bands_of_gamma
 from vibsym.structures.structure import Structure, structure_of
-from vibsym.structures.symmetry import Symmetry
+from vibsym.structures.symmetry import Symmetry, within
 
 
 @dataclass(frozen=True)
@@ -67,7 +67,7 @@ def whole_molecule(structure: Structure, symmetry: Symmetry, true: Symmetry | No
     gamma = expect(symmetry).gamma_vib
     if true is not None and true.group.symbol == symmetry.group.symbol:
         true = None
-    rung = f" as {symmetry.group.symbol} ({symmetry.deviation:.3f} Å)" if true is not None else ""
+    rung = f" as {symmetry.group.symbol} ({within(symmetry.deviation)} Å)" if true is not None else ""
     return Prediction(name_of(structure) + rung, structure.to_dict(), symmetry.to_dict(),
                       bands_within(gamma, symmetry, true), true_group=true.group.symbol if true is not None else "")
 

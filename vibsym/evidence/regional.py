@@ -12,7 +12,7 @@ from vibsym.structures.equivalent_bonds import symmetric_bonds
 from vibsym.structures.finder import find_symmetry
 from vibsym.structures.ladder import as_group, ladder
 from vibsym.structures.structure import Structure
-from vibsym.structures.symmetry import Symmetry
+from vibsym.structures.symmetry import Symmetry, within
 
 
 def regional_predictions(structure: Structure, proposal: Proposal) -> list[Prediction]:
@@ -43,7 +43,7 @@ def _stretches(structure: Structure, symmetry: Symmetry, proposal: Proposal) -> 
 def _of_molecule(structure: Structure, symmetry: Symmetry, true: Symmetry | None, proposal: Proposal) -> Prediction:
     """The oscillators in the group of the molecule; `true` is its own group if `symmetry` is a higher rung."""
     found = _stretches(structure, symmetry, proposal).bands
-    rung = f" as {symmetry.group.symbol} ({symmetry.deviation:.3f} Å)" if true is not None else ""
+    rung = f" as {symmetry.group.symbol} ({within(symmetry.deviation)} Å)" if true is not None else ""
     points = ", ".join(_named_points(structure))
     return Prediction(name_of(structure) + rung, structure.to_dict(), symmetry.to_dict(),
                       bands_within(found.gamma, symmetry, true, bool(points)), region=found.name,

@@ -58,7 +58,7 @@ def _local_parts(local: LocalSymmetry) -> list:
     left = len(labels) - len(reduced.atoms)
     rungs = ", ".join(f"{typeset(rung.symmetry.group.symbol)} within {within(rung.deviation)} Å"
                       for rung in local.ladder.rungs)
-    facts = (("group", f"{group_text(symmetry.group.symbol)}, deviation {symmetry.deviation:.3f} Å, "
+    facts = (("group", f"{group_text(symmetry.group.symbol)}, deviation {within(symmetry.deviation)} Å, "
                        f"tolerance {symmetry.tolerance:g} Å"),
              ("kept", f"{kept} ({count_text(left, 'atom')} left out)"), ("ladder", rungs))
     leaks = []

@@ -1,14 +1,13 @@
 """Words and numbers as they are printed: representations, lists of functions, lengths, characters."""
 
-from math import ceil
 from typing import TYPE_CHECKING
 
 from vibsym.groups.symbols import hermann_mauguin, typeset, typeset_function
 from vibsym.report.document import Title
+from vibsym.structures.symmetry import Symmetry, within
 
 if TYPE_CHECKING:
     from vibsym.structures.structure import Structure
-    from vibsym.structures.symmetry import Symmetry
 
 NOTHING = "–"
 
@@ -44,20 +43,15 @@ def _barred(symbol: str) -> str:
     return head + "".join(each[0] + "\u0305" + each[1:] for each in rest)
 
 
-def found_within(symmetry: "Symmetry") -> str:
+def found_within(symmetry: Symmetry) -> str:
     """Return how well the structure has the group."""
-    return f"deviation {symmetry.deviation:.3f} Å, tolerance {symmetry.tolerance:g} Å"
+    return f"deviation {within(symmetry.deviation)} Å, tolerance {symmetry.tolerance:g} Å"
 
 
 def about_structure(structure: "Structure") -> Title:
     """Return the head of a page: formula, source, number of atoms."""
     aside = [structure.source, count_text(len(structure), "atom")]
     return Title(typeset(structure.formula), ", ".join(filter(None, aside)))
-
-
-def within(deviation: float) -> str:
-    """Return a deviation rounded up to 0.001 Å, so that "within" stays true."""
-    return f"{ceil(deviation * 1000 - 0.01) / 1000:.3f}"
 
 
 def count_text(number: int, word: str) -> str:

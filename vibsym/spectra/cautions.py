@@ -7,6 +7,7 @@ molecules are not rigid.  What is said follows from the species and the structur
 from vibsym.structures.elements import element
 from vibsym.structures.rotors import find_rotors
 from vibsym.structures.structure import Structure
+from vibsym.structures.symmetry import within
 
 # Below this share of its most abundant isotope an element is called a mixture (Cl 0.76, Br 0.51, B 0.80, most metals).
 NEARLY_PURE = 0.9
@@ -50,7 +51,7 @@ def _chirality(result) -> tuple[str, ...]:
     text = "The group is chiral: vibrational circular dichroism and Raman optical activity are allowed"
     above = result.ladder.next
     if above is not None and not above.symmetry.group.chiral:
-        text += f", but the next rung, {above.symmetry.group.symbol} at {above.deviation:.3f} Å, is not chiral"
+        text += f", but the next rung, {above.symmetry.group.symbol} at {within(above.deviation)} Å, is not chiral"
     return (text + ".",)
 
 

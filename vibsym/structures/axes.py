@@ -74,6 +74,28 @@ class _View:
         spread = np.abs(self.positions).max(axis=0)
         self.flat = [bool(value < ON) for value in spread]         # flat[k]: planar, perpendicular to axis k
 
+    def describe(self, direction) -> str:
+        """Return the words for one axis: the molecular plane first, then atoms and bonds on it, then mirror planes."""
+        symbol = self.group.symbol
+        if self.flat[int(np.argmax(direction))]:
+            return "perpendicular to the molecular plane"
+        if symbol in ("C1", "Ci") or (symbol[0] in "CS" and symbol[-1] != "v" and direction[2] == 0):
+            return self._free()
+        element, through = self.element(direction), self.through(direction)
+        unique = (direction[2] == 1 and symbol not in ("D2", "D2h")) or symbol[0] in "TOI"
+        if not (any(self.flat) or self._pinned(direction) or (unique and through)):
+            through = self._mark(direction, bool(element), unique)
+        plane = "in the molecular plane" if any(self.flat) else ""
+        return ", ".join(filter(None, (element, plane, through)))
+
+    def _free(self) -> str:
+        """Return the words for an axis whose direction no operation fixes."""
+        if any(self.flat):
+            return "in the molecular plane, direction not fixed by symmetry"
+        if self._mirror(np.eye(3)[2]):
+            return "in the mirror plane, direction not fixed by symmetry"
+        return "not fixed by symmetry"
+
     def names(self, atoms) -> str:
         """Return `atom O1`, `atoms C1 and C2`, `atoms C1, C2, C3, C4 and 8 more`."""
         named = [f"{self.labels[atom]}{atom + 1}" for atom in atoms[:MOST_NAMES]]
@@ -88,9 +110,8 @@ class _View:
         matrices = self.group.matrices
         fixed = np.abs(matrices @ direction - direction).max(axis=1) < 1e-6
         turned = np.abs(matrices @ direction + direction).max(axis=1) < 1e-6
-        determinants = np.round(np.linalg.det(matrices))
-        proper = fixed & (determinants > 0)
-        improper = turned & (determinants < 0)
+        proper = fixed & (self.group.determinants > 0)
+        improper = turned & (self.group.determinants < 0)
         order = int(proper.sum())
         if order == 1:
             return ""
@@ -107,14 +128,27 @@ class _View:
         mirror = np.eye(3) - 2 * np.outer(normal, normal)
         return bool((np.abs(self.group.matrices - mirror).max(axis=(1, 2)) < 1e-6).any())
 
+    def _distances(self, direction):
+        away = self.positions - np.outer(self.positions @ direction, direction)
+        return np.sqrt((away * away).sum(axis=1))
+
+    def _on(self, direction):
+        """Return the atoms on an axis, and the bonds (k, 2) that it meets in the middle."""
+        middle = 0.5 * (self.positions[self.bonds[:, 0]] + self.positions[self.bonds[:, 1]])
+        middle = middle - np.outer(middle @ direction, direction)
+        return np.flatnonzero(self._distances(direction) < ON), self.bonds[(middle * middle).sum(axis=1) < ON * ON]
+
+    def _pinned(self, direction) -> bool:
+        """Tell whether an atom or the middle of a bond off the centre lies on the axis, so that it can be found."""
+        on, cut = self._on(direction)
+        points = [self.positions[on], 0.5 * (self.positions[cut[:, 0]] + self.positions[cut[:, 1]])]
+        return bool((np.abs(np.concatenate(points) @ direction) > ON).any())
+
     def through(self, direction) -> str:
         """Return `through atom O1`, `through the midpoint of bond C1–C2`, or an empty text."""
-        away = self.positions - np.outer(self.positions @ direction, direction)
-        on = np.flatnonzero((away * away).sum(axis=1) < ON * ON)
+        on, cut = self._on(direction)
         if len(on):
             return f"through {self.names(on)}"
-        middle = 0.5 * (away[self.bonds[:, 0]] + away[self.bonds[:, 1]])
-        cut = self.bonds[(middle * middle).sum(axis=1) < ON * ON]
         texts = ["–".join(f"{self.labels[atom]}{atom + 1}" for atom in bond) for bond in cut.tolist()]
         if not texts:
             return ""
@@ -123,39 +157,56 @@ class _View:
         more = f" and {len(texts) - 2} more" if len(texts) > 2 else ""
         return f"through the midpoints of bonds {', '.join(texts[:2])}{more}"
 
-    def plane(self, normal) -> str:
-        """Return `mirror plane through atoms ...`."""
+    def _in_plane(self, normal):
+        """Return the atoms of a plane, those off the z axis first where not all can be named: they tell it apart."""
         on = np.flatnonzero(np.abs(self.positions @ normal) < ON)
-        return f"mirror plane through {self.names(on)}" if len(on) else "mirror plane that holds no atom"
+        if len(on) <= MOST_NAMES:
+            return on
+        off = self._distances(np.eye(3)[2])[on] > ON
+        return np.concatenate((on[off], on[~off]))
 
-    def nearest(self, direction) -> str:
-        away = self.positions - np.outer(self.positions @ direction, direction)
-        distances = np.sqrt((away * away).sum(axis=1))
-        return f"through no atom; nearest {self.names(np.flatnonzero(distances < distances.min() + ON))}"
+    def plane(self, normal) -> str:
+        """Return `mirror plane through atoms ...`; one that holds no atom off z is told by the atoms nearest to it."""
+        if self._telling(normal):
+            return f"mirror plane through {self.names(self._in_plane(normal))}"
+        heights = np.abs(self.positions @ normal)
+        near = np.where(heights > ON, heights, np.inf)
+        if not np.isfinite(near.min()):
+            return "mirror plane"
+        return f"mirror plane nearest to {self.names(np.flatnonzero(near < near.min() + ON))} ({near.min():.2f} Å)"
 
-    def describe(self, direction) -> str:
-        """Return the words for one axis: the molecular plane first, then atoms and bonds on it, then mirror planes."""
-        k = int(np.argmax(direction))
-        if self.flat[k]:
-            return "perpendicular to the molecular plane"
-        element, through = self.element(direction), self.through(direction)
-        words = [element] if element else []
-        if any(self.flat):
-            words.append("in the molecular plane")
-        mirror = self._mirror(direction)
-        if through:
-            words.append(through)
-        if mirror and not any(self.flat) and not through:
-            words.append(f"perpendicular to the {self.plane(direction)}")
-        elif not through and not any(self.flat):
-            holding = [normal for normal in np.eye(3) if abs(normal @ direction) < 0.5 and self._mirror(normal)]
-            if element:
-                words.append(self.nearest(direction))
-            elif holding:
-                words.append(f"in the {self.plane(holding[0])}")
-            else:
-                words.append("not fixed by symmetry")
-        return ", ".join(words)
+    def _telling(self, normal) -> bool:
+        """Tell whether a plane is told from all others of the frame by its atoms: they do not lie on one axis."""
+        on = self.positions[np.abs(self.positions @ normal) < ON]
+        return all((np.abs(on @ across) > ON).any() for across in np.eye(3) if across @ normal < 0.5)
+
+    def _mark(self, direction, is_axis: bool, unique: bool) -> str:
+        """Return by what an axis is told from others of its kind: a mirror plane with atoms off z, or the nearest atom.
+
+        Rotation axes across z lie in the plane (D4h, D6h: C2' in sigma_v); other directions stand on one or lie in it.
+        """
+        normals = [normal for normal in np.eye(3) if self._mirror(normal)]
+        across = [("perpendicular to", normal) for normal in normals if normal @ direction > 0.5]
+        holding = [("in", normal) for normal in normals if normal @ direction < 0.5 and not unique]
+        if self.group.symbol == "D2h":              # its three axes are alike: each by the plane across it alone
+            holding = []
+        upright = [each for each in holding if is_axis and each[1][2] == 0]
+        order = upright + across + holding
+        for word, normal in order:
+            if self._telling(normal):
+                return f"{word} the {self.plane(normal)}"
+        if not is_axis:
+            return f"{order[0][0]} the {self.plane(order[0][1])}" if order else "perpendicular to the other two axes"
+        return self.nearest(direction, unique)
+
+    def nearest(self, direction, unique: bool) -> str:
+        """Return `nearest atoms C1, C2, C3 and C4 at 1.25 Å`; those on it, or on z for an axis across z, tell nothing."""
+        distances = self._distances(direction)
+        on_z = self._distances(np.eye(3)[2]) < ON
+        off = np.where((distances > ON) & (unique | ~on_z), distances, np.inf)
+        if not np.isfinite(off.min()):
+            return "through no atom"
+        return f"nearest {self.names(np.flatnonzero(off < off.min() + ON))} at {off.min():.2f} Å"
 
 
 def _notes(symmetry: Symmetry, view: _View) -> tuple[str, ...]:

@@ -3,8 +3,8 @@
 A structure has group G at tolerance t when its deviation from G, the largest distance of an atom from its
 group-averaged position with the elements placed by least squares, is at most t (Å). The largest such group is sought:
 candidate operations (`candidates.py`), the closed sets among them (`subsets.py`), their best placement
-(`placement.py`), symbol and standard frame (`groups/identify.py`), axes by the ladder of choice (`axis_choice.py`). Single
-atoms and linear molecules are exact cases (`linear.py`).
+(`placement.py`), symbol and standard frame (`groups/identify.py`), axes by the ladder of choice (`axis_choice.py`).
+Single atoms and linear molecules are exact cases (`linear.py`).
 """
 
 from dataclasses import dataclass

@@ -29,7 +29,7 @@ from vibsym.structures.linear import LinearPlacement, linear_placements
 from vibsym.structures.placement import Placement
 from vibsym.structures.structure import structure_of
 from vibsym.structures.subsets import closed_subsets, product_table
-from vibsym.structures.symmetry import Symmetry
+from vibsym.structures.symmetry import Symmetry, within
 
 SMALLEST_DEVIATION = 0.005     # Å; smaller deviations count as this much in the ratio that suggests a rung
 SAME_DEVIATION = 0.0005        # Å; of two rungs whose deviations agree so far, the higher is shown
@@ -90,7 +90,7 @@ def as_group(structure, symbol: str, tolerance: float = DEFAULT_TOLERANCE, axes:
         best = min(fitting, key=lambda p: p.deviation)
         symmetry = symmetry_of(centred, best, tolerance, axes, bonds)
         return replace(symmetry, tolerance=_tolerance_of(symmetry.deviation, tolerance, centred.most))
-    rungs = ", ".join(f"{symbol_of(p)} ({p.deviation:.3f} Å)" for p in _nested(found, higher))
+    rungs = ", ".join(f"{symbol_of(p)} ({within(p.deviation)} Å)" for p in _nested(found, higher))
     name = f"{centred.structure.source}: " if centred.structure.source else ""
     raise VibsymError(f"{name}the structure does not approach {wanted}; its rungs are {rungs}")
 

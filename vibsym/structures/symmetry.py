@@ -7,10 +7,20 @@ of atom permutations[r, i]: R_r x_i = x_permutations[r, i] for the symmetrised p
 
 from dataclasses import dataclass
 from functools import cached_property
+from math import ceil
 
 import numpy as np
 
 from vibsym.structures.structure import Structure
+
+
+def within(deviation: float) -> str:
+    """Return a deviation (Å) as it is printed everywhere: rounded up to 0.001 Å, so that "within" stays true.
+
+    >>> within(0.0151), within(1e-12)
+    ('0.016', '0.000')
+    """
+    return f"{ceil(deviation * 1000 - 0.01) / 1000:.3f}"
 
 
 @dataclass(frozen=True, eq=False)
