@@ -19,6 +19,7 @@ COMMANDS = {
     "isomers": "vibsym.cli.isomers",
     "screen": "vibsym.cli.screen",
     "peaks": "vibsym.cli.peaks",
+    "report": "vibsym.cli.report",
     "combine": "vibsym.cli.combine",
     "descend": "vibsym.cli.descend",
     "isotopes": "vibsym.cli.isotopes",

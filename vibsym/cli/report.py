@@ -1,0 +1,45 @@
+"""`vibsym report`: structures, bands and what follows from them on one page for a browser."""
+
+import click
+
+from vibsym.cli import options
+from vibsym.cli.bands import bands_options
+from vibsym.cli.reading import read_structures
+
+
+@click.command("report")
+@options.structures_argument
+@bands_options
+@options.oscillator_options
+@options.tolerance_option
+@options.as_option
+@options.axes_option
+@options.reading_options
+@click.option("--output", required=True, metavar="FILE", help="The HTML file to write.")
+def command(structures, bands, infrared, raman, between, window, allow, light, output, frame, bonds, no_bonds,
+            average_masses, **proposal):
+    """Make one self-contained HTML page of each STRUCTURE and, if given, the observed bands.
+
+    The structure turns with its elements of symmetry, modes move, and the bands stand against what they are assigned
+    to. The page needs no network.
+
+    \b
+    Examples:
+      vibsym report try-it/soot-c60.xyz --output c60.html
+      vibsym report try-it/tube-clf3-*.xyz --bands try-it/tube-clf3-bands.csv --output tube.html
+    """
+    import shlex
+    import sys
+
+    from vibsym.evidence.bandlist import read_bands
+    from vibsym.evidence.proposals import Proposal
+    from vibsym.evidence.screening import ScreenOptions
+    from vibsym.files import write_text_atomically
+    from vibsym.report.collection import collect
+    from vibsym.report.html.page import report_page
+
+    observed = read_bands(bands, infrared, raman, between=between, light=light) if bands or infrared or raman else None
+    read = [each for path in structures for each in read_structures(path, frame, bonds, no_bonds, average_masses)]
+    told = "vibsym " + shlex.join(sys.argv[1:]) if sys.argv[1:2] == ["report"] else "vibsym report"
+    page = report_page(collect(read, observed, Proposal(**proposal), ScreenOptions(window, allow), told))
+    write_text_atomically(output, page)
