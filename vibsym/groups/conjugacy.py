@@ -39,7 +39,7 @@ def subgroup_classes(group: PointGroup) -> tuple[SubgroupClass, ...]:
 def _classes(symbol: str) -> tuple[SubgroupClass, ...]:
     group = point_group(symbol)
     product, conjugation = group.product, _conjugation(group)
-    generators = _generators(group)
+    cyclic = _cyclic_subgroups(group)
     trivial = np.zeros(group.order, dtype=bool)
     trivial[0] = True
     known: set[bytes] = {trivial.tobytes()}               # every subgroup met, all conjugates of each class
@@ -48,7 +48,7 @@ def _classes(symbol: str) -> tuple[SubgroupClass, ...]:
     while frontier:
         fresh = []
         for mask in frontier:
-            for generator in generators[~mask[generators]]:
+            for generator in _new_generators(group, conjugation, cyclic, mask):
                 grown = _closure(product, mask, generator)
                 if grown.tobytes() in known:
                     continue
@@ -78,9 +78,10 @@ def _closure(product: np.ndarray, mask: np.ndarray, generator: int) -> np.ndarra
     return mask
 
 
-def _generators(group: PointGroup) -> np.ndarray:
-    """One generator of each cyclic subgroup of prime power order."""
-    seen, kept = set(), []
+def _cyclic_subgroups(group: PointGroup) -> np.ndarray:
+    """(h,) the first generator of the cyclic subgroup of each operation of prime power order; others 0."""
+    found = np.zeros(group.order, dtype=int)
+    first: dict[frozenset, int] = {}
     for index in range(1, group.order):
         powers, current = [0], index
         while current != 0:
@@ -90,10 +91,18 @@ def _generators(group: PointGroup) -> np.ndarray:
         prime = next(p for p in range(2, order + 1) if order % p == 0)
         while order % prime == 0:
             order //= prime
-        if order == 1 and (key := frozenset(powers)) not in seen:
-            seen.add(key)
-            kept.append(index)
-    return np.array(kept, dtype=int)
+        if order == 1:
+            found[index] = first.setdefault(frozenset(powers), index)
+    return found
+
+
+def _new_generators(group: PointGroup, conjugation: np.ndarray, cyclic: np.ndarray, mask: np.ndarray) -> list[int]:
+    """Operations outside a subgroup, one from each set that its normaliser makes alike (conjugate results)."""
+    outside = np.unique(cyclic[~mask])
+    outside = outside[outside > 0]
+    normaliser = np.flatnonzero((mask[conjugation] == mask).all(axis=1))
+    images = group.product[group.product[normaliser][:, outside], group.inverse[normaliser][:, None]]
+    return np.unique(cyclic[images].min(axis=0)).tolist() if len(outside) else []
 
 
 def _plainest(group: PointGroup, conjugates: np.ndarray) -> np.ndarray:
