@@ -3,6 +3,7 @@
 import csv
 import io
 import json
+import re
 from pathlib import Path
 
 import internal_cases as cases
@@ -135,11 +136,28 @@ def test_combinations_as_printed(values, text):
     assert combination_text(terms) == text
 
 
-def test_nothing_rounded_on_the_page():
-    """Where no common factor of whole numbers exists the exact coefficients themselves are printed."""
-    page = render([symmetry_coordinates(cases.symmetry("IF7, D5h"), ["stretch"])], view)
-    lines = page[page.index("stretch I-F"):].splitlines()
-    assert "√5" in page and not any("." in line for line in lines[1:] if "atoms" not in line and "Å" not in line)
+def value_of(text, ids, chosen):
+    """Return what a printed combination is when the coordinate `chosen` is 1 and the others are 0."""
+    text = text.replace("−", "-").replace("·", "*").replace("π", "pi")
+    text = re.sub(r"(?<=\d)(?=√|pi)", "*", re.sub(r"(?<=[\w)]) (?=[\w(])", "*", text))
+    text = re.sub(r"√(\d+)", r"sqrt(\1)", text).replace("√", "sqrt")
+    names = {name: float(name == chosen) for name in ids}
+    return eval(text, {"sqrt": np.sqrt, "cos": np.cos, "pi": np.pi, "__builtins__": {}}, names)
+
+
+@pytest.mark.parametrize("name", SHOWN)
+def test_printed_combinations_are_the_coefficients(name):
+    """What stands on the page, read back as arithmetic, gives every coefficient; no decimals stand there."""
+    for combination in symmetry_coordinates(cases.symmetry(name)).combinations:
+        text, ids = combination_text(combination.terms), [term.coordinate for term in combination.terms]
+        assert "." not in text
+        for term in combination.terms[:12]:
+            assert abs(value_of(text, ids, term.coordinate) - term.value) < 1e-11, text
+
+
+def test_fivefold_axes_are_printed_with_cosines():
+    found = symmetry_coordinates(cases.symmetry("IF7, D5h"), ["stretch"])
+    assert "√2/√5 (r1 + cos(2π/5) (r2 + r5) − cos(π/5) (r3 + r4))" in render([found], view)
 
 
 def run(*arguments):

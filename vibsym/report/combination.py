@@ -1,15 +1,16 @@
 """A combination of coordinates as it is printed: `1/(2√3) (2 r1 − r2 − r3 + 2 r4 − r5 − r6)`.
 
 The common factor is the one that leaves small whole numbers; where there is none (golden ratio, cosines) each
-coordinate keeps its own exact coefficient.  Nothing is rounded.
+coordinate keeps its own exact coefficient, like ones together.  Nothing is rounded.
 """
 
 from collections.abc import Sequence
 from fractions import Fraction
-from math import gcd, isqrt, lcm
+from math import acos, cos, gcd, isqrt, lcm, pi
 
 CLOSE = 1e-11
 LARGEST = 60                # of the whole numbers in the bracket
+FINEST = 120                # denominator of the fraction of π in a cosine
 
 
 def combination_text(terms: Sequence) -> str:
@@ -21,12 +22,52 @@ def combination_text(terms: Sequence) -> str:
     """
     if len(terms) == 1 and abs(abs(terms[0].value) - 1) < CLOSE:
         return ("−" if terms[0].value < 0 else "") + terms[0].coordinate
-    found = _whole_numbers([term.value for term in terms])
+    values = [term.value for term in terms]
+    found = _whole_numbers(values) or _cosines(values)
     if found is None:
-        return _joined([(exact_text(term.exact), term.coordinate) for term in terms])
-    factor, numbers = found
-    bracket = _joined([(_signed_number(number), term.coordinate) for number, term in zip(numbers, terms, strict=True)])
-    return f"{factor} ({bracket})"
+        return _joined(_grouped(values, [_exact_size(term) for term in terms], terms))
+    factor, sizes = found
+    return f"{factor} ({_joined(_grouped(values, sizes, terms))})"
+
+
+def _grouped(values: Sequence[float], sizes: Sequence[str], terms: Sequence) -> list[tuple[str, str]]:
+    """Return (signed coefficient, coordinates), coordinates of one size together: `cos(2π/5)`, `(r2 + r5)`.
+
+    Whole numbers stay with each coordinate, as is usual.
+    """
+    together: dict[tuple, list[tuple[float, str]]] = {}
+    for number, (value, size, term) in enumerate(zip(values, sizes, terms, strict=True)):
+        whole = size == "" or size.isdigit()
+        together.setdefault((size, number if whole else None), []).append((value, term.coordinate))
+    pairs = []
+    for (size, _), members in together.items():
+        sign = "−" if members[0][0] < 0 else ""
+        names = _joined([("−" if value * members[0][0] < 0 else "", name) for value, name in members])
+        pairs.append((sign + _bracketed(size), f"({names})" if len(members) > 1 else names))
+    return pairs
+
+
+def _exact_size(term) -> str:
+    return exact_text(-term.exact if term.value < 0 else term.exact)
+
+
+def _cosines(values: Sequence[float]) -> tuple[str, list[str]] | None:
+    """Return (factor, sizes) where every value is √(2/n) times a cosine of a fraction of π, for n up to a few more terms."""
+    for n in range(len(values), len(values) + 5):
+        ratios = [abs(value) * (n / 2) ** 0.5 for value in values]
+        if max(ratios) > 1 + CLOSE:
+            continue
+        parts = [Fraction(acos(min(ratio, 1.0)) / pi).limit_denominator(FINEST) for ratio in ratios]
+        if all(abs(cos(float(part) * pi) - ratio) < CLOSE for part, ratio in zip(parts, ratios, strict=True)):
+            return _root(Fraction(2, n)), [_cosine(part) for part in parts]
+    return None
+
+
+def _cosine(part: Fraction) -> str:
+    if part in (0, Fraction(1, 3)):
+        return "" if part == 0 else "1/2"
+    top = "π" if part.numerator == 1 else f"{part.numerator}π"
+    return f"cos({top}/{part.denominator})"
 
 
 def exact_text(exact) -> str:
@@ -42,8 +83,8 @@ def exact_text(exact) -> str:
     return text.replace("*", "·").replace("-", "−")
 
 
-def _whole_numbers(values: Sequence[float]) -> tuple[str, list[int]] | None:
-    """Return (factor, whole numbers) with value = factor × number, the factor the root of a fraction; None: there is
+def _whole_numbers(values: Sequence[float]) -> tuple[str, list[str]] | None:
+    """Return (factor, sizes) with value = ± factor × whole number, the factor the root of a fraction; None: there is
     none."""
     smallest = min(abs(value) for value in values)
     ratios = [Fraction(value / smallest).limit_denominator(LARGEST) for value in values]
@@ -57,9 +98,7 @@ def _whole_numbers(values: Sequence[float]) -> tuple[str, list[int]] | None:
     square = Fraction(factor * factor).limit_denominator(100_000)
     if max(map(abs, numbers)) > LARGEST or abs(float(square) - factor * factor) > CLOSE:
         return None
-    if numbers[0] < 0 and all(number < 0 for number in numbers):
-        return "−" + _root(square), [-number for number in numbers]
-    return _root(square), numbers
+    return _root(square), [str(abs(number)) if abs(number) > 1 else "" for number in numbers]
 
 
 def _root(square: Fraction) -> str:
@@ -83,18 +122,16 @@ def _product(a: int, b: int) -> str:
     return str(a) if b == 1 else (str(a) if a > 1 else "") + f"√{b}"
 
 
-def _signed_number(number: int) -> str:
-    return {1: "", -1: "−"}.get(number, str(number).replace("-", "−"))
+def _bracketed(coefficient: str) -> str:
+    return f"({coefficient})" if " + " in coefficient or " − " in coefficient else coefficient
 
 
 def _joined(pairs) -> str:
-    """Join (coefficient, coordinate) with signs between them; a coefficient that is itself a sum goes into brackets."""
+    """Join (coefficient, coordinate) with signs between them."""
     text = ""
     for coefficient, coordinate in pairs:
         negative = coefficient.startswith("−")
         body = coefficient[1:] if negative else coefficient
-        if " " in body:
-            negative, body = False, f"({coefficient})"
         term = f"{body} {coordinate}" if body else coordinate
         text += (" − " if negative else " + ") + term if text else ("−" if negative else "") + term
     return text

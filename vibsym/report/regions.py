@@ -20,7 +20,7 @@ def region_parts(regions: Regions) -> list:
         page.append(Table(("region", *_HEAD), tuple(rows), right=_COUNTS, heading="By region", flow=True))
     empty = [region.name for region in regions.rows if not region.gamma]
     sharing: dict[tuple, list] = {}
-    for label, names in regions.shared.items():
+    for label, names in regions.shared.items() if regions.symmetry.group.order != 1 else ():
         sharing.setdefault(names, []).append(typeset(label))
     lines = [f"{', '.join(labels)}: {', '.join(names)}" for names, labels in sharing.items()]
     if lines:
