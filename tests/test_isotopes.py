@@ -21,6 +21,7 @@ from vibsym.spectra.modes import Mode, named_modes
 from vibsym.spectra.satellites import satellites
 from vibsym.structures.finder import find_symmetry
 from vibsym.structures.isotopes import burnside, isotopologues, site_permutations, substitute, substitution
+from vibsym.structures.reading import read
 from vibsym.structures.structure import Structure
 from vibsym.vibrations.productrule import product_rule
 
@@ -276,6 +277,14 @@ def test_benzene_weights():
     """Three D in benzene: 1,2,3- (6 ways), 1,2,4- (12), 1,3,5- (2): the arrangements of Körner, 1874."""
     three = isotopologues(structure_of("benzene"), "H=D", substituted=[3])
     assert sorted((each.weight, each.symmetry.group.symbol) for each in three) == [(2, "D3h"), (6, "C2v"), (12, "Cs")]
+
+
+def test_buckminsterfullerene():
+    """Two of sixty: 23 molecules, the number of the isomers of C60H2 (from memory), mirror images counted as one."""
+    ball = read("samples/soot-c60.xyz")
+    found = list_isotopologues(ball, "C=13C", at_most=2).isotopologues
+    assert [each.weight for each in found[:2]] == [1, 60]
+    assert sum(each.weight for each in found[2:]) == 1770 and len(found) == 2 + 23
 
 
 def test_equivalent_sites_outside_the_list_still_count_as_alike():

@@ -11,6 +11,7 @@ from vibsym.cli.assigned import check_group, one_structure
 @click.option("--replace", metavar="1=D,2=D", help="Isotopes: 1=D for an atom (from 1), H=D for all of a kind.")
 @click.option("--enumerate", "every", is_flag=True,
               help="List every distinct isotopologue with none, some or all of the replacements made.")
+@click.option("--at-most", type=int, metavar="N", help="With --enumerate: replace no more than N atoms.")
 @click.option("--satellites", is_flag=True, help="Carbon-13 satellites of the carbonyls at natural abundance.")
 @options.modes_option
 @options.assignment_option
@@ -19,7 +20,7 @@ from vibsym.cli.assigned import check_group, one_structure
 @options.tolerance_option
 @options.axes_option
 @options.reading_options
-def command(structure, replace, every, satellites, modes, assignment, doublets, form, output, tolerance, axes,
+def command(structure, replace, every, at_most, satellites, modes, assignment, doublets, form, output, tolerance, axes,
             **reading):
     """Compare a STRUCTURE with its isotopologue: group, activity, and the product rule.
 
@@ -47,8 +48,10 @@ def command(structure, replace, every, satellites, modes, assignment, doublets, 
     if every:
         from vibsym.spectra.isotopologues import list_isotopologues
 
-        deliver([list_isotopologues(molecule, replace, tolerance)], view, form, output)
+        deliver([list_isotopologues(molecule, replace, tolerance, at_most)], view, form, output)
         return
+    if at_most is not None:
+        raise VibsymError("--at-most belongs to --enumerate")
     deliver([_effect(molecule, replace, tolerance, axes, assignment, doublets)], view, form, output)
 
 

@@ -100,7 +100,7 @@ def _rank(name: str) -> tuple:
         place = {"(z)": 0, "(y)": 1, "(x)": 2}.get(match[3], len(match[3]))
         return 0 if match[1] == "C" else 1, -int(match[2]), place
     bare = _bare(name)
-    return (2, _ORDER.index(bare) if bare in _ORDER else 9, name)
+    return (2, _ORDER.index(bare) if bare in _ORDER else 9, name.count("'"), name)
 
 
 def _bare(symbol: str) -> str:

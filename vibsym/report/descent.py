@@ -91,7 +91,7 @@ def _subgroups(result: Descent) -> Table:
     if result.gamma is not None:
         head += ("infrared", "Raman")
     return Table(head, tuple(rows), right=frozenset(range(2, len(head))),
-                 heading=f"{len(rows)} classes of subgroups")
+                 heading=f"{len(rows)} class{'es' if len(rows) > 1 else ''} of subgroups")
 
 
 def _endless(result: Descent) -> list:

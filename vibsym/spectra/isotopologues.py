@@ -2,6 +2,7 @@
 
 from dataclasses import dataclass
 
+from vibsym.errors import VibsymError
 from vibsym.structures.finder import DEFAULT_TOLERANCE
 from vibsym.structures.isotopes import Isotopologue, isotopologues
 from vibsym.structures.structure import Structure
@@ -9,14 +10,14 @@ from vibsym.structures.structure import Structure
 
 @dataclass(frozen=True, eq=False)
 class IsotopologueList:
-    """The isotopologues, fewest replacements first; together their weights make all arrangements."""
+    """The isotopologues, fewest replacements first; together their weights make all arrangements listed."""
 
     structure: Structure
     isotopologues: tuple[Isotopologue, ...]
 
     @property
     def arrangements(self) -> int:
-        """How many ways there are to replace any of the sites, 2 to the power of their number."""
+        """How many ways there are to replace the sites: 2 to the power of their number, where all are listed."""
         return sum(each.weight for each in self.isotopologues)
 
     def to_dict(self) -> dict:
@@ -27,6 +28,9 @@ class IsotopologueList:
 
 
 def list_isotopologues(structure: Structure, replacements: str,
-                       tolerance: float = DEFAULT_TOLERANCE) -> IsotopologueList:
-    """Return every distinct isotopologue with none, some or all of the replacements made."""
-    return IsotopologueList(structure, isotopologues(structure, replacements, tolerance))
+                       tolerance: float = DEFAULT_TOLERANCE, at_most: int | None = None) -> IsotopologueList:
+    """Return every distinct isotopologue with none, some or all of the replacements made, or `at_most` so many."""
+    if at_most is not None and at_most < 0:
+        raise VibsymError(f"--at-most {at_most}: give how many atoms may be replaced, zero or more")
+    counts = None if at_most is None else range(at_most + 1)
+    return IsotopologueList(structure, isotopologues(structure, replacements, tolerance, counts))

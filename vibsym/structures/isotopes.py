@@ -8,6 +8,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from functools import cached_property
 from itertools import combinations
+from math import comb
 
 import numpy as np
 
@@ -18,7 +19,7 @@ from vibsym.structures.labels import is_dummy, read_label
 from vibsym.structures.structure import Structure
 from vibsym.structures.symmetry import Symmetry
 
-MOST_SITES = 16                    # 2^16 arrangements; beyond, a listing helps nobody
+MOST_ARRANGEMENTS = 2**16          # beyond, a listing helps nobody
 
 
 @dataclass(frozen=True, eq=False)
@@ -99,6 +100,8 @@ def substitution(structure: Structure, replacements: str, tolerance: float = DEF
 def compare(one: Structure, other: Structure, tolerance: float = DEFAULT_TOLERANCE,
             axes: str | None = None) -> Substitution:
     """Return two isotopologues, the same atoms in the same places, with their groups and the group they share."""
+    if len(one) == 1:
+        raise VibsymError(f"{one.source or one.formula}: one atom has no vibrations; isotopes change nothing")
     for each in (one, other):
         if any(is_dummy(symbol) for symbol in each.symbols):
             dummy = next(symbol for symbol in each.symbols if is_dummy(symbol))
@@ -139,9 +142,11 @@ def isotopologues(structure: Structure, replacements: str, tolerance: float = DE
     """
     wanted = parse_replacements(structure, replacements)
     sites = sorted(wanted)
-    counts = range(len(sites) + 1) if substituted is None else substituted
-    if len(sites) > MOST_SITES and substituted is None:
-        raise VibsymError(f"{len(sites)} sites make 2^{len(sites)} arrangements; name at most {MOST_SITES} atoms")
+    counts = range(len(sites) + 1) if substituted is None else [n for n in substituted if n <= len(sites)]
+    arrangements = sum(comb(len(sites), count) for count in counts)
+    if arrangements > MOST_ARRANGEMENTS:
+        raise VibsymError(f"{len(sites)} sites make {arrangements} arrangements, more than {MOST_ARRANGEMENTS}; "
+                          "name fewer atoms, or replace --at-most a few of them")
     symmetry = find_symmetry(structure, tolerance)
     found = []
     for count in counts:
