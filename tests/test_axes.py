@@ -249,7 +249,7 @@ def test_words_of_bf3():
 @pytest.mark.parametrize("symbol", ["C2v", "D2", "D2h", "C4v", "C6v", "C8v", "D4", "D6", "D4h", "D6h", "D8h"])
 @pytest.mark.parametrize("special", [True, False], ids=["special", "general"])
 def test_words_tell_every_setting_from_the_others(symbol, special):
-    """Whoever reads the words can say which setting it is: they differ wherever the labels do, with a central atom too."""
+    """Whoever reads the words can say which setting it is: they differ wherever the labels do."""
     names, points = orbit_structure(symbol, np.random.default_rng(5), special=special)
     if symbol[-1] != "v":
         names, points = [*names, "S"], np.vstack((points, np.zeros(3)))
@@ -262,7 +262,8 @@ def test_words_tell_every_setting_from_the_others(symbol, special):
 @pytest.mark.parametrize(("symbol", "z", "x"), [
     ("C1", "not fixed by symmetry", "not fixed by symmetry"), ("Ci", "not fixed by symmetry", "not fixed by symmetry"),
     ("Cs", "perpendicular to the mirror plane", "in the mirror plane, direction not fixed by symmetry"),
-    ("C2h", "C2 axis", "in the mirror plane, direction not fixed by symmetry"), ("C3", "C3 axis", "not fixed by symmetry"),
+    ("C2h", "C2 axis", "in the mirror plane, direction not fixed by symmetry"),
+    ("C3", "C3 axis", "not fixed by symmetry"),
     ("S4", "S4 axis", "not fixed by symmetry")])
 def test_axes_that_no_operation_fixes_are_called_so(symbol, z, x):
     names, points = orbit_structure(symbol, np.random.default_rng(8), special=symbol not in ("C1", "Ci"))

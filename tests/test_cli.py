@@ -159,7 +159,8 @@ def test_tables_of_several_groups_share_one_csv_head():
 def test_table_of_an_infinite_group():
     answer = json.loads(run("table", "Cinfv", "--format", "json").stdout)
     assert answer["point_group"]["symbol"] == "C∞v" and answer["point_group"]["order"] is None
-    assert answer["species"][2]["exact"] == ["2", "2*cos(phi)", "0"] and answer["species"][2]["characters"] == [2, None, 0]
+    pi = answer["species"][2]
+    assert pi["exact"] == ["2", "2*cos(phi)", "0"] and pi["characters"] == [2, None, 0]
 
 
 def test_samples_are_copied_once(tmp_path):

@@ -27,7 +27,8 @@ def parts(result: Expectation, working: bool = False, light: str = "plane", **_)
     """Return the page."""
     page = [about_structure(result.structure), Paragraph(_group_line(result))]
     if len(result.structure) == 1:
-        return [*page, Paragraph(result.notes[0], strong=True), *_representations(result), *_beware(result.notes[1:])]
+        page += [Paragraph(result.notes[0], strong=True), *_representations(result)]
+        return [*page, *_working(result, working), *_beware(result.notes[1:])]
     page.append(Paragraph(_counts(result), strong=True))
     page += [_species_table(result), Paragraph(_ratio_line(result, light))]
     page += [*_oscillators(result), *_regions(result), *_representations(result)]
@@ -35,10 +36,7 @@ def parts(result: Expectation, working: bool = False, light: str = "plane", **_)
         from vibsym.report.contours import gas_parts
 
         page += gas_parts(result.gas)
-    if working:
-        from vibsym.report.working import working_parts
-
-        page += working_parts(result.displacements)
+    page += _working(result, working)
     return [*page, *_axes(result), *_beware(result.notes), *_next_rung(result)]
 
 
@@ -129,6 +127,14 @@ def _representations(result: Expectation) -> list:
     return [Facts((("Γ3N", gamma_text(result.gamma_3n)), ("Γtranslation", gamma_text(result.gamma_translation)),
                    ("Γrotation", gamma_text(result.gamma_rotation)), ("Γvib", gamma_text(result.gamma_vib))),
                   "Representations")]
+
+
+def _working(result: Expectation, wanted: bool) -> list:
+    if not wanted:
+        return []
+    from vibsym.report.working import working_parts
+
+    return working_parts(result.displacements)
 
 
 def _regions(result: Expectation) -> list:

@@ -200,7 +200,7 @@ class _View:
         return self.nearest(direction, unique)
 
     def nearest(self, direction, unique: bool) -> str:
-        """Return `nearest atoms C1, C2, C3 and C4 at 1.25 Å`; those on it, or on z for an axis across z, tell nothing."""
+        """Return `nearest atoms C1 and C2 at 1.25 Å`; those on it, or on z for an axis across z, tell nothing."""
         distances = self._distances(direction)
         on_z = self._distances(np.eye(3)[2]) < ON
         off = np.where((distances > ON) & (unique | ~on_z), distances, np.inf)

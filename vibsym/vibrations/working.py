@@ -45,9 +45,10 @@ class Working:
 
     @property
     def lines(self) -> tuple[WorkingLine, ...]:
-        """Return every species of the table, of an infinite group those that displacements can carry."""
-        chi, labels = self.displacements.chi_3n, self.displacements.group.image_labels
-        return tuple(self._line(species, chi) for species in self.image.species if species.label in labels)
+        """Return every species in the order of the table, of an infinite group those that displacements can carry."""
+        group, chi = self.displacements.group, self.displacements.chi_3n
+        lines = [self._line(species, chi) for species in self.image.species if species.label in group.image_labels]
+        return tuple(sorted(lines, key=lambda line: group.labels.index(line.label)))
 
     def _line(self, species, chi: np.ndarray) -> WorkingLine:
         terms = tuple((int(size), float(own), float(other))
