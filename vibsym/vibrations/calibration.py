@@ -41,8 +41,8 @@ PRIORS = (
     ("torsion 2 ", np.log(8.0), 0.5), ("torsion 1.5 ", np.log(3.0), 0.5), ("torsion straight ", np.log(12.0), 0.5),
     ("torsion \\S+ \\d$", np.log(0.6), 0.5), ("torsion heavy", 0.0, 0.5), ("torsion large", 0.0, 0.7), ("torsion ", 0.0, 0.4),
     ("repulsion 0 H", np.log(70.0), 0.7), ("repulsion 1 H", np.log(25.0), 0.7), ("repulsion 2 H", np.log(5.0), 0.7),
-    ("repulsion ", 0.0, 0.35),
-    ("bonds (straight|trans)", 0.0, 0.05), ("bonds ", 0.0, 0.03), ("bends ", 0.0, 0.08), ("(wags|torsions|linear bends) ", 0.0, 0.15),
+    ("repulsion ", 0.0, 0.35), ("hydrogen ", 0.0, 0.03),
+    ("bonds at ", 0.0, 0.02), ("bends (at|across [^a])", 0.0, 0.04), ("bonds (straight|trans)", 0.0, 0.05), ("bonds ", 0.0, 0.03), ("bends ", 0.0, 0.08), ("(wags|torsions|linear bends) ", 0.0, 0.15),
 )
 STRETCH_SPREAD = 0.2
 

@@ -163,7 +163,7 @@ def _chosen(made: Calibration, errors: dict, memory: bool) -> np.ndarray:
 
 
 def _place(name: str) -> tuple:
-    kinds = ("stretch", "bend", "linear", "wag", "square", "torsion", "repulsion", "bonds", "bends", "wags", "torsions")
+    kinds = ("stretch", "hydrogen", "bend", "linear", "wag", "square", "torsion", "repulsion", "bonds", "bends", "wags", "torsions")
     words = name.split()
     return kinds.index(words[0]), len(words), name
 

@@ -9,6 +9,7 @@ from vibsym.tables import read_table
 from vibsym.vibrations.forcefield import ForceField, standard_field
 from vibsym.vibrations.internal import internal_coordinates
 from vibsym.vibrations.normal_modes import Mode, normal_modes
+from vibsym.vibrations.surroundings import Surroundings
 
 DOMINANT = 0.5            # share from which a kind names a mode
 HALOGENS = ("F", "Cl", "Br", "I")
@@ -82,3 +83,30 @@ def error_model(name: str) -> tuple[float, float]:
     """Return (spread, shift) of a class; a class without enough cases takes those of all."""
     errors = _errors()
     return errors.get(name) or errors["any"]
+
+
+LETTERS = {"stretch": "ν", "bend": "δ", "linear bend": "δ", "wag": "γ", "torsion": "τ"}
+
+
+def describe(mode: Mode, least: float = 0.15) -> str:
+    """Return the energy distribution in words, `94 % ν(C–H)`; parts below `least` are left out.
+
+    ν stretch, δ bend, γ wag (out of plane), τ torsion.
+    """
+    parts = []
+    for name, share in mode.shares:
+        if share >= least:
+            kind, _, elements = name.rpartition(" ")
+            parts.append(f"{100 * share:.0f} % {LETTERS[kind]}({elements.replace('-', '–')})")
+    return " + ".join(parts)
+
+
+def characteristic_name(set_name: str, estimates: Estimates) -> str:
+    """Return the stretch factor of a set all of whose bonds are of one class, else an empty text."""
+    if not set_name.startswith("stretch ") or any(mark in set_name for mark in ("D", "T-", "-T")):
+        return ""
+    field, symmetry = standard_field(), estimates.symmetry
+    around = Surroundings(symmetry.structure.symbols, symmetry.positions, estimates.sets)
+    each = next(each for each in estimates.sets if each.name == set_name)
+    names = {field.bonds.entry(around, *atoms).name for atoms in each.atoms.tolist()}
+    return names.pop() if len(names) == 1 else ""

@@ -70,12 +70,14 @@ class BondTable:
 class ForceField:
     """Factors and shares by name; what is not named has the factor 1, or the share 0.
 
-    `constants` are diagonal constants given by the user for whole sets, in N/m (stretches) or N/m Å²; they replace d_q.
+    `constants` are diagonal constants given by the user for whole sets, in N/m (stretches) or N/m Å²; they replace d_q.  `scales`
+    multiply the diagonal constants of sets (refinement).
     """
 
     values: Mapping[str, float]
     bonds: BondTable
     constants: Mapping[str, float] = field(default_factory=dict)
+    scales: Mapping[str, float] = field(default_factory=dict)
 
     def terms(self, symbols: Sequence[str], positions, sets) -> Terms:
         """Return the terms that a molecule needs."""
@@ -83,12 +85,17 @@ class ForceField:
 
     def matrix(self, symbols: Sequence[str], positions, sets) -> np.ndarray:
         """Return F (m, m) over the rows of B, N/m for stretches, N/m Å and N/m Å² where angles take part."""
-        return self.matrix_of(self.terms(symbols, positions, sets), self.given(symbols, sets))
+        return self.matrix_of(self.terms(symbols, positions, sets), self.given(symbols, sets), self.scale(symbols, sets))
 
     def given(self, symbols, sets) -> np.ndarray:
         """Return (m,) the user's diagonal constants, NaN where there is none."""
         rows = [np.full(len(each) * each.components, self.constants.get(plain_name(each, symbols), np.nan))
                 for each in sets if len(each)]
+        return np.concatenate(rows) if rows else np.zeros(0)
+
+    def scale(self, symbols, sets) -> np.ndarray:
+        """Return (m,) the scales of the rows."""
+        rows = [np.full(len(each) * each.components, self.scales.get(plain_name(each, symbols), 1.0)) for each in sets if len(each)]
         return np.concatenate(rows) if rows else np.zeros(0)
 
     def product(self, names) -> float:
@@ -100,11 +107,13 @@ class ForceField:
                 value *= factor**power
         return value
 
-    def matrix_of(self, terms: Terms, given: np.ndarray | None = None) -> np.ndarray:
-        """Return F of given terms."""
+    def matrix_of(self, terms: Terms, given: np.ndarray | None = None, scales: np.ndarray | None = None) -> np.ndarray:
+        """Return F of given terms; `given` (m,) replaces diagonal constants where it is not NaN, `scales` (m,) multiplies them."""
         diagonal = np.array([self.product(each.factors) * each.geometry for each in terms.diagonals])
         if given is not None:
             diagonal = np.where(np.isnan(given), diagonal, given)
+        if scales is not None:
+            diagonal = diagonal * scales
         F = np.diag(diagonal)
         for each in terms.interactions:
             share = self.values.get(each.share)
@@ -130,7 +139,12 @@ class ForceField:
 
     def with_constants(self, constants: Mapping[str, float]) -> "ForceField":
         """Return the field with other diagonal constants for some sets."""
-        return ForceField(self.values, self.bonds, {**self.constants, **constants})
+        return ForceField(self.values, self.bonds, {**self.constants, **constants}, self.scales)
+
+    def with_scales(self, scales: Mapping[str, float]) -> "ForceField":
+        """Return the field with the diagonal constants of some sets multiplied."""
+        merged = {name: self.scales.get(name, 1.0) * value for name, value in scales.items()}
+        return ForceField(self.values, self.bonds, self.constants, {**self.scales, **merged})
 
 
 def plain_name(each, symbols: Sequence[str]) -> str:

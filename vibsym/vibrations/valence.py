@@ -96,7 +96,17 @@ class _Builder:
         bond = frozenset(atoms)
         entry = self.bonds.entry(self.around, *atoms)
         self.stretch_row[bond], self.class_of[bond] = len(self.diagonals), entry.bond_class
-        self.diagonals.append(Diagonal(factors(entry.name), entry.geometry))
+        self.diagonals.append(Diagonal(factors(entry.name, *self._beside_hydrogen(*atoms)), entry.geometry))
+
+    def _beside_hydrogen(self, i, j):
+        """Return a factor for each heavy atom beside the hydrogen of a bond X-H: CH3F, CH2F2 and CHF3 differ."""
+        symbols, beside = self.around.symbols, self.around.beside
+        if (symbols[i] == "H") == (symbols[j] == "H"):
+            return []
+        hydrogen, other = (i, j) if symbols[i] == "H" else (j, i)
+        bridge = "bridge " if len(beside[hydrogen]) > 1 else ""
+        shape = self.around.shape(other)
+        return [f"hydrogen {bridge}beside {symbols[atom]} {shape}" for atom in beside[other] if symbols[atom] != "H"]
 
     def _angle_factors(self, i, centre, k):
         around, shape = self.around, self.around.shape(centre)
@@ -162,7 +172,7 @@ class _Builder:
                 cosine = around.cosine(i, centre, k)
                 if row is not None and k not in around.beside[i]:
                     repulsions.append(self._repulsion(i, centre, k, cosine, row))
-                pairs.append(self._two_bonds(i, centre, k, cosine))
+                pairs += self._two_bonds(i, centre, k, cosine)
             pairs += self._two_bends(centre)
         return repulsions, pairs
 
@@ -176,7 +186,7 @@ class _Builder:
         slopes = (r1 - r2 * cosine) / apart, (r2 - r1 * cosine) / apart, r1 * r2 * np.sqrt(1 - cosine * cosine) / apart
         return Repulsion(factors(f"repulsion {hydrogens} H", f"repulsion {one}-{two}"), float(near), rows, tuple(map(float, slopes)))
 
-    def _two_bonds(self, i, centre, k, cosine) -> Interaction:
+    def _two_bonds(self, i, centre, k, cosine) -> list[Interaction]:
         bonds = [frozenset((i, centre)), frozenset((k, centre))]
         hydrogens = sum(self.around.symbols[atom] == "H" or self.around.symbols[centre] == "H" for atom in (i, k))
         number = len(self.around.beside[centre])
@@ -185,7 +195,10 @@ class _Builder:
         else:
             multiple = sum(self.class_of[bond] in ("1.5", "2", "3") for bond in bonds) if hydrogens == 0 else 0
             name = f"bonds {hydrogens} H {multiple} multiple {6 if number >= 5 else max(3, number)}"
-        return Interaction(name, self.stretch_row[bonds[0]], self.stretch_row[bonds[1]], 1.0)
+        symbols = self.around.symbols
+        ends = sorted(f"{symbols[atom]}({self.class_of[bond]})" for atom, bond in zip((i, k), bonds))
+        own = f"bonds at {symbols[centre]} {self.around.shape(centre)}{' trans' if cosine < STRAIGHT else ''} {' '.join(ends)}"
+        return [Interaction(each, self.stretch_row[bonds[0]], self.stretch_row[bonds[1]], 1.0) for each in (name, own)]
 
     def _two_bends(self, centre) -> list[Interaction]:
         around, found = self.around, []
@@ -201,7 +214,10 @@ class _Builder:
             else:
                 name = f"bends opposite {sum(light[atom] for atom in (*one, *two))} H {shape}"
             rows = self.bend_row[one[0], centre, one[1]], self.bend_row[two[0], centre, two[1]]
-            found.append(Interaction(name, *rows, 1.0))
+            angles = sorted("-".join(sorted(around.symbols[atom] for atom in pair)) for pair in (one, two))
+            kind = around.symbols[min(common)] if common else "opposite"
+            own = f"bends at {around.symbols[centre]} {shape} {kind} {' '.join(angles)}"
+            found += [Interaction(each, *rows, 1.0) for each in (name, own)]
         return found
 
     def _bends_across_bonds(self) -> list[Interaction]:
@@ -221,7 +237,10 @@ class _Builder:
                     u, v = u - axis * (u @ axis), v - axis * (v @ axis)
                     dihedral = float(u @ v / np.sqrt((u @ u) * (v @ v)))
                     light = (around.symbols[i] == "H") + (around.symbols[k] == "H")
-                    found.append(Interaction(f"bends across a bond {light} H {flat}", one, two, dihedral))
+                    name = f"bends across a bond {light} H {flat}"
+                    sides = sorted((f"{around.symbols[i]}-{around.symbols[c]}{around.shape(c)}",
+                                    f"{around.symbols[k]}-{around.symbols[e]}{around.shape(e)}"))
+                    found += [Interaction(each, one, two, dihedral) for each in (name, f"bends across {' '.join(sides)}")]
         return found
 
     def _out_of_plane(self) -> list[Interaction]:

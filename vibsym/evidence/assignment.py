@@ -1,0 +1,192 @@
+"""Assign observed lines to fundamentals: the optimum of the cost of `assignment_costs.py`, and how firm each line is.
+
+Activity and a measured polarisation are constraints; a coincident pair, the estimates of the force field, strengths and characteristic
+ranges are costs.  For every line the whole spectrum is assigned again with the line in each other species that could hold
+it: the extra cost tells how nearly another assignment is as good.  A line is firm when every other species costs at least FIRM more
+(measured: of such lines at least 98 % have the published species, tests/benchmarks/assignment.py).
+"""
+
+from collections.abc import Sequence
+from dataclasses import dataclass, field
+
+import numpy as np
+
+from vibsym.errors import VibsymError
+from vibsym.evidence.assignment_costs import (
+    BROKEN_PAIR,
+    LEFT_OVER,
+    LEFT_OVER_WEAK,
+    UNSEEN,
+    mean_wavenumber,
+    pair_costs,
+    single_costs,
+)
+from vibsym.evidence.bandlist import BandList
+from vibsym.evidence.coincidence import WINDOW, pair_bands
+from vibsym.evidence.lines import Band
+from vibsym.evidence.matching import Costs, Matching, cheapest
+from vibsym.evidence.pins import Pin, parse_pins, pinned
+from vibsym.structures.symmetry import Symmetry
+from vibsym.vibrations.estimates import Estimates, describe, estimate
+from vibsym.vibrations.normal_modes import Mode
+
+FIRM = 6.0                 # extra cost from which a line is firm
+TOLD = 30.0                # alternatives dearer than this are not told
+
+
+@dataclass(frozen=True, eq=False)
+class Assigned:
+    """A fundamental with its bands, and the extra cost of every other species."""
+
+    mode: Mode
+    infrared: Band | None
+    raman: Band | None
+    description: str
+    alternatives: tuple[tuple[str, float], ...]
+    pinned: bool = False
+
+    @property
+    def firm(self) -> bool:
+        """Whether every other species costs at least FIRM more."""
+        return self.pinned or all(cost >= FIRM for _, cost in self.alternatives)
+
+    @property
+    def wavenumber(self) -> float:
+        """Mean of the two lines, cm-1."""
+        seen = [mean_wavenumber(band) for band in (self.infrared, self.raman) if band is not None]
+        return sum(seen) / len(seen)
+
+    def to_dict(self) -> dict:
+        """Return the row for JSON."""
+        return {"mode": self.mode.name, "species": self.mode.species, "infrared_line": _value(self.infrared),
+                "raman_line": _value(self.raman), "estimate": round(self.mode.wavenumber, 1), "description": self.description,
+                "firm": bool(self.firm), "alternatives": [{"species": label, "extra_cost": cost} for label, cost in self.alternatives]}
+
+
+@dataclass(frozen=True, eq=False)
+class Assignment:
+    """The assignment of a band list to a structure."""
+
+    symmetry: Symmetry
+    observed: BandList
+    estimates: Estimates
+    assigned: tuple[Assigned, ...]
+    leftover: tuple[Band, ...]
+    unseen: tuple[Mode, ...]
+    cost: float
+    notes: tuple[str, ...] = field(default=())
+
+    def to_dict(self) -> dict:
+        """Return the JSON object."""
+        unseen = [{"mode": mode.name, "species": mode.species, "estimate": round(mode.wavenumber, 1)} for mode in self.unseen]
+        leftover = [{"spectrum": band.spectrum, "wavenumber": line.wavenumber} for band in self.leftover for line in band.lines]
+        return {"structure": self.symmetry.structure.to_dict(), "point_group": self.symmetry.to_dict(),
+                "assignments": [row.to_dict() for row in self.assigned], "leftover": leftover, "unseen": unseen,
+                "cost": round(self.cost, 3)}
+
+
+def assign(symmetry: Symmetry, observed: BandList, *, window: float = WINDOW, pins: Sequence[str] = (),
+           estimates: Estimates | None = None) -> Assignment:
+    """Return the assignment of least cost.
+
+    `pins` fix lines (`ν4=1306`, `T2=1306`); `estimates` are those of the standard force field when not given.
+    """
+    estimates = estimate(symmetry) if estimates is None else estimates
+    if not estimates.modes:
+        raise VibsymError(f"{symmetry.structure.formula}: no vibrations, so there is nothing to assign")
+    bands = observed.bands
+    place = {id(band): row for row, band in enumerate(bands)}
+    found = pair_bands(*(tuple(band for band in bands if band.spectrum == name) for name in ("IR", "Raman")), window)
+    candidates = tuple((place[id(item[0])], place[id(item[1])]) for item in found.pairs)
+    together = pair_costs(bands, candidates, estimates)
+    possible = np.isfinite(together).any(axis=1) if len(candidates) else np.zeros(0, bool)
+    pairs = tuple(pair for pair, kept in zip(candidates, possible) if kept)
+    costs = Costs(single_costs(bands, estimates, observed.spectra), together[possible], pairs,
+                  np.array([LEFT_OVER_WEAK if band.weak else LEFT_OVER for band in bands]),
+                  np.array([_unseen_cost(mode, observed) for mode in estimates.modes]), BROKEN_PAIR)
+    held = parse_pins(pins, symmetry.group, estimates.modes)
+    allowed = pinned(held, bands, estimates.modes)
+    best = cheapest(costs, allowed)
+    if best is None:
+        raise VibsymError("the pinned lines cannot all be assigned together; take one --pin away")
+    best = _in_order(best, bands, estimates.modes, held)
+    return _result(symmetry, observed, estimates, costs, allowed, best, held)
+
+
+def _unseen_cost(mode: Mode, observed: BandList) -> float:
+    active = (mode.infrared and "IR" in observed.spectra) or (mode.raman and "Raman" in observed.spectra)
+    inside = observed.between is None or observed.between[0] <= mode.wavenumber <= observed.between[1]
+    return UNSEEN if active and inside else 0.0
+
+
+def _in_order(best: Matching, bands, modes: Sequence[Mode], held: Sequence[Pin]) -> Matching:
+    """Let the lines of one species follow the order of its estimates: within a species modes are numbered by wavenumber."""
+    places = best.places.copy()
+    fixed = {pin.mode for pin in held if pin.mode is not None}
+    for species in {mode.species for mode in modes}:
+        for kind in {_kind(best, row) for row in range(len(bands))}:
+            items = [row for row in range(len(bands)) if places[row] >= 0 and modes[places[row]].species == species
+                     and places[row] not in fixed and _kind(best, row) == kind]
+            columns = sorted({int(places[row]) for row in items}, key=lambda column: -modes[column].wavenumber)
+            groups: dict[int, list[int]] = {}
+            for row in items:
+                groups.setdefault(int(places[row]), []).append(row)
+            ordered = sorted(groups.values(), key=lambda rows: -np.mean([mean_wavenumber(bands[row]) for row in rows]))
+            for column, rows in zip(columns, ordered):
+                places[rows] = column
+    return Matching(places, best.whole, best.cost)
+
+
+def _kind(best: Matching, row: int) -> int:
+    return 0
+
+
+def _result(symmetry, observed, estimates, costs, allowed, best, held) -> Assignment:
+    bands, modes = observed.bands, estimates.modes
+    rows: dict[int, dict[str, int]] = {}
+    for row, column in enumerate(best.places.tolist()):
+        if column >= 0:
+            rows.setdefault(column, {})[bands[row].spectrum] = row
+    assigned = []
+    for column in sorted(rows):
+        seen = rows[column]
+        others = alternatives(costs, allowed, best, list(seen.values()), modes[column].species, modes)
+        assigned.append(Assigned(modes[column], *(bands[seen[name]] if name in seen else None for name in ("IR", "Raman")),
+                                 describe(modes[column]), others, any(_holds(pin, bands, seen) for pin in held)))
+    leftover = tuple(bands[row] for row, column in enumerate(best.places.tolist()) if column < 0)
+    unseen = tuple(mode for column, mode in enumerate(modes) if column not in rows)
+    return Assignment(symmetry, observed, estimates, tuple(assigned), leftover, unseen, best.cost, _notes(estimates, observed))
+
+
+def alternatives(costs: Costs, allowed, best: Matching, rows: Sequence[int], species: str, modes) -> tuple[tuple[str, float], ...]:
+    """Return (species, extra cost) of the best assignment with the lines `rows` in each other species, the cheapest first."""
+    found = []
+    for label in dict.fromkeys(mode.species for mode in modes):
+        if label == species:
+            continue
+        inside = np.array([mode.species == label for mode in modes])
+        tried = np.ones(costs.single.shape, bool) if allowed is None else allowed.copy()
+        possible = False
+        for row in rows:
+            tried[row] &= inside
+            possible |= bool(np.isfinite(costs.single[row][tried[row]]).any())
+        if possible and all(np.isfinite(costs.single[row][tried[row]]).any() for row in rows):
+            other = cheapest(costs, tried)
+            if other is not None and other.cost - best.cost < TOLD:
+                found.append((label, round(max(other.cost - best.cost, 0.0), 2)))
+    return tuple(sorted(found, key=lambda pair: pair[1]))
+
+
+def _holds(pin: Pin, bands, seen: dict[str, int]) -> bool:
+    return any(pin.matches(bands[row]) for row in seen.values())
+
+
+def _notes(estimates: Estimates, observed: BandList) -> tuple[str, ...]:
+    notes = list(observed.notes)
+    for each in estimates.fallback:
+        notes.append(f"{each['set']}: no tabulated force constant, estimated by Badger's rule ({each['constant']:.0f} N/m)")
+    return tuple(notes)
+
+
+def _value(band: Band | None) -> float | None:
+    return None if band is None else round(mean_wavenumber(band), 6)
