@@ -198,6 +198,27 @@ def test_distinguish_compares_the_formulas_of_ligands():
     assert alike.symmetry.group.symbol == "C2v" and unlike.symmetry.group.symbol == "Cs"
 
 
+def test_carbonyls_beside_ethers():
+    """W(CO)5 with a phosphite P(OC)3 (hydrogens left out): C-O takes eight bonds, W-C-O those of the carbonyls."""
+    symbols, positions = atoms(("W", (0, 0, 0)), *complexes.carbonyls(np.vstack([ring(4, 1), [(0, 0, -1)]])),
+                               ("P", [(0, 0, 2.5)]), ("O", ring(3, 1.5, 3.0)), ("C", ring(3, 2.75, 2.35)))
+    structure = built(symbols, positions)
+    every, own = (expect(structure, oscillators=wanted, local=True).oscillators for wanted in ("C-O", "W-C-O"))
+    assert total(every.bands.gamma, expect(structure).symmetry.group.symbol) == 8
+    assert every.notes == ("stretch C-O: 5 of the 8 bonds are at a metal, the others are not; --oscillators W-C-O "
+                           "takes those at the metal.",)
+    assert own.notes == () and own.local.symmetry.group.symbol == "C4v" and counts(own.local.bands) == (3, 4)
+
+
+def test_a_local_group_lower_than_the_molecule_tells_no_leaks():
+    """Found within a smaller tolerance than the molecule: no leaks can be told, and the note says why."""
+    ideal = place("OC-6", "W", ["CO"] * 6)
+    found = expect(built(ideal.symbols, ideal.positions, shake=0.01), 0.1, oscillators="C-O", local=True,
+                   local_tolerance=1e-4).oscillators
+    assert found.bands.gamma == {"A1g": 1, "Eg": 1, "T1u": 1} and found.local.symmetry.group.symbol == "C1"
+    assert found.local.leaks == () and "too small to tell leaks" in found.notes[0]
+
+
 def test_local_tolerance():
     tight = expect(read(SAMPLE), oscillators="C-O", local=True, local_tolerance=0.01).oscillators.local
     assert tight.symmetry.group.symbol == "C1"

@@ -6,9 +6,9 @@ import internal_cases as cases
 import numpy as np
 import pytest
 
-from vibsym.groups.projection import symmetry_vectors
 from vibsym.structures.finder import find_symmetry
 from vibsym.structures.structure import Structure
+from vibsym.vibrations.blocks import symmetry_blocks, symmetry_rows
 from vibsym.vibrations.bmatrix import b_matrix, g_matrix
 from vibsym.vibrations.internal import internal_coordinates, select
 from vibsym.vibrations.redundancy import RankLadder, independence
@@ -123,20 +123,8 @@ def force_field(symmetry, sets, seed):
     return total / symmetry.group.image.order
 
 
-def symmetry_rows(symmetry, sets):
-    """Return for each species the symmetry coordinates of all sets, (copies, degeneracy, m)."""
-    size, start, rows = sum(len(each) * each.components for each in sets), 0, {}
-    for each in sets:
-        width = len(each) * each.components
-        for label, vectors in symmetry_vectors(coordinate_basis(symmetry, each)).items():
-            full = np.zeros((*vectors.shape[:2], size))
-            full[..., start:start + width] = vectors
-            rows.setdefault(label, []).append(full)
-        start += width
-    return {label: np.concatenate(parts) for label, parts in rows.items()}
-
-
 def frequencies(g, f):
+    """Return the eigenvalues of GF (real, since both are Hermitian and F is positive)."""
     return np.sort(np.linalg.eigvals(g @ f).real)
 
 
@@ -145,10 +133,11 @@ def frequencies(g, f):
 def test_blocks_of_g_and_f(name):
     """The blocks give the eigenvalues of the whole GF; partners have one block, a conjugate pair [[A, -B], [B, A]]."""
     symmetry = cases.symmetry(name)
-    sets, group = internal_coordinates(symmetry), symmetry.group.image
+    sets, group = internal_coordinates(symmetry), symmetry.group
     g = g_matrix(b_matrix(symmetry.positions, sets), symmetry.structure.masses)
     f = force_field(symmetry, sets, 4)
     rows, values = symmetry_rows(symmetry, sets), []
+    short = [symmetry_blocks(symmetry, sets, matrix) for matrix in (g, f)]
     everything = np.concatenate([vectors.reshape(-1, len(g)) for vectors in rows.values()])
     assert np.abs(everything @ everything.T - np.eye(len(g))).max() < 1e-10
     for label, vectors in rows.items():
@@ -158,14 +147,14 @@ def test_blocks_of_g_and_f(name):
             for block in blocks:
                 assert np.abs(block[0, :, 0] - block[1, :, 1]).max() < 1e-10
                 assert np.abs(block[0, :, 1] + block[1, :, 0]).max() < 1e-10
-            hermitian = [block[0, :, 0] + 1j * block[1, :, 0] for block in blocks]
-            values += [*frequencies(*hermitian)] * 2
+                assert np.abs(block[0, :, 1] + block[0, :, 1].T).max() < 1e-10
+            values += [*frequencies(*(found[label] for found in short))] * 2
             continue
         for block in blocks:
             for i in range(degeneracy):
                 for j in range(degeneracy):
                     assert np.abs(block[i, :, j] - (block[0, :, 0] if i == j else 0)).max() < 1e-10
-        values += [*frequencies(*(block[0, :, 0] for block in blocks))] * degeneracy
+        values += [*frequencies(*(found[label] for found in short))] * degeneracy
     assert np.abs(np.sort(values) - frequencies(g, f)).max() < 1e-8
 
 
@@ -173,7 +162,7 @@ def test_blocks_of_g_and_f(name):
 def test_the_coupling_in_a_conjugate_pair_is_not_zero(name):
     """One component alone would give other eigenvalues."""
     symmetry = cases.symmetry(name)
-    sets, group = internal_coordinates(symmetry), symmetry.group.image
+    sets, group = internal_coordinates(symmetry), symmetry.group
     g = g_matrix(b_matrix(symmetry.positions, sets), symmetry.structure.masses)
     f = force_field(symmetry, sets, 4)
     pairs = [each.label for each in group.species if each.pair]

@@ -52,7 +52,7 @@ def _exact_size(term) -> str:
 
 
 def _cosines(values: Sequence[float]) -> tuple[str, list[str]] | None:
-    """Return (factor, sizes) where every value is √(2/n) times a cosine of a fraction of π, for n up to a few more terms."""
+    """Return (factor, sizes) where every value is √(2/n) times the cosine of a fraction of π, n near their number."""
     for n in range(len(values), len(values) + 5):
         ratios = [abs(value) * (n / 2) ** 0.5 for value in values]
         if max(ratios) > 1 + CLOSE:

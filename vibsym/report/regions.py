@@ -39,7 +39,8 @@ def oscillator_parts(found: Oscillators, symbol: str) -> list:
         columns.append((f"in {typeset(local.symmetry.group.symbol)} (local)", local.bands))
     rows = tuple(_row(name, bands) for name, bands in columns)
     page = [Table((found.bands.name, *_HEAD), rows, right=_COUNTS, heading="Oscillators", flow=True)]
-    return page + (_local_parts(local) if local is not None else [])
+    page += _local_parts(local) if local is not None else []
+    return page + ([Paragraph("\n".join(found.notes))] if found.notes else [])
 
 
 def _row(name: str, bands: "OscillatorBands") -> tuple[str, ...]:

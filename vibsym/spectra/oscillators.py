@@ -17,6 +17,7 @@ from vibsym.errors import VibsymError
 from vibsym.spectra.activity import Counts, count_bands
 from vibsym.spectra.expectation import LOCAL_TOLERANCE
 from vibsym.structures.equivalent_bonds import symmetric_bonds
+from vibsym.structures.periodic import is_metal
 from vibsym.structures.reduced import ReducedObject, reduced_object
 from vibsym.structures.structure import Structure
 from vibsym.structures.symmetry import Symmetry
@@ -96,6 +97,7 @@ class Oscillators:
 
     bands: OscillatorBands
     local: LocalSymmetry | None
+    notes: tuple[str, ...] = ()
 
     def to_dict(self) -> dict:
         """Return the keys that oscillators add to JSON."""
@@ -114,13 +116,18 @@ def oscillators(symmetry: Symmetry, wanted: str, local: bool = False, tolerance:
     bonds = symmetric_bonds(symmetry) if bonds is None else np.asarray(bonds, dtype=int).reshape(-1, 2)
     name, pairs, centre = find_oscillators(structure, bonds, wanted)
     bands = stretch_bands(symmetry, name, pairs)
+    notes = () if centre else _mixture(structure, bonds, name, pairs)
     if not local:
-        return Oscillators(bands, None)
+        return Oscillators(bands, None, notes)
     from vibsym.structures.finder import find_symmetry
 
     reduced = reduced_object(structure, pairs, bonds, centre, distinguish)
     own = find_symmetry(reduced.structure, tolerance)
-    return Oscillators(bands, LocalSymmetry(reduced, own, symmetry, stretch_bands(own, name, reduced.pairs)))
+    found = LocalSymmetry(reduced, own, symmetry, stretch_bands(own, name, reduced.pairs))
+    if _same_operations(found) is None:
+        notes += (f"The local group {own.group.symbol} lacks operations of the molecule ({symmetry.group.symbol}); its "
+                  "tolerance is too small to tell leaks.",)
+    return Oscillators(bands, found, notes)
 
 
 def stretch_bands(symmetry: Symmetry, name: str, pairs: np.ndarray) -> OscillatorBands:
@@ -189,9 +196,27 @@ def _binds(a: int, b: int, centre: str, bonds: np.ndarray, names) -> bool:
     return any(centre in names[atom] for atom in around.tolist() if atom != b)
 
 
+def _mixture(structure: Structure, bonds: np.ndarray, name: str, pairs: np.ndarray) -> tuple[str, ...]:
+    """Tell when some of the oscillators are bonded to a metal and others are not (CO beside the C-O of an ether)."""
+    metals = np.array([is_metal(number) for number in structure.numbers.tolist()])
+    beside = np.zeros(len(structure), dtype=bool)
+    for column in (0, 1):
+        beside[bonds[metals[bonds[:, 1 - column]], column]] = True
+    at_metal = beside[pairs].any(axis=1)
+    if at_metal.all() or not at_metal.any() or metals[pairs].any():
+        return ()
+    symbol = structure.symbols[int(np.flatnonzero(metals)[0])]
+    bond = name.removeprefix("stretch ")
+    return (f"{name}: {int(at_metal.sum())} of the {len(pairs)} bonds are at a metal, the others are not; "
+            f"--oscillators {symbol}-{bond} takes those at the metal.",)
+
+
 def _leaks(local: LocalSymmetry):
     whole, own = local.whole.group, local.symmetry.group
-    restrict = _restriction(local)
+    places = _same_operations(local)
+    if places is None:
+        return
+    restrict = _restriction(local, places)
     for label in local.bands.gamma:
         species = own.species_named(label)
         becomes = restrict(label)
@@ -202,7 +227,7 @@ def _leaks(local: LocalSymmetry):
             yield Leak(label, becomes, infrared, raman)
 
 
-def _restriction(local: LocalSymmetry):
+def _restriction(local: LocalSymmetry, places: np.ndarray):
     """Return the function from a local species to the species of the molecule's group that it becomes.
 
     Every operation of the molecule moves the reduced object like one local operation; the characters of that one are
@@ -211,7 +236,6 @@ def _restriction(local: LocalSymmetry):
     from vibsym.groups.reduction import reduce
 
     whole, own = local.whole.group, local.symmetry.group
-    places = _same_operations(local)
     first = [each.members[0] for each in whole.image.classes]
     image_label = {shown: label for label, shown in own.image_labels.items()}
 
@@ -223,10 +247,11 @@ def _restriction(local: LocalSymmetry):
     return restrict
 
 
-def _same_operations(local: LocalSymmetry) -> np.ndarray:
+def _same_operations(local: LocalSymmetry) -> np.ndarray | None:
     """Return (h,) for each operation of the molecule the local one that moves the reduced object alike.
 
-    They agree in how they permute atoms and points, and, of several that do, in being nearest as matrices.
+    They agree in how they permute atoms and points, and, of several that do, in being nearest as matrices.  None: the
+    local group lacks operations of the molecule (its tolerance was the smaller one).
     """
     whole, own, reduced = local.whole, local.symmetry, local.reduced
     moved = _moved_points(whole.permutations, reduced.origins)
@@ -235,8 +260,7 @@ def _same_operations(local: LocalSymmetry) -> np.ndarray:
     distance = np.abs(turned[:, None] - own.group.image.matrices[None]).max(axis=(2, 3))
     alike = (moved[:, None] == own.permutations[None]).all(axis=2)
     if not alike.any(axis=1).all():
-        raise VibsymError(f"the local group {own.group.symbol} lacks operations that the molecule "
-                          f"({whole.group.symbol}) has; choose a smaller --local-tolerance")
+        return None
     return np.where(alike, distance, np.inf).argmin(axis=1)
 
 

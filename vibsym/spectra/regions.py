@@ -10,12 +10,16 @@ from dataclasses import dataclass
 from functools import cached_property
 from typing import NamedTuple
 
+import numpy as np
+
 from vibsym.spectra.activity import Counts, count_bands
+from vibsym.structures.equivalent_bonds import symmetric_bonds
 from vibsym.structures.symmetry import Symmetry
 from vibsym.vibrations.internal import internal_coordinates
 from vibsym.vibrations.redundancy import Independence, independence
 
-MOST_DISPLACEMENTS = 900                   # of one species; beyond, the regions are left out for time
+# Beyond these the regions are left out for time: displacements of one species, atoms, entries of B.
+MOST_DISPLACEMENTS, MOST_ATOMS, MOST_ENTRIES = 900, 1200, 6_000_000
 
 
 class Region(NamedTuple):
@@ -76,7 +80,7 @@ class Regions:
     def notes(self) -> tuple[str, ...]:
         """What to know before the division is taken for more than a way of speaking."""
         if self.independence is None:
-            return ("Too many vibrations of one species: the division by region is left out.",)
+            return ("Too many internal coordinates: the division by region is left out.",)
         notes = []
         if self.crowded:
             notes.append(f"There are more stretches than vibrations in {', '.join(self.crowded)}: the division into "
@@ -100,8 +104,12 @@ class Regions:
 
 def regions(symmetry: Symmetry, bonds=None) -> Regions:
     """Return the division of Γvib by region; `bonds` (B, 2) default to those of the structure."""
-    group = symmetry.group.image
     atoms = len(symmetry.positions)
-    if 3 * atoms / group.order > MOST_DISPLACEMENTS:
+    if atoms > MOST_ATOMS or 3 * atoms / symmetry.group.image.order > MOST_DISPLACEMENTS:
+        return Regions(None, symmetry)
+    bonds = symmetric_bonds(symmetry) if bonds is None else bonds
+    ends = np.bincount(np.asarray(bonds, dtype=int).ravel(), minlength=atoms)
+    angles = int((ends * (ends - 1) // 2).sum())
+    if angles * 3 * atoms > MOST_ENTRIES:
         return Regions(None, symmetry)
     return Regions(independence(symmetry, internal_coordinates(symmetry, bonds)), symmetry)
