@@ -3,6 +3,7 @@
 import click
 
 from vibsym.cli import options
+from vibsym.cli.pictures import picture_options, save_picture
 from vibsym.cli.reading import finish, results_of
 
 
@@ -15,7 +16,8 @@ from vibsym.cli.reading import finish, results_of
 @options.reading_options
 @options.select_option
 @options.atoms_option
-def command(structures, form, output, tolerance, as_group, axes, select, atoms, **reading):
+@picture_options("structure")
+def command(structures, form, output, tolerance, as_group, axes, select, atoms, picture, show, **reading):
     """Show the symmetry coordinates of each STRUCTURE.
 
     Stretches, bends, wags and torsions from the bonds, set by set: the species they carry, the combinations with exact
@@ -37,4 +39,5 @@ def command(structures, form, output, tolerance, as_group, axes, select, atoms, 
         return symmetry_coordinates(symmetry, select, parse_atoms(atoms, len(structure)))
 
     results, failures = results_of(structures, make, **reading)
+    save_picture(picture, show, (result.symmetry for result in results), coordinates=results[0] if results else None)
     finish(results, failures, view, form, output)

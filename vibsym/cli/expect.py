@@ -3,6 +3,7 @@
 import click
 
 from vibsym.cli import options
+from vibsym.cli.pictures import picture_options, save_picture, strip_option
 from vibsym.cli.reading import finish, results_of
 
 
@@ -16,11 +17,15 @@ from vibsym.cli.reading import finish, results_of
 @options.working_option
 @options.light_option
 @options.oscillator_options
+@strip_option
+@picture_options("structure")
 @click.option("--gas", is_flag=True, help="Add rotor, rotational constants and band contours of the gas.")
 @click.option("--temperature", type=float, metavar="K", help="Temperature of the gas [296].")
-@click.option("--zeta", metavar="T2=0.05", help="Coriolis constant of degenerate species: a number, or one a species.")
+@click.option("--zeta", metavar="T2=0.05",
+              help="Coriolis constant of degenerate species: a number, one a species,
+            or normal (estimated).")
 def command(structures, form, output, tolerance, as_group, axes, working, light, oscillators, local, local_tolerance,
-            distinguish, gas, temperature, zeta, **reading):
+            distinguish, gas, temperature, zeta, strip, picture, show, **reading):
     """Tell which infrared and Raman bands each STRUCTURE can show.
 
     A STRUCTURE is an XYZ or MDL mol file, or - for standard input.
@@ -43,4 +48,5 @@ def command(structures, form, output, tolerance, as_group, axes, working, light,
               "local_tolerance": local_tolerance, "distinguish": distinguish, "gas": gas, "temperature": temperature,
               "zeta": zeta}
     results, failures = results_of(structures, lambda structure: expect(structure, tolerance, **chosen), **reading)
-    finish(results, failures, view, form, output, working=working, light=light)
+    save_picture(picture, show, (result.symmetry for result in results))
+    finish(results, failures, view, form, output, working=working, light=light, strip=strip)

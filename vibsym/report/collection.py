@@ -63,7 +63,8 @@ def _sheet(structure, observed, proposal: Proposal, options: ScreenOptions) -> S
     if len(found.structure) == 1:
         return sheet
     if len(found.structure) > MOST_ATOMS:
-        return replace(sheet, omitted=(f"{len(found.structure)} atoms: symmetry coordinates and normal modes are left out "
+        return replace(sheet, omitted=(f"{len(found.structure)} atoms: symmetry coordinates and normal modes are left "
+                                       f"out "
                                        "of the page; vibsym coordinates and vibsym normal have them",))
     omitted: list[str] = []
     coordinates = _tried(omitted, "Symmetry coordinates", _coordinates, found.symmetry)

@@ -41,6 +41,13 @@ class Table(NamedTuple):
     flow: bool = False
 
 
+class Preformatted(NamedTuple):
+    """Lines in which every column counts, such as a strip of bands, under an optional heading."""
+
+    lines: tuple[str, ...]
+    heading: str = ""
+
+
 class Listing(NamedTuple):
     """A list of sentences under a heading."""
 

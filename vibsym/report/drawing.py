@@ -93,13 +93,13 @@ def _skeleton(scene: Scene, flat: np.ndarray, box: _Frame) -> list[str]:
     for i, j in scene.bonds:
         away = flat[j] - flat[i]
         length = max(float(np.linalg.norm(away)), 1e-9)
-        start, end = flat[i] + away / length * scene.radii[i] * 0.9, flat[j] - away / length * scene.radii[j] * 0.9
+        start, end = flat[i] + away / length * scene.radii[i] * 0.97, flat[j] - away / length * scene.radii[j] * 0.97
         (x, y), (u, v) = box.at(start), box.at(end)
         place = f'x1="{x:.1f}" y1="{y:.1f}" x2="{u:.1f}" y2="{v:.1f}"'
         wide = max(1.2, 0.075 * box.scale)
         items.append(((flat[i, 2] + flat[j, 2]) / 2 - 0.05,
                       f'<line class="halo" stroke-width="{wide + 3:.1f}" {place}/>'
-                      f'<line class="bond" stroke-width="{wide:.1f}" stroke-linecap="round" {place}/>'))
+                      f'<line class="bond" stroke-width="{wide:.1f}" {place}/>'))
     for label, point, radius in zip(scene.labels, flat, scene.radii):
         items.append((point[2], _disc(label, box.at(point), radius * box.scale)))
     return [text for _, text in sorted(items, key=lambda item: item[0])]

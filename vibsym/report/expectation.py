@@ -23,7 +23,7 @@ RATIO = {"plane": ("3/4", "plane-polarised light"), "natural": ("6/7", "natural 
 CUBIC = ("T", "Td", "Th", "O", "Oh", "I", "Ih")
 
 
-def parts(result: Expectation, working: bool = False, light: str = "plane", **_) -> list:
+def parts(result: Expectation, working: bool = False, light: str = "plane", strip: bool = False, **_) -> list:
     """Return the page."""
     page = [about_structure(result.structure), Paragraph(_group_line(result))]
     if len(result.structure) == 1:
@@ -31,6 +31,10 @@ def parts(result: Expectation, working: bool = False, light: str = "plane", **_)
         return [*page, *_working(result, working), *_beware(result.notes[1:])]
     page.append(Paragraph(_counts(result), strong=True))
     page += [_species_table(result), Paragraph(_ratio_line(result, light))]
+    if strip:
+        from vibsym.report.strip import region_strip
+
+        page += region_strip(result)
     page += [*_oscillators(result), *_regions(result), *_representations(result)]
     if result.gas is not None:
         from vibsym.report.contours import gas_parts

@@ -7,9 +7,9 @@ stands on top as a comment and names the packages it needs.
 import re
 import unicodedata
 
-from vibsym.report.document import Facts, Listing, Paragraph, Table, Title
+from vibsym.report.document import Facts, Listing, Paragraph, Preformatted, Table, Title
 
-PREAMBLE = "% needs \\usepackage{booktabs,longtable,array}; made by vibsym --format latex"
+PREAMBLE = "% needs \\usepackage{booktabs,longtable,array,amssymb}; made by vibsym --format latex"
 LONG = 40                      # rows; a longer table may break across pages
 _ESCAPED = {"\\": r"\textbackslash{}", "{": r"\{", "}": r"\}", "$": r"\$", "&": r"\&", "%": r"\%", "#": r"\#",
             "_": r"\_", "^": r"\textasciicircum{}", "~": r"\textasciitilde{}",
@@ -23,7 +23,9 @@ _GREEK = {"Γ": r"\Gamma", "Δ": r"\Delta", "Π": r"\Pi", "Σ": r"\Sigma", "Φ":
 _SIGNS = {"−": "-", "×": r"\times", "·": r"\cdot", "∞": r"\infty", "≤": r"\le", "≥": r"\ge", "±": r"\pm", "→": r"\to",
           "↔": r"\leftrightarrow", "⊗": r"\otimes", "⊕": r"\oplus", "≈": r"\approx", "Å": r"\mathrm{\AA}",
           "½": r"\tfrac12", "⅓": r"\tfrac13", "√": r"\surd", "⁄": "/",
-          "∑": r"\sum", "⟨": r"\langle", "⟩": r"\rangle", "°": r"^{\circ}"}
+          "∑": r"\sum", "▲": r"\blacktriangle", "▼": r"\blacktriangledown", "◆": r"\blacklozenge", "○": r"\circ",
+          "│": r"\vert",
+          "⟨": r"\langle", "⟩": r"\rangle", "°": r"^{\circ}"}
 _TEXT = {"–": "--", "—": "---", "…": r"\ldots{}", "’": "'", "‘": "`", "“": "``", "”": "''", "\u00a0": "~", "─": "--",
          "Å": r"\AA{}"}
 _UPPER, _LOWER = {}, {}
@@ -36,7 +38,8 @@ _UPPER["ᵠ"] = r"\varphi"
 
 def set_latex(parts) -> str:
     """Return the parts as LaTeX."""
-    setters = {Title: _title, Paragraph: _paragraph, Facts: _facts, Table: _table, Listing: _listing}
+    setters = {Title: _title, Paragraph: _paragraph, Facts: _facts, Table: _table, Listing: _listing,
+               Preformatted: _preformatted}
     return PREAMBLE + "\n\n" + "\n\n".join("\n".join(setters[type(part)](part)) for part in parts) + "\n"
 
 
@@ -134,6 +137,12 @@ def _listing(part: Listing) -> list[str]:
         return _heading(part.heading)
     items = [rf"\item {_set(item)}" for item in part.items]
     return [*_heading(part.heading), r"\begin{itemize}", *items, r"\end{itemize}"]
+
+
+def _preformatted(part: Preformatted) -> list[str]:
+    """Set each line in the typewriter face, its blanks kept."""
+    lines = [r"\texttt{" + _set(line.rstrip()).replace(" ", "~") + r"}\\" for line in part.lines]
+    return [*_heading(part.heading), "", r"\begin{flushleft}", *lines, r"\end{flushleft}"]
 
 
 def _table(part: Table) -> list[str]:

@@ -1,11 +1,12 @@
 """Set a page as Markdown: the same parts as on the terminal, for notebooks, tickets and supporting information."""
 
-from vibsym.report.document import Facts, Listing, Paragraph, Table, Title
+from vibsym.report.document import Facts, Listing, Paragraph, Preformatted, Table, Title
 
 
 def set_markdown(parts) -> str:
     """Return the parts as Markdown (tables with pipes, headings of the second and third level)."""
-    setters = {Title: _title, Paragraph: _paragraph, Facts: _facts, Table: _table, Listing: _listing}
+    setters = {Title: _title, Paragraph: _paragraph, Facts: _facts, Table: _table, Listing: _listing,
+               Preformatted: _preformatted}
     return "\n\n".join("\n".join(setters[type(part)](part)) for part in parts) + "\n"
 
 
@@ -30,6 +31,10 @@ def _facts(part: Facts) -> list[str]:
 
 def _listing(part: Listing) -> list[str]:
     return _heading(part.heading) + [f"- {_safe(item)}" for item in part.items]
+
+
+def _preformatted(part: Preformatted) -> list[str]:
+    return [*_heading(part.heading), *("    " + line for line in part.lines)]
 
 
 def _table(part: Table) -> list[str]:

@@ -126,7 +126,7 @@ def _estimate(scale: Scale, each: Stick, base: float, sign: int) -> str:
 
 
 def _labels(scale: Scale, sticks: Sequence[Stick], base: float, sign: int, arm: float, prefix: str | None) -> list[str]:
-    """Labels stand upright beyond the tips, moved apart where they would touch; where there is no room weaker ones go."""
+    """Labels stand upright beyond the tips, moved apart where they would touch; without room weaker ones go."""
     y = base + sign * (arm + 4)
     most = int((scale.right - scale.left) // LABEL)
     kept = sorted(sorted(sticks, key=lambda each: -height_of(each.strength))[:most], key=lambda each: -each.wavenumber)
@@ -190,7 +190,8 @@ def curve_svg(found, width: float = 760, title: str = "") -> str:
     for value in scale.ticks(width):
         at = scale.x(value)
         body.append(f'<path class="axis" stroke-width="1" d="M{at:.1f} {bottom + 6}v5"/>'
-                    f'<text class="ink" font-size="11.5" x="{min(max(at, 26), width - 26):.1f}" y="{bottom + 24}" text-anchor="middle">{value:g}</text>')
+                    f'<text class="ink" font-size="11.5" x="{min(max(at, 26), width - 26):.1f}" y="{bottom + 24}" '
+                    f'text-anchor="middle">{value:g}</text>')
     peaks = sorted(found.peaks, key=lambda peak: -peak.wavenumber)
     most = int((width - 36) // LABEL)
     strong = sorted(sorted(peaks, key=lambda peak: -peak.height)[:most], key=lambda peak: -peak.wavenumber)

@@ -3,14 +3,15 @@
 Colour only weighs what the words already say: headings are bold where `colour` is asked for, nothing depends on it.
 """
 
-from vibsym.report.document import Facts, Listing, Paragraph, Table, Title
+from vibsym.report.document import Facts, Listing, Paragraph, Preformatted, Table, Title
 
 _BOLD, _PLAIN = "\x1b[1m", "\x1b[0m"
 
 
 def set_page(parts, width: int = 80, colour: bool = False) -> str:
     """Return the parts as text of lines no longer than `width` (a single longer word excepted)."""
-    setters = {Title: _title, Paragraph: _paragraph, Facts: _facts, Table: _table, Listing: _listing}
+    setters = {Title: _title, Paragraph: _paragraph, Facts: _facts, Table: _table, Listing: _listing,
+               Preformatted: _preformatted}
     return "\n\n".join("\n".join(setters[type(part)](part, width, colour)) for part in parts) + "\n"
 
 
@@ -65,6 +66,10 @@ def _listing(part: Listing, width: int, colour: bool) -> list[str]:
     for item in part.items:
         lines += wrap(item, width, "  · ", "    ")
     return lines
+
+
+def _preformatted(part: Preformatted, width: int, colour: bool) -> list[str]:
+    return [*_heading(part.heading, colour), *(("  " + line).rstrip() for line in part.lines)]
 
 
 def _table(part: Table, width: int, colour: bool) -> list[str]:

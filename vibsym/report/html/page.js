@@ -172,13 +172,13 @@
 
     line(a, b, wide, colour, dash = []) {
       const { pen } = this;
-      pen.setLineDash(dash); pen.lineWidth = wide; pen.strokeStyle = colour; pen.lineCap = "round";
+      pen.setLineDash(dash); pen.lineWidth = wide; pen.strokeStyle = colour; pen.lineCap = "butt";
       pen.beginPath(); pen.moveTo(...a); pen.lineTo(...b); pen.stroke(); pen.setLineDash([]);
     }
 
     drawBond(flat, i, j, at, scale) {
       const { scene } = this, away = flat[j].map((v, a) => v - flat[i][a]), length = Math.hypot(...away) || 1;
-      const a = at(flat[i].map((v, k) => v + away[k] / length * scene.radii[i] * 0.9)), b = at(flat[j].map((v, k) => v - away[k] / length * scene.radii[j] * 0.9));
+      const a = at(flat[i].map((v, k) => v + away[k] / length * scene.radii[i] * 0.97)), b = at(flat[j].map((v, k) => v - away[k] / length * scene.radii[j] * 0.97));
       const wide = Math.max(1.2, 0.075 * scale);
       this.line(a, b, wide + 3, this.halo);
       this.line(a, b, wide, this.ink);

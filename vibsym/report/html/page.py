@@ -1,7 +1,7 @@
 """The report as one HTML file that needs nothing else: style, script, drawings and results are all inside.
 
-Each section is made from the same parts (`report/document.py`) as the page on the terminal, and the JSON of every result
-lies in the file (script elements of type application/json, ids `result-...`), so numbers cannot disagree.
+Each section is made from the same parts (`report/document.py`) as the page on the terminal, and the JSON of every
+result lies in the file (script elements of type application/json, ids `result-...`), so numbers cannot disagree.
 """
 
 from html import escape
@@ -34,9 +34,11 @@ def report_page(report: Report) -> str:
             '<meta name="viewport" content="width=device-width, initial-scale=1">\n'
             f'<meta http-equiv="Content-Security-Policy" content="{_POLICY}">\n'
             f'<meta name="generator" content="vibsym {__version__}">\n<link rel="icon" href="{_ICON}">\n'
-            f"<title>{escape(names)}: infrared and Raman bands</title>\n<style>\n{_beside('page.css')}</style>\n</head>\n"
+            f"<title>{escape(names)}: infrared and Raman "
+            f"bands</title>\n<style>\n{_beside('page.css')}</style>\n</head>\n"
             '<body>\n<a class="skip" href="#text">To the text</a>\n<main id="text" class="sheet-of-paper">\n'
-            + "\n".join(body) + f"\n</main>\n{_results(report)}<script>\n{_beside('page.js')}</script>\n</body>\n</html>\n")
+            + "\n".join(body) + f"\n</main>\n{_results(report)}<script>\n{_beside('page.js')}</script>\n"
+            "</body>\n</html>\n")
 
 
 def _beside(name: str) -> str:
@@ -49,7 +51,8 @@ def _cover(report: Report, names: str) -> str:
                    f"{escape(sheet.expectation.structure.source)}</li>" for number, sheet in enumerate(report.sheets))
     sections = "".join(_section(number, title, f"all-{key}", text)
                        for number, (key, title, text) in enumerate(shared_sections(report), 1))
-    return (f'<header class="top"><h1>{escape(names)}</h1><p class="source">{len(report.sheets)} structures</p></header>'
+    return (f'<header class="top"><h1>{escape(names)}</h1><p class="source">{len(report.sheets)} '
+            f'structures</p></header>'
             f'<ul class="contents">{rows}</ul>{sections}')
 
 
@@ -62,7 +65,8 @@ def _article(report: Report, sheet: Sheet, number: int) -> str:
         shared = shared_sections(report)
         made = made[:1] + shared + made[1:] if shared else made
     contents = "".join(f'<li><a href="#s{number}-{key}">{escape(title)}</a></li>' for key, title, _ in made)
-    sections = "".join(_section(place, title, f"s{number}-{key}", text) for place, (key, title, text) in enumerate(made, 1))
+    sections = "".join(_section(place, title, f"s{number}-{key}", text)
+                       for place, (key, title, text) in enumerate(made, 1))
     tag = "h1" if len(report.sheets) == 1 else "h2"
     comment = found.structure.comment.strip()
     told = f'<p class="comment">{escape(comment)}</p>' if comment else ""
@@ -72,7 +76,8 @@ def _article(report: Report, sheet: Sheet, number: int) -> str:
             f'<span class="stamp" title="point group">{escape(group)}</span><p class="source">'
             f'{escape(found.structure.source)}, {atoms} atom{"s" if atoms != 1 else ""}</p></header>'
             f'<nav aria-label="Sections of {escape(formula)}"><ul class="contents">{contents}</ul></nav>{told}'
-            f'{skeleton_store(sheet.scene, f"skeleton-{number}")}<div class="spread"><div class="plate-column">{figure}</div>'
+            f'{skeleton_store(sheet.scene, f"skeleton-{number}")}<div class="spread"><div '
+            f'class="plate-column">{figure}</div>'
             f'<div class="text">{sections}</div></div></article>')
 
 
@@ -82,8 +87,10 @@ def _section(number: int, title: str, place: str, text: str) -> str:
 
 def _foot(report: Report) -> str:
     made = f"<pre><code>{escape(report.command)}</code></pre>" if report.command else ""
-    return (f'<section id="made"><h2>How this page was made</h2>{made}<p>vibsym {__version__}. The results stand in this '
-            "file as JSON too (script elements named result-...); the page loads nothing from the network.</p></section>")
+    return (f'<section id="made"><h2>How this page was made</h2>{made}<p>vibsym {__version__}. The results stand in '
+            f'this '
+            "file as JSON too (script elements named result-...); the page loads nothing from the "
+            "network.</p></section>")
 
 
 def _results(report: Report) -> str:

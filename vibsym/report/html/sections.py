@@ -50,7 +50,8 @@ def _expect(report: Report, sheet: Sheet, prefix: str) -> str:
     """What to expect: the counts as a tally, the species, the representations."""
     before, _, after = _divided(sheet)
     counts = sheet.expectation.to_dict()["counts"]
-    words = (("fundamentals", "fundamentals", ""), ("infrared", "infrared at most", "▲"), ("raman", "Raman at most", "▼"),
+    words = (("fundamentals", "fundamentals", ""), ("infrared", "infrared at most", "▲"),
+             ("raman", "Raman at most", "▼"),
              ("coincident", "in both", "◆"), ("polarised", "polarised", "●"), ("silent", "silent", "·"))
     tally = "".join(f'<li><span class="count" data-count="{key}">{counts[key]}</span> <span>{mark} {word}</span></li>'
                     for key, word, mark in words)
@@ -62,8 +63,8 @@ def _expect(report: Report, sheet: Sheet, prefix: str) -> str:
 
 
 def _regions(report: Report, sheet: Sheet, prefix: str) -> str:
-    parts = _divided(sheet)[1]
-    return set_html([part._replace(heading="") if getattr(part, "heading", "") == "By region" else part for part in parts])
+    headed = [getattr(part, "heading", "") == "By region" for part in _divided(sheet)[1]]
+    return set_html([part._replace(heading="") if own else part for part, own in zip(_divided(sheet)[1], headed)])
 
 
 def _bands(report: Report, sheet: Sheet, prefix: str) -> str:
@@ -76,7 +77,8 @@ def _bands(report: Report, sheet: Sheet, prefix: str) -> str:
         sticks, title = estimate_sticks(sheet.estimates.modes), "Estimated places of the bands"
     else:
         return ""
-    estimated = ("" if report.observed is not None else "<p>No bands were given: these are rough estimates of a valence force "
+    estimated = ("" if report.observed is not None else "<p>No bands were given: these are rough estimates of a "
+                                                        "valence force "
                  "field, not a spectrum; how strong a band is cannot be told from symmetry.</p>")
     return estimated + plot(sticks, title, prefix=prefix) + f'<p class="key">{escape(KEY)}</p>'
 
@@ -86,14 +88,16 @@ def _assignment(report: Report, sheet: Sheet, prefix: str) -> str:
     if found is None:
         return ""
     answer = found.to_dict()
-    rows = tuple((typeset(row["mode"]), typeset(row["species"]), _place(row["infrared_line"]), _place(row["raman_line"]),
-                  f"{row['estimate']:.0f}", row["description"], "firm" if row["firm"] else _doubt(row["alternatives"]))
+    rows = tuple((typeset(row["mode"]), typeset(row["species"]), _place(row["infrared_line"]),
+                  _place(row["raman_line"]), f"{row['estimate']:.0f}", row["description"],
+                  "firm" if row["firm"] else _doubt(row["alternatives"]))
                  for row in answer["assignments"])
     head = ("mode", "species", "infrared", "Raman", "estimate", "description", "firmness")
     page: list = [Paragraph(f"{count_text(len(rows), 'fundamental')} assigned, {len(answer['leftover'])} left over, "
                             f"{len(answer['unseen'])} not seen.", strong=True), Table(head, rows, frozenset({2, 3, 4}))]
     if any(not row["firm"] for row in answer["assignments"]):
-        page.append(Paragraph("Firm: every other species costs much more. Otherwise the species that cost nearly as little "
+        page.append(Paragraph("Firm: every other species costs much more. Otherwise the species that cost nearly as "
+                              "little "
                               "stand there with what they cost more; decide by a further measurement."))
     if answer["unseen"]:
         unseen: dict[str, list[str]] = {}
@@ -116,10 +120,12 @@ def _leftovers(report: Report, sheet: Sheet, prefix: str) -> str:
         if each.fundamental:
             told = f"close to {typeset(each.fundamental)}"
         else:
-            told = "; ".join(f"{typeset(one.combination.label).replace(' - ', ' − ')} at {one.combination.wavenumber:.1f}"
+            told = "; ".join(f"{typeset(one.combination.label).replace(' - ', ' − ')} at "
+                             f"{one.combination.wavenumber:.1f}"
                              for one in each.candidates[:4]) or "no overtone, sum or difference of two quanta is near"
         rows.append((f"{each.line.wavenumber:g}", each.line.spectrum, each.line.strength or NOTHING, told))
-    return set_html([Table(("cm-1", "spectrum", "strength", "candidates, the likeliest first"), tuple(rows), frozenset({0}))])
+    return set_html([Table(("cm-1", "spectrum", "strength", "candidates, the likeliest "
+                                                            "first"), tuple(rows), frozenset({0}))])
 
 
 def _motion_cards(report: Report, sheet: Sheet, prefix: str) -> str:
@@ -129,7 +135,8 @@ def _motion_cards(report: Report, sheet: Sheet, prefix: str) -> str:
     modes = _modes(sheet)
     if modes:
         shown = modes[:MOST_MODES]
-        text += ("<p>Normal modes of the valence force field, numbered as fundamentals; wavenumbers are its rough harmonic "
+        text += ("<p>Normal modes of the valence force field, numbered as fundamentals; wavenumbers are its rough "
+                 "harmonic "
                  "estimates. Of a degenerate set one component is drawn. Arrows show where the atoms move; a dot in a "
                  "ring comes towards you, a cross in a ring goes away.</p>")
         text += cards(sheet.scene, shown, skeleton, prefix) + _more(len(modes) - len(shown), "vibsym normal")
@@ -137,7 +144,8 @@ def _motion_cards(report: Report, sheet: Sheet, prefix: str) -> str:
     coordinates = _coordinates(sheet)
     if coordinates:
         shown = coordinates[:MOST_COORDINATES]
-        text += ("<details><summary>Symmetry coordinates, set by set</summary><p>The first component of each combination; "
+        text += ("<details><summary>Symmetry coordinates, set by set</summary><p>The first component of each "
+                 "combination; "
                  "the atoms are drawn as a force along the coordinate moves them.</p>"
                  + cards(sheet.scene, shown, skeleton, prefix, _formulas(sheet))
                  + _more(len(coordinates) - len(shown), "vibsym coordinates") + "</details>")
@@ -150,9 +158,11 @@ def _conventions(report: Report, sheet: Sheet, prefix: str) -> str:
         notes += sheet.assignment.notes
     if report.observed is not None and report.screening is None:
         notes += report.observed.notes
-    rules = ("Species: Mulliken's labels in the axes stated beside the structure; another choice of axes exchanges labels "
+    rules = ("Species: Mulliken's labels in the axes stated beside the structure; another choice of axes exchanges "
+             "labels "
              "where that is said there (IUPAC, Pure Appl. Chem. 69, 1641 (1997)).",
-             "A degenerate set is one band; counts are of fundamentals and upper bounds. Symmetry permits, it never promises.",
+             "A degenerate set is one band; counts are of fundamentals and upper bounds. Symmetry permits, it never "
+             "promises.",
              "Fundamentals are numbered by species in Herzberg's order and by falling wavenumber within a species.")
     return set_html([Listing(tuple(dict.fromkeys(notes)), "Beware"), Listing(rules, "Conventions")])
 

@@ -2,12 +2,13 @@
 
 from html import escape
 
-from vibsym.report.document import Facts, Listing, Paragraph, Table, Title
+from vibsym.report.document import Facts, Listing, Paragraph, Preformatted, Table, Title
 
 
 def set_html(parts, level: int = 3) -> str:
     """Return the parts as HTML; headings begin at `level`."""
-    setters = {Title: _title, Paragraph: _paragraph, Facts: _facts, Table: _table, Listing: _listing}
+    setters = {Title: _title, Paragraph: _paragraph, Facts: _facts, Table: _table, Listing: _listing,
+               Preformatted: _preformatted}
     return "".join(setters[type(part)](part, level) for part in parts)
 
 
@@ -34,6 +35,11 @@ def _facts(part: Facts, level: int) -> str:
 def _listing(part: Listing, level: int) -> str:
     items = "".join(f"<li>{escape(item)}</li>" for item in part.items)
     return heading(part.heading, level) + (f"<ul>{items}</ul>" if items else "")
+
+
+def _preformatted(part: Preformatted, level: int) -> str:
+    lines = escape("\n".join(part.lines))
+    return heading(part.heading, level) + f"<pre>{lines}</pre>"
 
 
 def _table(part: Table, level: int) -> str:

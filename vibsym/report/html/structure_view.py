@@ -17,7 +17,8 @@ def plate(scene: Scene, motions, name: str, group: str, axes: dict[str, str]) ->
     label = f"{name} in its standard frame, point group {group}"
     still = structure_svg(scene, elements=True, width=420, height=330, title=label)
     switches = "".join(_switch(number, each) for number, each in enumerate(scene.elements[:MOST_ELEMENTS]))
-    elements = (f'<fieldset class="controls"><legend>Elements of symmetry</legend>{switches}</fieldset>' if switches else "")
+    elements = (f'<fieldset class="controls"><legend>Elements of '
+                f'symmetry</legend>{switches}</fieldset>' if switches else "")
     faces = "".join(f'<button type="button" data-face="{axis}">along {axis}</button>' for axis in "xyz")
     words = "".join(f"<dt>{escape(axis)}</dt><dd>{escape(text)}</dd>" for axis, text in axes.items())
     return (f'<figure class="plate"><div class="stage" data-label="{escape(label)}">{still}</div>'
@@ -40,8 +41,9 @@ def skeleton_store(scene: Scene, name: str) -> str:
 
 def cards(scene: Scene, motions: list[Motion], skeleton: str, prefix: str, texts: dict[str, str] | None = None) -> str:
     """Return the motions as a list of cards; `texts` adds a line to a card."""
-    return ('<ul class="motions">'
-            + "".join(_card(scene, each, skeleton, prefix, (texts or {}).get(each.key, "")) for each in motions) + "</ul>")
+    texts = texts or {}
+    found = "".join(_card(scene, each, skeleton, prefix, texts.get(each.key, "")) for each in motions)
+    return f'<ul class="motions">{found}</ul>'
 
 
 def _card(scene: Scene, motion: Motion, skeleton: str, prefix: str, text: str) -> str:

@@ -10,10 +10,12 @@ from vibsym.report.wording import count_text
 MOST = 12
 # Signs that differ in shape, not only in colour: a closed ring, a ring half closed, a ring struck out.
 _RING = '<circle cx="20" cy="20" r="15" style="fill:none" stroke="currentColor" stroke-width="3"{dash}/>'
-_SIGNS = {FITS: _RING.format(dash="") + '<path d="M12 21l6 6 11-13" style="fill:none" stroke="currentColor" stroke-width="3.4"/>',
+_SIGNS = {FITS: _RING.format(dash="") + '<path d="M12 21l6 6 11-13" style="fill:none" stroke="currentColor" '
+                                        'stroke-width="3.4"/>',
           STRAINED: _RING.format(dash=' stroke-dasharray="7 4"')
           + '<path d="M11 22c3-6 6-6 9-2s6 4 9-2" style="fill:none" stroke="currentColor" stroke-width="3"/>',
-          EXCLUDED: _RING.format(dash="") + '<path d="M10 30L30 10" style="fill:none" stroke="currentColor" stroke-width="3.4"/>'}
+          EXCLUDED: _RING.format(dash="") + '<path d="M10 30L30 10" style="fill:none" stroke="currentColor" '
+                                            'stroke-width="3.4"/>'}
 _WORDS = {FITS: "fits", STRAINED: "strained", EXCLUDED: "excluded"}
 
 
@@ -31,9 +33,10 @@ def _card(candidate) -> str:
     head = f"{prediction.name}, {groups}: {_WORDS[candidate.verdict]}"
     region = f"{prediction.region}: " if prediction.region else ""
     counts = prediction.counts
-    predicted = (f"{region}predicted infrared {counts['infrared']}, Raman {counts['raman']}, both {counts['coincident']}, "
-                 f"polarised {counts['polarised']}")
-    score = f"score {candidate.score:.2f}, excuses {candidate.weight:g}, {count_text(len(candidate.unseen), 'band')} not seen"
+    predicted = (f"{region}predicted infrared {counts['infrared']}, Raman {counts['raman']}, both "
+                 f"{counts['coincident']}, polarised {counts['polarised']}")
+    score = (f"score {candidate.score:.2f}, excuses {candidate.weight:g}, "
+             f"{count_text(len(candidate.unseen), 'band')} not seen")
     items = "".join(f"<li>{escape(text)}</li>" for text in _excuses(candidate)) or "<li>nothing has to be excused</li>"
     return (f'<li class="verdict" data-verdict="{candidate.verdict}"><svg viewBox="0 0 40 40" aria-hidden="true">'
             f'{_SIGNS[candidate.verdict]}</svg><div><h3>{escape(head)}</h3><p class="key">{escape(predicted)}; '
