@@ -22,8 +22,7 @@ from vibsym.cli.reading import finish, results_of
 @click.option("--gas", is_flag=True, help="Add rotor, rotational constants and band contours of the gas.")
 @click.option("--temperature", type=float, metavar="K", help="Temperature of the gas [296].")
 @click.option("--zeta", metavar="T2=0.05",
-              help="Coriolis constant of degenerate species: a number, one a species,
-            or normal (estimated).")
+              help="Coriolis constant of degenerate species: a number, one a species, or normal (estimated).")
 def command(structures, form, output, tolerance, as_group, axes, working, light, oscillators, local, local_tolerance,
             distinguish, gas, temperature, zeta, strip, picture, show, **reading):
     """Tell which infrared and Raman bands each STRUCTURE can show.
