@@ -15,6 +15,8 @@ from vibsym.groups.symbols import plain_label
 from vibsym.spectra.contours import gas_phase, parse_zeta, separation_parallel, separation_spherical
 from vibsym.spectra.expectation import expect
 from vibsym.structures.structure import Structure
+from vibsym.vibrations.coriolis import coriolis_constant, partners
+from vibsym.vibrations.estimates import estimate
 from vibsym.vibrations.rotor import rotor, spin_weights
 
 REFERENCE = Path(__file__).parent / "reference"
@@ -155,6 +157,35 @@ def test_coriolis_constant_narrows_a_spherical_top():
         gas_of("methane", zeta={"A1": 0.2})
     with pytest.raises(VibsymError, match="cannot be read"):
         parse_zeta("much")
+
+
+OCTAHEDRON_F = atoms(("S", np.zeros((1, 3))), ("F", 1.56 * np.vstack([np.eye(3), -np.eye(3)])))
+
+
+@pytest.mark.parametrize("molecule", ["methane", "silane", OCTAHEDRON_F], ids=["CH4", "SiH4", "SF6"])
+def test_coriolis_constants_add_up_to_one_half(molecule):
+    """Two T2 sets of XY4, two T1u sets of XY6: Σζ = 1/2 in any force field (Johnston & Dennison 1935, from memory)."""
+    molecule = molecule if isinstance(molecule, str) else Structure.from_atoms(*molecule)
+    gas, _ = gas_of(molecule, zeta="normal")
+    assert len(gas.contours) == 2 and all(each.mode for each in gas.contours)
+    assert sum(each.zeta for each in gas.contours) == pytest.approx(0.5, abs=2e-4)
+    plain, _ = gas_of(molecule)
+    for each in gas.contours:
+        assert each.separation == pytest.approx((1 - each.zeta) * plain.contours[0].separation)
+
+
+def test_a_coriolis_constant_belongs_to_the_set():
+    """The in-plane Eu sets of XeF4: ζ lies between -1 and 1 and does not depend on the component it is taken from."""
+    found = expect(Structure.from_atoms(*BUILT["XeF4"]))
+    modes = [each for each in estimate(found.symmetry).modes if each.species == "Eu"]
+    assert len(modes) == 2
+    for mode in modes:
+        value = coriolis_constant(found.symmetry, "Eu", mode.vector)
+        x, y = partners(found.symmetry, 2, mode.vector)
+        assert -1 <= value <= 1
+        for turn in (0.3, 1.1):
+            assert coriolis_constant(found.symmetry, "Eu", np.cos(turn) * x + np.sin(turn) * y) == pytest.approx(value)
+    assert coriolis_constant(found.symmetry, "A2u", modes[0].vector) is None
 
 
 def test_q_spacing_of_a_perpendicular_band():

@@ -20,11 +20,12 @@ def gas_parts(gas: GasPhase) -> list:
     if gas.weights:
         pairs.append(("spins", f"statistical weight {gas.weights['even']} for even J, {gas.weights['odd']} for odd J"))
     page = [Facts(tuple(pairs), "Gas phase")]
-    rows = tuple((typeset(each.species), each.type, " ".join(each.branches), _number(each.separation, 1),
-                  _number(each.spacing, 3), each.source or NOTHING) for each in gas.contours)
+    rows = tuple((typeset(f"{each.species} {each.mode or ''}".strip()), each.type, " ".join(each.branches),
+                  _number(each.separation, 1),
+                  _number(each.spacing, 3), _number(each.zeta, 3), each.source or NOTHING) for each in gas.contours)
     if rows:
-        head = ("species", "type", "branches", "P–R cm-1", "Q spacing", "formula")
-        page.append(Table(head, rows, right=frozenset({3, 4}), flow=True,
+        head = ("species", "type", "branches", "P–R cm-1", "Q spacing", "ζ", "formula")
+        page.append(Table(head, rows, right=frozenset({3, 4, 5}), flow=True,
                           heading=f"Contours of infrared bands at {gas.temperature:g} K"))
     return [*page, *([Listing(gas.notes)] if gas.notes else [])]
 
@@ -45,4 +46,4 @@ def _axis(rotor: Rotor, place: int) -> str:
 
 
 def _number(value: float | None, places: int) -> str:
-    return NOTHING if value is None else f"{value:.{places}f}"
+    return NOTHING if value is None else f"{value:.{places}f}".replace("-", "−")

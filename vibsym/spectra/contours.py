@@ -16,7 +16,7 @@ hold).  Perpendicular bands of symmetric tops are Q branches 2[A(1 - ζ) - B] ap
 """
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 import numpy as np
 
@@ -28,12 +28,16 @@ from vibsym.vibrations.rotor import Rotor, rotor, spin_weights
 GERHARD_DENNISON = "Gerhard & Dennison 1933, ζ = 0"
 EDGELL_MOYNIHAN = "Edgell & Moynihan 1957"
 SETH_PAUL = "Seth-Paul 1969"
+ESTIMATED = "normal"               # Coriolis constants from the normal modes of the valence force field
 LOWEST_BETA = -0.6                 # the formula was fitted for β from -1/2; a planar top with B near A lies there
 
 
 @dataclass(frozen=True)
 class Contour:
-    """The bands of one species: `type` A, B, C, hybrid, parallel or perpendicular; branches; separations in cm-1."""
+    """The bands of one species: `type` A, B, C, hybrid, parallel or perpendicular; branches; separations in cm-1.
+
+    `mode` names one band of the species, where each has a Coriolis constant of its own.
+    """
 
     species: str
     type: str
@@ -42,10 +46,12 @@ class Contour:
     spacing: float | None = None
     zeta: float | None = None
     source: str = ""
+    mode: str | None = None
 
     def to_dict(self) -> dict:
         """Return the contour for JSON."""
-        return {"species": self.species, "type": self.type, "branches": self.branches,
+        mode = {} if self.mode is None else {"mode": self.mode}
+        return mode | {"species": self.species, "type": self.type, "branches": self.branches,
                 "pr_separation": None if self.separation is None else round(self.separation, 3),
                 "q_spacing": None if self.spacing is None else round(self.spacing, 4), "zeta": self.zeta,
                 "source": self.source}
@@ -69,16 +75,21 @@ class GasPhase:
 
 
 def gas_phase(symmetry: Symmetry, gamma_vib: Mapping[str, int], temperature: float = DEFAULT_TEMPERATURE,
-              zeta: float | Mapping[str, float] | None = None) -> GasPhase:
-    """Return rotor and contours; `zeta` is the Coriolis constant of degenerate species (a number, or one a species)."""
+              zeta: float | str | Mapping[str, float] | None = None) -> GasPhase:
+    """Return rotor and contours; `zeta` is the Coriolis constant of degenerate species (see `parse_zeta`)."""
     temperature = checked_temperature(temperature)
     top = rotor(symmetry)
-    zetas = _zetas(symmetry, zeta)
+    own = _estimated_zetas(symmetry, top) if zeta == ESTIMATED else {}
+    zetas = {} if zeta == ESTIMATED else _zetas(symmetry, zeta)
     contours = []
     for label in gamma_vib:
         species = symmetry.group.species_named(label)
-        if species.infrared:
+        if not species.infrared:
+            continue
+        if label not in own:
             contours.append(_contour(top, species, temperature, zetas.get(label)))
+        for name, value in own.get(label, ()):
+            contours.append(replace(_contour(top, species, temperature, value), mode=name))
     return GasPhase(top, temperature, tuple(contours), spin_weights(symmetry), _notes(symmetry, top))
 
 
@@ -102,14 +113,31 @@ def separation_spherical(constant: float, temperature: float, zeta: float = 0.0)
     return float(4 * (1 - zeta) * (constant * temperature / HC_OVER_K) ** 0.5)
 
 
-def parse_zeta(text: str) -> float | dict[str, float]:
-    """Return the Coriolis constant typed as `0.05`, or as `T1u=0.05,E=0.1` for each species."""
+def parse_zeta(text: str) -> float | str | dict[str, float]:
+    """Return the Coriolis constant typed as `0.05`, as `T1u=0.05,E=0.1` for each species, or `normal` as it is."""
+    if text.strip() == ESTIMATED:
+        return ESTIMATED
     try:
         if "=" not in text:
             return float(text)
         return {label.strip(): float(value) for label, _, value in (part.partition("=") for part in text.split(","))}
     except ValueError:
-        raise VibsymError(f"zeta '{text}' cannot be read; write a number, or species=number, as in T2=0.05") from None
+        raise VibsymError(f"zeta '{text}' cannot be read; write a number, species=number as in T2=0.05, "
+                          "or normal") from None
+
+
+def _estimated_zetas(symmetry: Symmetry, top: Rotor) -> dict[str, list[tuple[str, float]]]:
+    """ζ of every degenerate infrared-active band by the valence force field: {species: [(mode, ζ), ...]}."""
+    from vibsym.vibrations.coriolis import coriolis_constant
+    from vibsym.vibrations.estimates import estimate
+
+    found: dict[str, list[tuple[str, float]]] = {}
+    if top.kind in ("spherical", "prolate", "oblate"):
+        for mode in estimate(symmetry).modes:
+            value = coriolis_constant(symmetry, mode.species, mode.vector)
+            if value is not None:
+                found.setdefault(mode.species, []).append((mode.name, round(value, 4)))
+    return found
 
 
 def _zetas(symmetry: Symmetry, zeta) -> dict[str, float]:
