@@ -105,6 +105,19 @@ def test_working_light_and_axes():
     assert json.loads(other.stdout)["gamma_vib"] == {"A1": 2, "B1": 1}
 
 
+@pytest.mark.parametrize("form", ["table", "json", "csv", "markdown", "latex"])
+def test_triple_chooses_the_letter_of_triply_degenerate_species(tmp_path, form):
+    methane = tmp_path / "m.xyz"
+    methane.write_text("5\n\nC 0 0 0\nH .63 .63 .63\nH .63 -.63 -.63\nH -.63 .63 -.63\nH -.63 -.63 .63\n")
+    usual, other = (run("expect", methane, "--format", form, "--triple", letter).stdout for letter in "TF")
+    assert usual == run("expect", methane, "--format", form).stdout != other
+    label = {"table": "2F₂", "markdown": "2F₂", "latex": "2$\\mathrm{F}_{2}$"}.get(form, "F2")
+    assert label in other and label.replace("F", "T") in usual and label.replace("F", "T") not in other
+    assert "Td" in other
+    methane.write_text(methane.read_text().replace("H", "T"))          # tritium keeps its letter, and so do the species
+    assert "CT" in run("expect", methane, "--format", form, "--triple", "F").stdout or form == "latex"
+
+
 def test_ladder_page_and_object():
     answer = json.loads(run("group", CLUSTER, "--format", "json").stdout)
     assert list(answer)[:5] == ["structure", "point_group", "axes", "rungs", "suggested"]

@@ -8,6 +8,7 @@ import sys
 
 import click
 
+from vibsym.cli.options import TRIPLE
 from vibsym.report import render
 
 PLAIN_WIDTH = 80
@@ -24,6 +25,8 @@ _SPELLED |= {mark: "^" + digit for mark, digit in zip("⁰¹⁴⁵⁶⁷⁸⁹",
 
 def deliver(results: list, view, form: str, output: str | None = None, **options) -> None:
     """Render results and print them, or write them to `output`."""
+    context = click.get_current_context(silent=True)
+    options["triple"] = context.meta.get(TRIPLE, "T") if context else "T"
     if output is not None:
         from vibsym.files import write_text_atomically
 

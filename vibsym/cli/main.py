@@ -43,7 +43,7 @@ class CommandGroup(click.Group):
         try:
             return super().invoke(ctx)
         except VibsymError as error:
-            raise click.ClickException(str(error)) from error
+            raise click.ClickException(" ".join(str(error).splitlines())) from error
 
 
 def _print_version(ctx, parameter, value):

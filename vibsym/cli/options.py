@@ -8,6 +8,8 @@ import click
 
 from vibsym.report import FORMATS
 
+TRIPLE = "vibsym.triple"      # where the letter of triply degenerate species waits in the click context
+
 structures_argument = click.argument("structures", nargs=-1, required=True, metavar="STRUCTURE...")
 structure_argument = click.argument("structure", metavar="STRUCTURE")
 
@@ -57,9 +59,15 @@ def oscillator_options(command):
     return command
 
 
+def _keep_letter(ctx, parameter, value):
+    ctx.meta[TRIPLE] = value
+
+
 def output_options(command):
-    """Add --format and --output."""
+    """Add --format, --output and --triple; the letter of --triple waits in the context until the result is set."""
     for option in (
+        click.option("--triple", type=click.Choice(("T", "F")), default="T", show_default=True, expose_value=False,
+                     callback=_keep_letter, help="Letter of triply degenerate species in what is written."),
         click.option("--output", metavar="FILE",
                      help="Write to this file what stdout would hold; nothing is written if anything failed."),
         click.option("--format", "form", type=click.Choice(FORMATS), default="table", show_default=True,

@@ -34,7 +34,7 @@ def results_of(paths, make: Callable, **reading) -> tuple[list, int]:
                 results.append(make(structure))
         except VibsymError as error:
             failures += 1
-            click.echo(f"Error: {error}", err=True)
+            click.echo(f"Error: {' '.join(str(error).splitlines())}", err=True)
     return results, failures
 
 

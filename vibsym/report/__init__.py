@@ -9,8 +9,19 @@ format.
 FORMATS = ("table", "json", "csv", "markdown", "latex")
 
 
-def render(results, view, form: str = "table", width: int = 80, colour: bool = False, **options) -> str:
-    """Return results as text: a page, a JSON line or CSV rows each."""
+def render(results, view, form: str = "table", width: int = 80, colour: bool = False, triple: str = "T",
+           **options) -> str:
+    """Return results as text: a page, a JSON line or CSV rows each; `triple` is the letter of triply degenerate species.
+    """
+    text = _set(results, view, form, width, colour, options)
+    if triple == "T":
+        return text
+    from vibsym.report.triple import holds_tritium, with_letter
+
+    return text if any(map(holds_tritium, results)) else with_letter(text, triple)
+
+
+def _set(results, view, form, width, colour, options) -> str:
     if form == "json":
         from vibsym.report.json import set_json
 

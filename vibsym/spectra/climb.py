@@ -47,11 +47,13 @@ def climb(source, tolerance: float = DEFAULT_TOLERANCE, *, axes: str | None = No
           as_group: str | None = None) -> Climb:
     """Return the ladder of a structure with the counts of every rung.
 
-    `axes` chooses those of the group found; `as_group` names the rung that the user means, an error if it is none.
+    `as_group` names the rung that the user means, an error if it is none; `axes` are chosen in it, else in the group
+    found.
     """
     from vibsym.structures.ladder import as_group as in_group
     from vibsym.structures.ladder import ladder
 
     structure = structure_of(source)
-    chosen = in_group(structure, as_group, tolerance) if as_group else None
-    return Climb(structure, ladder(structure, tolerance, axes), chosen)
+    if not as_group:
+        return Climb(structure, ladder(structure, tolerance, axes))
+    return Climb(structure, ladder(structure, tolerance), in_group(structure, as_group, tolerance, axes))
