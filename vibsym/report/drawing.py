@@ -78,7 +78,7 @@ class _Frame:
         low, high = points.min(axis=0), points.max(axis=0)
         span = np.maximum(high - low, 1.0)
         margin = 14 if elements else 8
-        self.scale = float(min((width - 2 * margin) / span[0], (height - 2 * margin) / span[1], 62))
+        self.scale = float(min((width - 2 * margin) / span[0], (height - 2 * margin) / span[1], 0.21 * width))
         self.middle = (low + high) / 2
         self.centre = np.array([width / 2, height / 2])
 

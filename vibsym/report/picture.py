@@ -1,4 +1,4 @@
-"""One drawing by itself, for a paper: `structure`, `sticks`, a normal mode (`ν4`, `v4`) or a symmetry coordinate `Eu:1`.
+"""One drawing by itself, for a paper: `structure`, `sticks`, a normal mode (`ν4`, `v4`) or a coordinate `Eu:1`.
 
 What the command has computed already is handed in; the rest is computed when it is asked for, so that every command
 draws everything.
