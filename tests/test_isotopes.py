@@ -18,7 +18,7 @@ from vibsym.spectra.fermi import parse_doublet
 from vibsym.spectra.isotopes import isotope_effect
 from vibsym.spectra.isotopologues import list_isotopologues
 from vibsym.spectra.modes import Mode, named_modes
-from vibsym.spectra.satellites import satellites
+from vibsym.spectra.satellites import local_satellites, satellites
 from vibsym.structures.finder import find_symmetry
 from vibsym.structures.isotopes import burnside, isotopologues, site_permutations, substitute, substitution
 from vibsym.structures.reading import read
@@ -312,6 +312,29 @@ def test_carbonyl_satellites():
     reduced = (m12 / (m12 + o)) / (m13 / (m13 + o))
     assert product / (2116.7 * 2018.8**2 * 1990**3) == pytest.approx(reduced**0.5, rel=1e-9)
     assert satellites(carbonyl()).molecules[1].positions == ()
+
+
+def test_satellites_in_the_local_group():
+    """trans-Mo(CO)4L2 with ligands that leave no symmetry: its four carbonyls are alike in D4h (A1g + B1g + Eu)."""
+    flask = read("samples/flask-trans.xyz")
+    main, heavy = local_satellites(flask, {"A1g": 2020.0, "B1g": 1950.0, "Eu": 1905.0}).molecules
+    assert main.symmetry.group.symbol == "D4h" and main.gamma == {"A1g": 1, "B1g": 1, "Eu": 1}
+    assert heavy.symmetry.group.symbol == "C2v" and heavy.sites == 4
+    assert flask.symbols[heavy.atom] == "C" and sum(heavy.gamma.values()) == 4
+    values = sorted(value for _, value in heavy.positions)
+    assert values[0] < 1905 and values[1] == pytest.approx(1905) and values[-1] < 2020
+    done = run(
+        "samples/flask-trans.xyz",
+        "--satellites",
+        "--local",
+        "--mode",
+        "A1g=2020",
+        "--mode",
+        "B1g=1950",
+        "--mode",
+        "Eu=1905",
+    )
+    assert done.exit_code == 0 and "D₄h" in done.output and "4.33 %" in done.output
 
 
 def test_satellites_that_cannot_be():

@@ -1,4 +1,4 @@
-"""The budget of `vibsym combine`: 30 fundamentals of a group with twelve species to three quanta, as a whole command."""
+"""The budget of `vibsym combine`: 30 fundamentals in twelve species to three quanta, as a whole command."""
 
 import random
 import statistics

@@ -13,6 +13,9 @@ from vibsym.cli.assigned import check_group, one_structure
               help="List every distinct isotopologue with none, some or all of the replacements made.")
 @click.option("--at-most", type=int, metavar="N", help="With --enumerate: replace no more than N atoms.")
 @click.option("--satellites", is_flag=True, help="Carbon-13 satellites of the carbonyls at natural abundance.")
+@click.option("--local", is_flag=True, help="With --satellites: in the local group of the carbonyls.")
+@click.option("--local-tolerance", type=float, default=0.3, show_default=True, metavar="Å",
+              help="Tolerance of the local group.")
 @options.modes_option
 @options.assignment_option
 @options.doublet_option
@@ -20,8 +23,8 @@ from vibsym.cli.assigned import check_group, one_structure
 @options.tolerance_option
 @options.axes_option
 @options.reading_options
-def command(structure, replace, every, at_most, satellites, modes, assignment, doublets, form, output, tolerance, axes,
-            **reading):
+def command(structure, replace, every, at_most, satellites, local, local_tolerance, modes, assignment, doublets, form,
+            output, tolerance, axes, **reading):
     """Compare a STRUCTURE with its isotopologue: group, activity, and the product rule.
 
     With two --assignment files, first that of STRUCTURE, then that of the isotopologue, observed products stand
@@ -41,8 +44,10 @@ def command(structure, replace, every, at_most, satellites, modes, assignment, d
     if satellites:
         if replace or assignment or every:
             raise VibsymError("--satellites goes with --mode only; leave the other options out")
-        deliver([_satellites(molecule, modes, tolerance)], view, form, output)
+        deliver([_satellites(molecule, modes, local_tolerance if local else tolerance, local)], view, form, output)
         return
+    if local:
+        raise VibsymError("--local belongs to --satellites")
     if not replace:
         raise VibsymError("nothing to replace; write --replace 1=D,2=D, --replace H=D, or --satellites")
     if every:
@@ -73,10 +78,13 @@ def _effect(molecule, replace, tolerance, axes, assignment, doublets):
     return isotope_effect(pair, *(lines or ((), ())), [parse_doublet(text) for text in doublets])
 
 
-def _satellites(molecule, modes, tolerance):
+def _satellites(molecule, modes, tolerance, local):
     from vibsym.spectra.modes import parse_modes
-    from vibsym.spectra.satellites import satellites
-    from vibsym.structures.finder import find_symmetry
+    from vibsym.spectra.satellites import local_satellites, satellites
 
-    group = find_symmetry(molecule, tolerance).group
-    return satellites(molecule, {mode.species: mode.wavenumber for mode in parse_modes(modes, group)}, tolerance)
+    make = local_satellites if local else satellites
+    found = make(molecule, None, tolerance)
+    if not modes:
+        return found
+    group = found.molecules[0].symmetry.group
+    return make(molecule, {mode.species: mode.wavenumber for mode in parse_modes(modes, group)}, tolerance)

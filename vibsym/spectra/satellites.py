@@ -8,7 +8,7 @@ again with carbon-13.
 """
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -19,9 +19,11 @@ from vibsym.structures.bonds import find_bonds
 from vibsym.structures.elements import isotopes
 from vibsym.structures.finder import DEFAULT_TOLERANCE, find_symmetry
 from vibsym.structures.isotopes import isotopologues
+from vibsym.structures.reduced import reduced_object
 from vibsym.structures.structure import Structure
 from vibsym.structures.symmetry import Symmetry
 
+LOCAL_TOLERANCE = 0.3              # Å, as for the local group of oscillators
 FORCE = 5.8917936e-5               # 4π²c² u in N/m for μ in u, ν in cm-1 (CODATA 2018)
 
 
@@ -61,14 +63,27 @@ class Satellites:
                 "satellites": [each.to_dict() for each in self.molecules]}
 
 
+def local_satellites(structure: Structure, observed: Mapping[str, float] | None = None,
+                     tolerance: float = LOCAL_TOLERANCE) -> Satellites:
+    """Return the satellites in the local group of the carbonyls: the metal, its donor atoms and the C-O groups alone.
+
+    The reduced object is that of vibsym/structures/reduced.py; atoms keep the numbers of the whole structure.
+    """
+    reduced = reduced_object(structure, carbonyls(structure), find_bonds(structure))
+    found = satellites(reduced.structure, observed, tolerance, reduced.pairs)
+    molecules = tuple(each if each.atom is None else replace(each, atom=reduced.origins[each.atom][0])
+                      for each in found.molecules)
+    return Satellites(structure, molecules)
+
+
 def satellites(structure: Structure, observed: Mapping[str, float] | None = None,
-               tolerance: float = DEFAULT_TOLERANCE) -> Satellites:
+               tolerance: float = DEFAULT_TOLERANCE, pairs: np.ndarray | None = None) -> Satellites:
     """Return the carbon-13 satellites of the carbonyls of a structure.
 
     `observed`: the C-O stretch of each species of the main molecule, cm-1; each must occur once, or a force field
     does not follow.  Without it no positions are given.
     """
-    pairs = carbonyls(structure)
+    pairs = carbonyls(structure) if pairs is None else _carbon_first(structure, pairs)
     force = None
     main = find_symmetry(structure, tolerance)
     if observed:
@@ -98,6 +113,10 @@ def carbonyls(structure: Structure) -> np.ndarray:
         raise VibsymError(f"{structure.source or structure.formula}: no terminal carbonyl group C-O; "
                           "check the bonds with --bond and --no-bond")
     return np.array(found)
+
+
+def _carbon_first(structure: Structure, pairs: np.ndarray) -> np.ndarray:
+    return np.array([(i, j) if structure.symbols[i] == "C" else (j, i) for i, j in np.asarray(pairs).tolist()])
 
 
 def _stretches(symmetry: Symmetry, pairs: np.ndarray) -> Basis:
