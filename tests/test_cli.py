@@ -251,6 +251,9 @@ def test_a_terminal_without_greek_gets_it_spelled_out(encoding):
     page = done.stdout.decode(encoding)
     assert "Cinfv" in page and "Sigma+" in page
     assert "-6m2" in started("expect", "samples/cylinder-bf3.xyz", PYTHONIOENCODING=encoding).stdout.decode(encoding)
+    lines = started("table", "Dinfh", PYTHONIOENCODING=encoding).stdout.decode(encoding).splitlines()
+    assert max(map(len, lines)) <= 80                      # columns are measured in the letters that are printed
+    assert lines[2].index("infC2") + 4 == lines[4].rindex("1")
     done = started("expect", "samples/cylinder-n2o.xyz", "--format", "json", PYTHONIOENCODING=encoding)
     assert json.loads(done.stdout.decode(encoding))["point_group"]["symbol"] == "C∞v"
 

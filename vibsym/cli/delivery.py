@@ -35,7 +35,11 @@ def deliver(results: list, view, form: str, output: str | None = None, **options
     on_screen = form == "table" and sys.stdout.isatty()
     width = _screen_width() if on_screen else PLAIN_WIDTH
     colour = on_screen and "NO_COLOR" not in os.environ
-    click.echo(spelled(render(results, view, form, width, colour, **options), form), nl=False)
+    text = render(results, view, form, width, colour, **options)
+    plain = spelled(text, form)
+    if plain != text and form == "table":
+        plain = spelled(render(results, view, form, width, colour, spell=spelled, **options))
+    click.echo(plain, nl=False)
     sys.stdout.flush()
 
 

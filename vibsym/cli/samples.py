@@ -20,7 +20,8 @@ def command(directory):
 
     target = Path(directory)
     if target.exists():
-        raise VibsymError(f"{directory or '(empty name)'}: exists already and nothing is overwritten; name a new folder")
+        name = directory or "(empty name)"
+        raise VibsymError(f"{name}: exists already and nothing is overwritten; name a new folder")
     try:
         shutil.copytree(folder("samples"), target, ignore=shutil.ignore_patterns("__pycache__"))
     except OSError as error:

@@ -10,10 +10,13 @@ FORMATS = ("table", "json", "csv", "markdown", "latex")
 
 
 def render(results, view, form: str = "table", width: int = 80, colour: bool = False, triple: str = "T",
-           **options) -> str:
-    """Return results as text: a page, a JSON line or CSV rows each; `triple` is the letter of triply degenerate species.
+           spell=None, **options) -> str:
+    """Return results as text: a page, a JSON line or CSV rows each.
+
+    `triple` is the letter of triply degenerate species; `spell` turns the words of a page into letters that a poor
+    terminal has, before columns are measured.
     """
-    text = _set(results, view, form, width, colour, options)
+    text = _set(results, view, form, width, colour, spell, options)
     if triple == "T":
         return text
     from vibsym.report.triple import holds_tritium, with_letter
@@ -21,7 +24,7 @@ def render(results, view, form: str = "table", width: int = 80, colour: bool = F
     return text if any(map(holds_tritium, results)) else with_letter(text, triple)
 
 
-def _set(results, view, form, width, colour, options) -> str:
+def _set(results, view, form, width, colour, spell, options) -> str:
     if form == "json":
         from vibsym.report.json import set_json
 
@@ -42,6 +45,11 @@ def _set(results, view, form, width, colour, options) -> str:
         return "\n".join(set_latex(view.parts(result, **options)) for result in results)
     from vibsym.report.terminal import set_page
 
+    if spell is not None:
+        from vibsym.report.document import spelled
+
+        return "\n\n".join(set_page([spelled(part, spell) for part in view.parts(result, **options)], width, colour)
+                           for result in results)
     return "\n\n".join(set_page(view.parts(result, **options), width, colour) for result in results)
 
 

@@ -6,6 +6,16 @@ A view turns a result into a list of these parts; `terminal` and `markdown` set 
 from typing import NamedTuple
 
 
+def spelled(part, spell):
+    """Return a part with `spell` applied to every text in it, before columns are measured."""
+    if isinstance(part, str):
+        return spell(part)
+    if not isinstance(part, tuple):
+        return part
+    texts = [spelled(each, spell) for each in part]
+    return type(part)(*texts) if hasattr(part, "_fields") else tuple(texts)
+
+
 class Title(NamedTuple):
     """The head of a page: what it is about, and on the same line whatever belongs to it."""
 
