@@ -206,3 +206,32 @@ def test_no_bonds_and_one_atom():
     assert result.exit_code == 0 and "No bonds, so there are no internal coordinates" in result.output
     assert json.loads(run(SAMPLES / "cylinder-argon.xyz", "--format", "json").output)["sets"] == []
     assert run(SAMPLES / "cylinder-argon.xyz", "--format", "csv").exit_code == 0
+
+
+@pytest.mark.parametrize("group", ["C3", "C5", "C7h", "S4", "S8", "D3", "D5d", "D4d", "T", "Th", "O", "I"])
+def test_exact_in_every_kind_of_group(group):
+    """Stretches and linear bends of M-C-O along z, along a diagonal and in general: exact and orthonormal."""
+    directions = [(0.0, 0.0, 1.0), (1.0, 1.0, 1.0), (0.31, 0.78, 0.52)]
+    symbols, positions, bonds = ["U"], [np.zeros(3)], []
+    for shell, direction in enumerate(directions):
+        for point in cases.images(group, (2.5 + 1.6 * shell) * np.array(direction) / np.linalg.norm(direction)):
+            carbon = len(symbols)
+            symbols += ["C", "O"]
+            positions += [point, point * (1 + 1.15 / np.linalg.norm(point))]
+            bonds += [(0, carbon), (carbon, carbon + 1)]
+    symmetry = find_symmetry(Structure.from_atoms(symbols, np.array(positions)))
+    assert symmetry.group.order % len(cases.point_group(group).matrices) == 0
+    found = symmetry_coordinates(symmetry, ["stretch", "linear bend"], bonds=bonds)
+    values = {}
+    for each in found.sets:
+        rows = []
+        for combination in found.combinations:
+            if combination.set == each.name:
+                rows.append(np.zeros(len(each.ids)))
+                for term in combination.terms:
+                    rows[-1][each.ids.index(term.coordinate)] = term.value
+                    if term.exact not in values:
+                        values[term.exact] = float(sympy.N(term.exact, 20))
+                    assert abs(values[term.exact] - term.value) < 1e-12
+        rows = np.array(rows)
+        assert np.abs(rows @ rows.T - np.eye(len(each.ids))).max() < 1e-11
