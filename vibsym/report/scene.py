@@ -23,7 +23,7 @@ class Motion:
     """A displacement pattern: (N, 3) `vectors`, what it is called, and where its bands are."""
 
     key: str                   # "ν4", "Eu:1"
-    label: str                 # typeset: "ν₄  T₂"
+    label: str                 # typeset: "ν₄ T₂"
     species: str
     infrared: bool
     raman: bool
@@ -115,7 +115,7 @@ def mode_motions(symmetry: Symmetry, modes: Sequence) -> tuple[Motion, ...]:
         if mode.vector is None:
             continue
         shares = ", ".join(f"{100 * share:.0f} % {name}" for name, share in mode.shares[:3])
-        found.append(Motion(mode.name, f"{typeset(mode.name)}  {typeset(mode.species)}", mode.species, mode.infrared,
+        found.append(Motion(mode.name, f"{typeset(mode.name)} {typeset(mode.species)}", mode.species, mode.infrared,
                             mode.raman, mode.polarised, _scaled((mode.vector / roots).reshape(-1, 3)), mode.wavenumber,
                             shares))
     return tuple(found)

@@ -135,7 +135,7 @@ def _labels(scale: Scale, sticks: Sequence[Stick], base: float, sign: int, arm: 
     for each, x in zip(kept, places):
         own = scale.x(each.wavenumber)
         tip = base + sign * (arm * height_of(each.strength) + 5 if each.observed else 10)
-        words = f"{each.wavenumber:.0f}" + (f"  {typeset(each.mode)} {typeset(each.species)}" if each.mode else "")
+        words = f"{each.wavenumber:.0f}" + (f" {typeset(each.mode)} {typeset(each.species)}" if each.mode else "")
         text = (f'<text class="ink" font-size="11" transform="translate({x + 4:.1f} {y + sign * 4:.1f}) rotate(-90)" '
                 f'text-anchor="{"start" if sign < 0 else "end"}">{escape(words)}</text>')
         if prefix is not None and each.mode:
