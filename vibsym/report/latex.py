@@ -56,14 +56,14 @@ def latex(text: str) -> str:
         out += map(_plain, text[place:match.start()])
         base, scripts, letters, greek, name = match.groups()
         out.append(f"${_GREEK[greek]}_{{\\mathrm{{{name}}}}}$" if greek else
-                   f"${_base(base)}{_scripts(scripts, letters or '')}$")
+                   f"${_base(base or '')}{_scripts(scripts, letters or '')}$")
         place = match.end()
     out += map(_plain, text[place:])
     return re.sub(r"(?<!\\)\$\$", "", "".join(out))
 
 
-_SCRIPTED = ("([A-Za-z)" + "".join(_GREEK) + r"]|\d(?=[" + "".join(_UPPER) + "])|(?<=[A-Za-z])(?=["
-             + "".join(_UPPER) + "]))([" + "".join(_UPPER) + "".join(_LOWER) + "′″]+)"
+_SCRIPTED = ("([A-Za-z)" + "".join(_GREEK) + r"]|\d(?=[" + "".join(_UPPER) + "]))?(["
+             + "".join(_UPPER) + "".join(_LOWER) + "′″]+)"
              r"([ghuvd]+(?![A-Za-z]))?|([Γσ])(3N|vib|translation|rotation|[vhd])(?![A-Za-z])")
 
 
