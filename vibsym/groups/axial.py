@@ -225,7 +225,7 @@ def _has_s4(elements: _Elements) -> bool:
 
 
 def _two_sets(marks: np.ndarray, turn: int) -> bool:
-    return bool(len(np.unique(marks % 2)) == 2) and len(marks) % 2 == 0
+    return len(marks) % 2 == 0 and 0 < int((marks % 2).sum()) < len(marks)
 
 
 def _odd(m: int, marks: np.ndarray, elements: _Elements) -> bool:

@@ -7,11 +7,10 @@ quadratic functions and G the permutation of the five triads of mutually perpend
 Groups with a centre are products with Ci.  All components are adapted to the twofold axes along x, y and z.
 """
 
-from fractions import Fraction
-
 import numpy as np
 
 from vibsym.groups.axial import GroupPlan, SpeciesPlan
+from vibsym.groups.distinct import first_of_each
 from vibsym.tables import read_table
 
 PHI = (1 + 5**0.5) / 2
@@ -38,11 +37,17 @@ def _operation(kind: str, axis: str, turn: str) -> np.ndarray:
     """Rodrigues' formula; improper: the component along the axis changes its sign."""
     a = np.array([PHI if word == "phi" else float(word) for word in axis.split()])
     a /= np.linalg.norm(a)
-    angle = 2 * np.pi * float(Fraction(turn))
+    angle = 2 * np.pi * _number(turn)
     cross = np.array([[0, -a[2], a[1]], [a[2], 0, -a[0]], [-a[1], a[0], 0]])
     along = np.outer(a, a)
     sign = 1.0 if kind == "proper" else -1.0
     return np.cos(angle) * (np.eye(3) - along) + np.sin(angle) * cross + sign * along
+
+
+def _number(text: str) -> float:
+    """A number as the table writes it, `0` or `2/5`."""
+    above, _, below = text.partition("/")
+    return int(above) / int(below or 1)
 
 
 def _closure(generators: np.ndarray) -> np.ndarray:
@@ -51,12 +56,13 @@ def _closure(generators: np.ndarray) -> np.ndarray:
     while len(frontier):
         grown = np.einsum("aij,bjk->abik", generators, frontier).reshape(-1, 3, 3)
         products = _distinct(np.concatenate([elements, grown]))
-        known = np.isin(_keys(products), _keys(elements))
+        known = (_keys(products)[:, None] == _keys(elements)).any(axis=1)
         elements, frontier = products, products[~known]
     return elements
 
 
-_EXACT = np.unique([sign * value for value in (0, 0.5, 1, PHI / 2, (PHI - 1) / 2) for sign in (-1, 1)])
+_EXACT = np.array([0.0] + [sign * value for value in (0.5, 1, PHI / 2, (PHI - 1) / 2) for sign in (-1, 1)])
+_EXACT.sort()
 _BETWEEN = (_EXACT[1:] + _EXACT[:-1]) / 2
 _POWERS = len(_EXACT) ** np.arange(9)
 
@@ -68,8 +74,7 @@ def _keys(matrices: np.ndarray) -> np.ndarray:
 
 def _distinct(matrices: np.ndarray) -> np.ndarray:
     """Entries of these groups are 0, ±1, ±1/2, ±φ/2, ±1/(2φ): snap to them, then keep one of each matrix."""
-    _, first = np.unique(_keys(matrices), return_index=True)
-    return _EXACT[np.searchsorted(_BETWEEN, matrices[first])]
+    return _EXACT[np.searchsorted(_BETWEEN, matrices[first_of_each(_keys(matrices))])]
 
 
 def _classes(elements: np.ndarray, representatives: np.ndarray) -> list[np.ndarray]:
@@ -78,7 +83,7 @@ def _classes(elements: np.ndarray, representatives: np.ndarray) -> list[np.ndarr
     members = []
     for representative in representatives:
         conjugates = _keys(np.einsum("aij,jk,alk->ail", elements, representative, elements))
-        member = np.flatnonzero(np.isin(keys, conjugates))
+        member = np.flatnonzero((keys[:, None] == conjugates).any(axis=1))
         first = np.flatnonzero(keys == _keys(representative[None]))
         members.append(np.concatenate([first, member[member != first[0]]]))
     return members

@@ -11,6 +11,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from vibsym.groups.distinct import first_of_each
 from vibsym.structures.matching import assign, bijective, nearest, residuals
 from vibsym.structures.placement import correlation, fitted_maps
 
@@ -176,7 +177,7 @@ def _fitted(points, kinds, maps, targets, pair, tolerance, clear):
     keep = np.flatnonzero(left <= 2 * tolerance * SLACK + 1e-9)
     keep = keep[np.argsort(left[keep], kind="stable")]
     codes = codes_of(targets[keep], signs[keep], pair)
-    _, first = np.unique(codes, return_index=True)
+    first = first_of_each(codes)
     keep = keep[np.sort(first)]
     return Operations(targets[keep], signs[keep], matrices[keep], left[keep], pair)
 

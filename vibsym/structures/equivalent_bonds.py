@@ -22,9 +22,10 @@ def symmetric_bonds(symmetry: Symmetry) -> np.ndarray:
     atoms = len(structure)
     codes = _codes(np.sort(bonds, axis=1), atoms)
     images = _codes(np.sort(symmetry.permutations[:, bonds], axis=2), atoms)
-    broken = np.unique(images[:, ~np.isin(images, codes).all(axis=0)])
-    if not len(broken):
+    whole = np.isin(images, codes).all(axis=0)
+    if whole.all():
         return bonds
+    broken = np.unique(images[:, ~whole])
     near = _codes(find_bonds(replace(structure, bonds=None)), atoms)
     kept = np.union1d(np.setdiff1d(codes, broken), np.setdiff1d(broken, near))
     return np.stack((kept // atoms, kept % atoms), axis=1)

@@ -12,6 +12,7 @@ from itertools import pairwise
 import numpy as np
 
 from vibsym.errors import VibsymError
+from vibsym.groups.distinct import first_of_each
 from vibsym.groups.identify import schoenflies
 from vibsym.groups.pointgroup import point_group
 from vibsym.structures.candidates import Operations, codes_of, find_operations
@@ -136,8 +137,7 @@ def _with_found(operations: Operations, found: Placement):
     """Return the operations with those of the group found among them, and the places of the latter."""
     permutations = np.concatenate((found.permutations, operations.permutations))
     signs = np.concatenate((found.signs, operations.signs))
-    _, first = np.unique(codes_of(permutations, signs, operations.pair), return_index=True)
-    first = np.sort(first)
+    first = np.sort(first_of_each(codes_of(permutations, signs, operations.pair)))
     matrices = np.concatenate((found.matrices, operations.matrices))[first]
     left = np.concatenate((np.zeros(found.order), operations.residuals))[first]
     # the operations found stand first and no two of them send the pair alike
