@@ -18,6 +18,8 @@ COMMANDS = {
     "coordinates": "vibsym.cli.coordinates",
     "isomers": "vibsym.cli.isomers",
     "screen": "vibsym.cli.screen",
+    "normal": "vibsym.cli.normal",
+    "assign": "vibsym.cli.assign",
     "peaks": "vibsym.cli.peaks",
     "report": "vibsym.cli.report",
     "combine": "vibsym.cli.combine",

@@ -30,7 +30,7 @@ from vibsym.structures.symmetry import Symmetry
 from vibsym.vibrations.estimates import Estimates, describe, estimate
 from vibsym.vibrations.normal_modes import Mode
 
-FIRM = 6.0                 # extra cost from which a line is firm
+FIRM = 5.0                 # extra cost from which a line is firm
 TOLD = 30.0                # alternatives dearer than this are not told
 
 

@@ -1,6 +1,6 @@
 """Fit the factors of the force field to observed wavenumbers: regularised nonlinear least squares.
 
-    minimise  Σ w ρ(ln(calculated/observed)/0.04)  +  Σ ((p - p0)/σ)² ,      ρ(z) = 2 (√(1 + z²) - 1)
+    minimise  Σ w ρ(ln(calculated/observed)/0.025)  +  Σ ((p - p0)/σ)² ,      ρ(z) = 2 (√(1 + z²) - 1)
 
 over p = ln(factor), or p = share of an interaction.  p0, σ are prior value and spread (ridge): what the data cannot tell stays at
 its prior.  The species are compared one by one, both lists sorted.  H = Σ_t c_t K_t is linear in the constants c_t, and
@@ -16,7 +16,7 @@ import numpy as np
 
 from vibsym.vibrations.units import WAVENUMBER
 
-SCALE = 0.04              # of ln(calculated/observed): where an error begins to count as an outlier
+SCALE = 0.025             # of ln(calculated/observed): where an error begins to count as an outlier
 SOFT = 300.0              # cm-1; modes below weigh less, in proportion
 LONGEST_STEP = 0.6
 FLOOR = 1e-4              # N/m/u; keeps the logarithm of a vanishing eigenvalue finite

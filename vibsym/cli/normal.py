@@ -1,0 +1,62 @@
+"""`vibsym normal`: harmonic wavenumbers and normal modes, from a force field or a Hessian computed elsewhere."""
+
+import click
+
+from vibsym.cli import options
+from vibsym.cli.reading import finish
+
+
+@click.command("normal")
+@options.structure_argument
+@click.option("--force-constants", "constants", metavar="FILE",
+              help="TOML file of force constants that replace or add to the tabulated ones; units stated in it.")
+@click.option("--hessian", metavar="FILE", help="Cartesian Hessian computed elsewhere, 3N × 3N, as text or .npy.")
+@click.option("--hessian-unit", "unit", default="hartree/bohr2", show_default=True, metavar="UNIT",
+              help="hartree/bohr2, N/m, mdyn/A, eV/A2, kcal/mol/A2 or kJ/mol/A2.")
+@click.option("--mass-weighted", is_flag=True, help="The Hessian is already divided by √(mi mj), masses in u.")
+@click.option("--refine", multiple=True, metavar="ASSIGNMENT",
+              help="Adjust the constants to an assignment CSV; of an isotopologue too, whose head names its structure file.")
+@options.output_options
+@options.tolerance_option
+@options.as_option
+@options.axes_option
+@options.reading_options
+def command(structure, constants, hessian, unit, mass_weighted, refine, form, output, tolerance, as_group, axes, **reading):
+    """Tell the normal modes of STRUCTURE: species, wavenumber, energy distribution, activity.
+
+    Without further options the constants are those of the tabulated valence force field.
+
+    \b
+    Examples:
+      vibsym normal try-it/cylinder-gas-bf3.xyz
+      vibsym normal try-it/cylinder-gas-bf3.xyz --format json
+    """
+    from vibsym.cli.assigned import symmetry_of_file
+    from vibsym.report import normal as view
+    from vibsym.vibrations.analysis import analyse, with_refinement
+
+    symmetry = symmetry_of_file(structure, tolerance, as_group, axes, reading)
+    result = analyse(symmetry, constants=constants, hessian=hessian, unit=unit, mass_weighted=mass_weighted)
+    if refine:
+        molecules = _molecules(structure, symmetry, refine, tolerance, as_group, axes, reading)
+        result = with_refinement(result, molecules)
+    finish([result], 0, view, form, output)
+
+
+def _molecules(path, symmetry, assignments, tolerance, as_group, axes, reading):
+    """Return (symmetry, assigned modes) of every assignment; its head may name the file of an isotopologue."""
+    from pathlib import Path
+
+    from vibsym.cli.assigned import check_group, symmetry_of_file
+    from vibsym.evidence.assignment_file import read_assignment
+
+    found = []
+    for name in assignments:
+        file = read_assignment(name)
+        other = Path(name).parent / file.structure if file.structure else None
+        own = symmetry
+        if other is not None and other.is_file() and Path(path).exists() and not other.samefile(path):
+            own = symmetry_of_file(str(other), tolerance, as_group, axes, reading)
+        check_group(file, own.group)
+        found.append((own, file.modes(own.group)))
+    return found
