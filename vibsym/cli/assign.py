@@ -3,6 +3,7 @@
 import click
 
 from vibsym.cli import options
+from vibsym.cli.pictures import picture_options, save_picture, strip_option
 from vibsym.cli.reading import finish
 
 
@@ -18,19 +19,21 @@ from vibsym.cli.reading import finish
 @click.option("--pin", "pins", multiple=True, metavar="ν4=1306",
               help="Fix a line at a fundamental or a species (T2=1306); the rest adapts. Repeatable.")
 @click.option("--force-constants", "constants", metavar="FILE", help="TOML file of force constants for the estimates.")
+@strip_option
+@picture_options("sticks")
 @options.light_option
 @options.output_options
 @options.tolerance_option
 @options.as_option
 @options.axes_option
 @options.reading_options
-def command(structure, bands, infrared, raman, between, window, pins, constants, light, form, output, tolerance, as_group,
-            axes, **reading):
+def command(structure, bands, infrared, raman, between, window, pins, constants, strip, picture, show, light, form,
+            output, tolerance, as_group, axes, **reading):
     """Tell which observed line is which fundamental of STRUCTURE, and how firm each is.
 
     \b
     Example:
-      vibsym assign try-it/tube-clf3-t-shape.xyz --bands try-it/tube-clf3-bands.csv
+      vibsym assign try-it/tube-clf3-t.xyz --bands try-it/tube-clf3-bands.csv
     """
     from vibsym.cli.assigned import symmetry_of_file
     from vibsym.evidence.assignment import assign
@@ -40,5 +43,6 @@ def command(structure, bands, infrared, raman, between, window, pins, constants,
 
     observed = read_bands(bands, infrared, raman, between=between, light=light)
     symmetry = symmetry_of_file(structure, tolerance, as_group, axes, reading)
-    finish([assign(symmetry, observed, window=window, pins=pins, estimates=estimates_with(symmetry, constants))], 0, view, form,
-           output)
+    result = assign(symmetry, observed, window=window, pins=pins, estimates=estimates_with(symmetry, constants))
+    save_picture(picture, show, [symmetry], modes=result.estimates.modes, assignment=result)
+    finish([result], 0, view, form, output, strip=strip)

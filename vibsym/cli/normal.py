@@ -3,6 +3,7 @@
 import click
 
 from vibsym.cli import options
+from vibsym.cli.pictures import picture_options, save_picture
 from vibsym.cli.reading import finish
 
 
@@ -16,20 +17,22 @@ from vibsym.cli.reading import finish
 @click.option("--mass-weighted", is_flag=True, help="The Hessian is already divided by √(mi mj), masses in u.")
 @click.option("--refine", multiple=True, metavar="ASSIGNMENT",
               help="Adjust the constants to an assignment CSV; of an isotopologue too, whose head names its structure file.")
+@picture_options("ν1")
 @options.output_options
 @options.tolerance_option
 @options.as_option
 @options.axes_option
 @options.reading_options
-def command(structure, constants, hessian, unit, mass_weighted, refine, form, output, tolerance, as_group, axes, **reading):
+def command(structure, constants, hessian, unit, mass_weighted, refine, picture, show, form, output, tolerance,
+            as_group, axes, **reading):
     """Tell the normal modes of STRUCTURE: species, wavenumber, energy distribution, activity.
 
     Without further options the constants are those of the tabulated valence force field.
 
     \b
     Examples:
-      vibsym normal try-it/cylinder-gas-bf3.xyz
-      vibsym normal try-it/cylinder-gas-bf3.xyz --format json
+      vibsym normal try-it/cylinder-bf3.xyz
+      vibsym normal try-it/cylinder-bf3.xyz --format json
     """
     from vibsym.cli.assigned import symmetry_of_file
     from vibsym.report import normal as view
@@ -40,6 +43,7 @@ def command(structure, constants, hessian, unit, mass_weighted, refine, form, ou
     if refine:
         molecules = _molecules(structure, symmetry, refine, tolerance, as_group, axes, reading)
         result = with_refinement(result, molecules)
+    save_picture(picture, show, [symmetry], modes=result.modes)
     finish([result], 0, view, form, output)
 
 

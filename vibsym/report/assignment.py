@@ -9,7 +9,7 @@ from vibsym.report.document import Facts, Listing, Paragraph, Table, Title
 from vibsym.report.wording import NOTHING, about_structure, found_within, group_text
 
 
-def parts(result, **_) -> list:
+def parts(result, strip: bool = False, **_) -> list:
     """Return the page."""
     symmetry = result.symmetry
     firm = sum(row.firm for row in result.assigned)
@@ -21,6 +21,10 @@ def parts(result, **_) -> list:
     page.append(Table(head, tuple(_row(row) for row in result.assigned), right=frozenset({2, 3, 5}), flow=True))
     page.append(Paragraph(f"Firm: every other species costs at least {FIRM:g} more; else the nearest other species with its extra cost. "
                           f"Total cost {result.cost:.1f} (χ² units; vibsym/evidence/assignment_costs.py)."))
+    if strip:
+        from vibsym.report.strip import assignment_strip
+
+        page += assignment_strip(result)
     if result.leftover:
         page.append(Listing(tuple(f"{band.spectrum} {band} {', '.join(filter(None, {line.strength for line in band.lines}))}".strip()
                                   for band in result.leftover), "Lines left over"))

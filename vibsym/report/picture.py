@@ -13,20 +13,19 @@ from vibsym.report.sticks import sticks_svg
 SIZE = (560.0, 440.0)
 
 
-def picture(show: str, symmetry, *, modes=None, coordinates=None, sticks=None) -> str:
+def picture(show: str, symmetry, *, modes=None, coordinates=None, assignment=None) -> str:
     """Return an SVG of what `show` names.
 
-    `modes` (normal modes), `coordinates` (SymmetryCoordinates) and `sticks` are used where given.
+    `modes` (normal modes), `coordinates` (SymmetryCoordinates) and `assignment` are used where given.
     """
     scene = scene_of(symmetry)
     formula = typeset(symmetry.structure.formula)
     if show == "structure":
         return structure_svg(scene, None, True, *SIZE, title=f"{formula}, structure", alone=True) + "\n"
     if show == "sticks":
-        if sticks is None:
-            from vibsym.report.html.stick_plot import estimate_sticks
+        from vibsym.report.html.stick_plot import assignment_sticks, estimate_sticks
 
-            sticks = estimate_sticks(_modes(symmetry, modes))
+        sticks = assignment_sticks(assignment) if assignment else estimate_sticks(_modes(symmetry, modes))
         if not sticks:
             raise VibsymError(f"--show sticks: {symmetry.structure.formula} has no bands to draw")
         return sticks_svg(sticks, 760, f"{formula}, bands", alone=True) + "\n"
