@@ -137,3 +137,12 @@ def test_conjugates_that_print_tells():
     assert found["D4h (C4, C2)"] == 3 and found["D3d (S6, C2')"] == 4
     found = {each.group.symbol: each.conjugates for each in all_embeddings(point_group("Td"))}
     assert found["C3v"] == 4 and found["D2d"] == 3
+
+
+@pytest.mark.parametrize(("symbol", "count"), [("C60v", 32), ("C120v", 44), ("D7", 4)])
+def test_subgroups_of_dihedral_groups_by_number_theory(symbol, count):
+    """Cnv and Dn: one cyclic class for each divisor d of n, and of the dihedral ones two where n/d is even, else one."""
+    order = point_group(symbol).order // 2
+    divisors = [d for d in range(1, order + 1) if order % d == 0]
+    assert count == len(divisors) + sum(1 if order // d % 2 else 2 for d in divisors)
+    assert len(subgroup_classes(point_group(symbol))) == count

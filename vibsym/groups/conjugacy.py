@@ -52,7 +52,7 @@ def _classes(symbol: str) -> tuple[SubgroupClass, ...]:
                 grown = _closure(product, mask, generator)
                 if grown.tobytes() in known:
                     continue
-                conjugates = np.unique(grown[conjugation], axis=0)
+                conjugates = _conjugates(conjugation, grown)
                 known.update(row.tobytes() for row in conjugates)
                 chosen = _plainest(group, conjugates)
                 found.append(SubgroupClass(tuple(np.flatnonzero(chosen).tolist()), len(conjugates)))
@@ -68,13 +68,28 @@ def _conjugation(group: PointGroup) -> np.ndarray:
     return group.product[left, h[:, None]]
 
 
+def _conjugates(conjugation: np.ndarray, mask: np.ndarray) -> np.ndarray:
+    """Rows (n, h): the different masks that conjugation makes of one, sorted; packed to bits, as sorting them is slow."""
+    packed = {row.tobytes() for row in np.packbits(mask[conjugation], axis=1)}
+    bits = np.frombuffer(b"".join(sorted(packed)), dtype=np.uint8).reshape(len(packed), -1)
+    return np.unpackbits(bits, axis=1, count=len(mask)).astype(bool)
+
+
 def _closure(product: np.ndarray, mask: np.ndarray, generator: int) -> np.ndarray:
+    """The subgroup that a subgroup H and one more operation make: right cosets H x, until x s lies inside for each s."""
+    inside = np.flatnonzero(mask)
+    steps = np.append(inside, generator)
     mask = mask.copy()
-    mask[generator] = True
-    count = 0
-    while count != (count := int(mask.sum())):
-        inside = np.flatnonzero(mask)
-        mask[product[np.ix_(inside, inside)]] = True
+    waiting = [generator]
+    while waiting:
+        x = waiting.pop()
+        if mask[x]:
+            continue
+        mask[product[inside, x]] = True
+        if 2 * np.count_nonzero(mask) > len(mask):         # more than half of a group is all of it
+            return np.ones_like(mask)
+        reached = product[x, steps]
+        waiting += reached[~mask[reached]].tolist()
     return mask
 
 
