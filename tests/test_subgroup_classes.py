@@ -141,7 +141,7 @@ def test_conjugates_that_print_tells():
 
 @pytest.mark.parametrize(("symbol", "count"), [("C60v", 32), ("C120v", 44), ("D7", 4)])
 def test_subgroups_of_dihedral_groups_by_number_theory(symbol, count):
-    """Cnv and Dn: one cyclic class for each divisor d of n, and of the dihedral ones two where n/d is even, else one."""
+    """Cnv and Dn: a cyclic class for each divisor d of n, and dihedral ones: two where n/d is even, else one."""
     order = point_group(symbol).order // 2
     divisors = [d for d in range(1, order + 1) if order % d == 0]
     assert count == len(divisors) + sum(1 if order // d % 2 else 2 for d in divisors)

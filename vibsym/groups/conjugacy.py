@@ -69,14 +69,14 @@ def _conjugation(group: PointGroup) -> np.ndarray:
 
 
 def _conjugates(conjugation: np.ndarray, mask: np.ndarray) -> np.ndarray:
-    """Rows (n, h): the different masks that conjugation makes of one, sorted; packed to bits, as sorting them is slow."""
+    """Rows (n, h): the different masks that conjugation makes of one, sorted (as packed bits, which sort fast)."""
     packed = {row.tobytes() for row in np.packbits(mask[conjugation], axis=1)}
     bits = np.frombuffer(b"".join(sorted(packed)), dtype=np.uint8).reshape(len(packed), -1)
     return np.unpackbits(bits, axis=1, count=len(mask)).astype(bool)
 
 
 def _closure(product: np.ndarray, mask: np.ndarray, generator: int) -> np.ndarray:
-    """The subgroup that a subgroup H and one more operation make: right cosets H x, until x s lies inside for each s."""
+    """The subgroup that H and one more operation make: right cosets H x, until x s lies inside for each step s."""
     inside = np.flatnonzero(mask)
     steps = np.append(inside, generator)
     mask = mask.copy()
