@@ -129,3 +129,12 @@ def test_all_molecules_of_the_g2_set(name):
     check_expectation(result)
     page = render([result], expectation)
     assert max(map(len, page.splitlines())) <= 80 + page.count("\u0305")
+
+
+def test_a_ring_of_straight_angles_at_the_limit():
+    """The angles of a regular ring of 24 are 165 degrees, where chains begin to count as straight: all or none."""
+    angles = np.radians(15 * np.arange(24))
+    ring = 1.4 / (2 * np.sin(np.radians(7.5))) * np.column_stack((np.cos(angles), np.sin(angles), 0 * angles))
+    result = expect(posed(["C"] * 24, ring, np.random.default_rng(1))[0])
+    assert result.symmetry.group.symbol == "D24h"
+    check_expectation(result)

@@ -179,4 +179,4 @@ def _next_rung(result: Expectation) -> list:
 
 
 def _reached(rung) -> str:
-    return f"{typeset(rung.symmetry.group.symbol)} within {within(rung.deviation)} Å"
+    return f"{typeset(rung.symbol)} within {within(rung.deviation)} Å"

@@ -57,7 +57,7 @@ def _local_parts(local: LocalSymmetry) -> list:
     if points:
         kept += "; as one point: " + ", ".join(points)
     left = len(labels) - len(reduced.atoms)
-    rungs = ", ".join(f"{typeset(rung.symmetry.group.symbol)} within {within(rung.deviation)} Å"
+    rungs = ", ".join(f"{typeset(rung.symbol)} within {within(rung.deviation)} Å"
                       for rung in local.ladder.rungs)
     facts = (("group", f"{group_text(symmetry.group.symbol)}, deviation {within(symmetry.deviation)} Å, "
                        f"tolerance {symmetry.tolerance:g} Å"),

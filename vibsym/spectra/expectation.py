@@ -95,7 +95,8 @@ class Expectation:
         """The group within the tolerance and the higher ones that the structure approaches (`Ladder`)."""
         from vibsym.structures.ladder import ladder
 
-        return ladder(self.structure, (self.found or self.symmetry).tolerance)
+        found = self.found or self.symmetry
+        return ladder(self.structure, found.tolerance, known=found)
 
     @cached_property
     def notes(self) -> tuple[str, ...]:
@@ -119,7 +120,7 @@ class Expectation:
 
     def _next_rung(self) -> dict | None:
         rung = self.ladder.next if self.found is None else None
-        return rung and {"symbol": rung.symmetry.group.symbol, "deviation": rung.deviation}
+        return rung and {"symbol": rung.symbol, "deviation": rung.deviation}
 
 
 def expect(source, tolerance: float = DEFAULT_TOLERANCE, *, as_group: str | None = None, axes: str | None = None,

@@ -117,7 +117,8 @@ def _by_radii(structure: Structure) -> np.ndarray:
         pairs = pairs_within(positions, 2 * JOINING_FACTOR * max(0.0, *radii.values()))
     first, second = pairs.T
     separation = positions[first] - positions[second]
-    ratio = np.sqrt((separation * separation).sum(axis=1)) / (r[first] + r[second])
+    # rounding must not make one of two equivalent contacts a bond and the other none
+    ratio = (np.sqrt((separation * separation).sum(axis=1)) / (r[first] + r[second])).round(9)
     bonded = (ratio <= FACTOR) & np.isfinite(r[first] + r[second])      # a dummy atom has no radius
     apart = (ratio > FACTOR) & (ratio <= JOINING_FACTOR)
     return _joined(len(r), pairs, ratio, bonded, apart) if apart.any() else pairs[bonded]

@@ -163,7 +163,7 @@ def symmetry_of(centred: Centred, found, tolerance: float, axes: str | None = No
     local = averaged @ frame.T
     centre_of_mass = mass_centre(local, structure.masses, group.image.matrices if len(structure) > 1 else None)
     return Symmetry(structure, group, tolerance, float(shifts.max()), centred.centroid + centre_of_mass @ frame, frame,
-                    local - centre_of_mass, permutations, shifts, axes, decided)
+                    local - centre_of_mass, permutations, shifts, axes, decided, found)
 
 
 def mass_centre(positions, masses, matrices):

@@ -6,7 +6,9 @@ one below it, a larger deviation, and holds it. The suggested rung is the one be
 deviations, a deviation below 0.005 Å counting as 0.005 (conventions.md, "Tolerances").
 """
 
+from collections.abc import Callable
 from dataclasses import dataclass, replace
+from functools import cached_property, partial
 from itertools import pairwise
 
 import numpy as np
@@ -38,16 +40,21 @@ HIGHEST = ("Oh", "Ih")         # no finite point group holds these
 MOST_ATOMS = 300               # larger structures are searched up to a smaller distance
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Rung:
-    """A group the structure has or approaches; `spoilers` are the atoms (from 1) that keep it from the next rung."""
+    """A group the structure has or approaches; `spoilers` are the atoms (from 1) that keep it from the next rung.
 
-    symmetry: Symmetry
+    Symbol and deviation (Å) are known at once; the symmetry, with its axes, is worked out when asked for.
+    """
+
+    symbol: str
+    deviation: float
     spoilers: tuple[int, ...]
+    work_out: Callable[[], Symmetry]
 
-    @property
-    def deviation(self) -> float:
-        return self.symmetry.deviation
+    @cached_property
+    def symmetry(self) -> Symmetry:
+        return self.work_out()
 
 
 @dataclass(frozen=True)
@@ -63,18 +70,26 @@ class Ladder:
         return self.rungs[1] if len(self.rungs) > 1 else None
 
 
-def ladder(structure, tolerance: float = DEFAULT_TOLERANCE, axes: str | None = None, bonds=None) -> Ladder:
-    """Return the ladder of a structure; `axes` and `bonds` choose the axes of the group found as in `find_symmetry`."""
+def ladder(structure, tolerance: float = DEFAULT_TOLERANCE, axes: str | None = None, bonds=None,
+           known: Symmetry | None = None) -> Ladder:
+    """Return the ladder of a structure; `axes` and `bonds` choose the axes of the group found as in `find_symmetry`.
+
+    `known`: the symmetry already found at this tolerance, which spares the search for it.
+    """
     centred = centre(structure_of(structure))
     tolerance = legal_tolerance(tolerance, centred)
-    found, higher = _climb(centred, tolerance)
-    rungs = _nested(found, higher)
-    symmetries = [symmetry_of(centred, rungs[0], tolerance, axes, bonds)]
-    for placement in rungs[1:]:
+    rungs = _nested(*_climb(centred, tolerance, known and known.placement))
+    deviations = [float(placement.deviation) for placement in rungs]
+    spoilers = [_spoilers(above.shifts, tolerance) for above in rungs[1:]] + [()]
+
+    def worked_out(placement) -> Symmetry:
+        if placement is rungs[0]:
+            return symmetry_of(centred, placement, tolerance, axes, bonds)
         symmetry = symmetry_of(centred, placement, tolerance, None, bonds)
-        symmetries.append(replace(symmetry, tolerance=_tolerance_of(symmetry.deviation, tolerance, centred.most)))
-    spoilers = [_spoilers(above.shifts, tolerance) for above in symmetries[1:]] + [()]
-    return Ladder(tuple(map(Rung, symmetries, spoilers)), _suggested([s.deviation for s in symmetries]))
+        return replace(symmetry, tolerance=_tolerance_of(symmetry.deviation, tolerance, centred.most))
+
+    return Ladder(tuple(Rung(symbol_of(placement), deviation, atoms, partial(worked_out, placement))
+                        for placement, deviation, atoms in zip(rungs, deviations, spoilers)), _suggested(deviations))
 
 
 def as_group(structure, symbol: str, tolerance: float = DEFAULT_TOLERANCE, axes: str | None = None,
@@ -115,18 +130,18 @@ def largest_tolerance(centred: Centred) -> float:
     return centred.most if atoms <= MOST_ATOMS else centred.most * (MOST_ATOMS / atoms) ** (2 / 3)
 
 
-def _climb(centred: Centred, tolerance: float):
+def _climb(centred: Centred, tolerance: float, known=None):
     """Return the placement found at the tolerance, and those of all higher groups up to the largest tolerance that
     hold it.
     """
-    found = line_within(centred, tolerance)
+    found = known if isinstance(known, LinearPlacement) else None if known else line_within(centred, tolerance)
     limit = max(tolerance, largest_tolerance(centred))
     if len(centred.points) == 1:
         return found, []
     lines = [line for line in linear_placements(centred.points, centred.kinds) if line.deviation <= limit]
     if found is not None:
         return found, [line for line in lines if line.deviation > tolerance]
-    found = largest_group(centred, tolerance)
+    found = known or largest_group(centred, tolerance)
     if symbol_of(found) in HIGHEST:
         return found, lines
     operations, start = _with_found(find_operations(centred.points, centred.kinds, limit, centred.shortest), found)

@@ -41,6 +41,7 @@ class Symmetry:
     shifts: np.ndarray              # (N,) Å, from each atom to its averaged place
     axes: str | None = None         # the setting asked for; None: the one the rules choose
     decided: bool = True            # False: no rule tells the settings apart
+    placement: object = None        # what the finder placed; the ladder climbs from it
 
     @cached_property
     def symmetrised(self) -> Structure:

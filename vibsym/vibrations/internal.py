@@ -28,8 +28,9 @@ from vibsym.structures.structure import Structure
 from vibsym.structures.symmetry import Symmetry
 from vibsym.vibrations.naming import KINDS, bend_name, bond_name, same_set, wag_name
 
-STRAIGHT = np.cos(np.radians(175.0))      # cosine; a smaller one is a straight angle
-NEARLY_STRAIGHT = np.cos(np.radians(165.0))     # ... of a chain: M-C-O, C-C-N as crystals and force fields have them
+ROUNDING = 1e-9                # exactly 165 degrees (a regular ring of 24) must not be straight here and bent there
+STRAIGHT = np.cos(np.radians(175.0)) - ROUNDING      # cosine; a smaller one is a straight angle
+NEARLY_STRAIGHT = np.cos(np.radians(165.0)) - ROUNDING     # ... of a chain: M-C-O, C-C-N as crystals have them
 PLANAR = 0.15                             # smallest singular value of the unit bond vectors (5 degrees for three)
 LETTERS = dict(zip(KINDS, "rlawt", strict=True))
 
