@@ -189,6 +189,15 @@ def test_dummy_atoms_have_a_page_and_the_reason_for_what_lacks():
     assert "Normal modes left out" in reader.text("s0-conventions")
 
 
+def test_the_letter_of_triply_degenerate_species(tmp_path):
+    target = tmp_path / "page.html"
+    done = CliRunner().invoke(cli, ["report", str(SAMPLES / "soot-c60.xyz"), "--triple", "F", "--output", str(target)])
+    reader = Reader(target.read_text(encoding="utf-8"))
+    assert done.exit_code == 0 and "F₁u" in reader.text("s0-expect") and "T₁u" not in reader.text("s0-motions")
+    moved = {attributes["data-motion"] for _, attributes in reader.tags if "data-motion" in attributes}
+    assert moved <= set(json.loads("".join(reader.data[None][:1]))["motions"])
+
+
 def test_a_bad_structure_writes_nothing(tmp_path):
     target = tmp_path / "page.html"
     done = CliRunner().invoke(cli, ["report", str(tmp_path / "absent.xyz"), "--output", str(target)])

@@ -118,6 +118,11 @@ def test_a_decimal_comma_between_semicolons():
     assert places(text) == pytest.approx([2130, 2050, 2003, 1710], abs=0.3)
 
 
+def test_lines_before_the_numbers_are_passed_over():
+    text = "Instrument A\nOperator, none\n\nwavenumber absorbance\n" + two_columns(GRID, curve(GRID), "", "  ")
+    assert is_spectrum(text) and places(text) == pytest.approx([2130, 2050, 2003, 1710], abs=0.3)
+
+
 def test_points_without_a_value_are_left_out_and_told():
     y = curve(GRID)
     y[[3, 400]] = np.nan
@@ -134,7 +139,8 @@ def test_points_without_a_value_are_left_out_and_told():
      "line 32: '430 high'"),
     (two_columns(GRID, np.full(len(GRID), 4e4), "cm-1,transmittance"), "are no transmittance"),
     (two_columns(GRID * 20, curve(GRID), ""), "values end at 45980: give --unit"),
-], ids=["short", "word", "counts", "nm"])
+    (two_columns(GRID, curve(GRID), "").replace(".", ","), "commas both between the columns and in the numbers"),
+], ids=["short", "word", "counts", "nm", "commas"])
 def test_bad_text(text, reason):
     with pytest.raises(VibsymError, match=reason):
         parse_spectrum(text, "curve.csv", "IR")
@@ -253,6 +259,8 @@ def test_damage_is_found():
     lines[first] = lines[first] + "J"
     with pytest.raises(VibsymError, match=r"made.jdx, line \d+: the check value .* the file is damaged"):
         parse_spectrum("\n".join(lines), "made.jdx", "IR")
+    with pytest.raises(VibsymError, match="a table of peaks, not a curve"):
+        parse_spectrum("##TITLE=x\n##XUNITS=1/CM\n##PEAK TABLE=(XY..XY)\n2050,1\n##END=\n", "made.jdx", "IR")
     with pytest.raises(VibsymError, match="is no ordinate in AFFN, PAC, SQZ, DIF or DUP"):
         parse_spectrum(good.replace("##XYDATA=(X++(Y..Y))\n1600", "##XYDATA=(X++(Y..Y))\n1600 &&"), "made.jdx", "IR")
 

@@ -15,9 +15,11 @@ from vibsym.cli.reading import read_structures
 @options.as_option
 @options.axes_option
 @options.reading_options
+@click.option("--triple", type=click.Choice(("T", "F")), default="T", show_default=True,
+              help="Letter of triply degenerate species in what is written.")
 @click.option("--output", required=True, metavar="FILE", help="The HTML file to write.")
-def command(structures, bands, infrared, raman, between, window, allow, light, output, frame, bonds, no_bonds,
-            average_masses, **proposal):
+def command(structures, bands, infrared, raman, between, window, allow, light, triple, output, frame, bonds,
+            no_bonds, average_masses, **proposal):
     """Make one self-contained HTML page of each STRUCTURE and, if given, the observed bands.
 
     The structure turns with its elements of symmetry, modes move, and the bands stand against what they are assigned
@@ -41,5 +43,5 @@ def command(structures, bands, infrared, raman, between, window, allow, light, o
     observed = read_bands(bands, infrared, raman, between=between, light=light) if bands or infrared or raman else None
     read = [each for path in structures for each in read_structures(path, frame, bonds, no_bonds, average_masses)]
     told = "vibsym " + shlex.join(sys.argv[1:]) if sys.argv[1:2] == ["report"] else "vibsym report"
-    page = report_page(collect(read, observed, Proposal(**proposal), ScreenOptions(window, allow), told))
+    page = report_page(collect(read, observed, Proposal(**proposal), ScreenOptions(window, allow), told), triple)
     write_text_atomically(output, page)

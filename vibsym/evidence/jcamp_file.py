@@ -139,6 +139,9 @@ def _spectrum_of(block: dict, source: str):
     head, table, notes = block["head"], block["table"], []
     if table["form"] == _STEPPED:
         x, y = _stepped(head, table, source, notes)
+    elif table["name"].strip().upper() == "PEAK TABLE":
+        raise VibsymError(f"{source}, line {table['number']}: a table of peaks, not a curve; write its peaks as a "
+                          "band list (wavenumber,strength)")
     elif table["form"].startswith("(XY..XY)"):
         x, y = _pairs(head, table, source)
     else:

@@ -23,7 +23,7 @@ FEWEST = 20                   # points; less is a list, not a curve
 FEWEST_UNNAMED = 40           # points without a head line; a band list of numbers alone could be shorter
 HIGHEST, LOWEST_TOP = 15000.0, 50.0   # cm-1; a spectrum whose end lies outside is no spectrum in cm-1
 OPAQUE = 1e-4                 # transmittance; below, absorbance is noise (it is taken as 4)
-_BLANKS = re.compile(r"[\s;]+|,(?=\s)|(?<=[\d.])\s*,\s*(?=[-+.\dnN])")
+_LIST_COLUMNS = ("spectrum", "strength", "polarisation", "uncertainty", "together", "note")    # of a band list
 
 
 @dataclass(frozen=True, eq=False)
@@ -102,21 +102,21 @@ def is_spectrum(text: str) -> bool:
     if is_jcamp(text):
         return True
     head, rows = _rows(text, FEWEST_UNNAMED)
-    if head is not None:
-        words = " ".join(head).lower()
-        return _ordinate_named(words) is not None and len(head) >= 2
-    return len(rows) >= FEWEST_UNNAMED
+    if head is not None and len(head) >= 2 and _ordinate_named(" ".join(head)) is not None:
+        return True
+    listed = head is not None and any(cell.lower() in _LIST_COLUMNS for cell in head[1:])
+    return len(rows) >= FEWEST_UNNAMED and not listed
 
 
 def _rows(text: str, most: int | None = None) -> tuple[list[str] | None, list[tuple[int, list[str]]]]:
-    """Return the head line, if the first line is not numbers, and the rows with their line numbers."""
+    """Return the head line (the last one before the numbers begin) and the rows with their line numbers."""
     head, rows = None, []
     for number, line in enumerate(text.lstrip("\ufeff").splitlines(), 1):
         bare = line.strip()
         if not bare or bare.startswith(("#", "%", "//")):
             continue
         cells = _cells(bare)
-        if not rows and head is None and not _numeric(cells[0]):
+        if not rows and not _numeric(cells[0]):
             head = [cell.strip() for cell in re.split(r"[\t;,]" if re.search(r"[\t;,]", bare) else r"\s{1,}", bare)]
             continue
         rows.append((number, cells))
@@ -156,6 +156,9 @@ def _two_columns(text: str, source: str):
         raise VibsymError(f"{source}, line {number}: '{' '.join(cells)[:40]}' is not a wavenumber and an "
                           f"ordinate{more}; keep two columns of numbers")
     widths = {len(cells) for _, cells in rows}
+    if widths == {4} and not any("." in cell for _, cells in rows for cell in cells):
+        raise VibsymError(f"{source}, line {rows[0][0]}: commas both between the columns and in the numbers; write "
+                          "decimal points, or semicolons between the columns")
     notes = []
     if max(widths) > 2:
         notes.append(f"{source}: {max(widths)} columns; the first two were taken")

@@ -96,7 +96,7 @@ def _skeleton(scene: Scene, flat: np.ndarray, box: _Frame) -> list[str]:
         start, end = flat[i] + away / length * scene.radii[i] * 0.97, flat[j] - away / length * scene.radii[j] * 0.97
         (x, y), (u, v) = box.at(start), box.at(end)
         place = f'x1="{x:.1f}" y1="{y:.1f}" x2="{u:.1f}" y2="{v:.1f}"'
-        wide = max(1.2, 0.075 * box.scale)
+        wide = min(max(1.2, 0.075 * box.scale), 4.2)
         items.append(((flat[i, 2] + flat[j, 2]) / 2 - 0.05,
                       f'<line class="halo" stroke-width="{wide + 3:.1f}" {place}/>'
                       f'<line class="bond" stroke-width="{wide:.1f}" {place}/>'))
@@ -111,17 +111,17 @@ def _disc(label: str, place: tuple[float, float], radius: float) -> str:
     dash = ' stroke-dasharray="2 2"' if tint == "dummy" else ""
     text = ""
     if radius >= LETTERED:
-        size = min(1.15 * radius, 15) * (1.0 if len(label) < 3 else 0.75)
+        size = min(1.15 * radius, 18) * (1.0 if len(label) < 3 else 0.75)
         text = (f'<text class="ink" x="{x:.1f}" y="{y + 0.36 * size:.1f}" font-size="{size:.1f}" '
                 f'text-anchor="middle">{escape(label)}</text>')
     return (f'<circle class="{tint} rim" cx="{x:.1f}" cy="{y:.1f}" r="{radius:.1f}" '
-            f'stroke-width="{max(0.8, 0.07 * radius):.1f}"{dash}/>{text}')
+            f'stroke-width="{min(max(0.8, 0.07 * radius), 1.8):.1f}"{dash}/>{text}')
 
 
 def _arrows(scene: Scene, flat: np.ndarray, motion: Motion, box: _Frame) -> list[str]:
     """Return the displacements: one path of shafts with its halo, one of heads, one of rings."""
     moves = motion.vectors @ scene.view.T
-    wide = max(1.2, 0.045 * box.scale)
+    wide = min(max(1.2, 0.045 * box.scale), 3.4)
     shafts, heads, rings, dots = [], [], [], []
     for point, radius, move in zip(flat, scene.radii, moves):
         size = float(np.linalg.norm(move))

@@ -62,8 +62,8 @@ def sticks_svg(sticks: Sequence[Stick], width: float = 760, title: str = "", alo
     if not sticks:
         return ""
     arm, room = 92.0 if any(each.observed for each in sticks) else 22.0, 84.0
-    height = 2 * (arm + room) + 46
-    middle = height / 2
+    above, below = (arm + room if any(each.spectrum == name for each in sticks) else 24.0 for name in ("IR", "Raman"))
+    middle, height = above + 23, above + below + 46
     scale = Scale([each.wavenumber for each in sticks], 62, width - 12)
     body = _axis(scale, middle, width)
     for spectrum, sign in (("IR", -1), ("Raman", 1)):

@@ -179,7 +179,7 @@
     drawBond(flat, i, j, at, scale) {
       const { scene } = this, away = flat[j].map((v, a) => v - flat[i][a]), length = Math.hypot(...away) || 1;
       const a = at(flat[i].map((v, k) => v + away[k] / length * scene.radii[i] * 0.97)), b = at(flat[j].map((v, k) => v - away[k] / length * scene.radii[j] * 0.97));
-      const wide = Math.max(1.2, 0.075 * scale);
+      const wide = Math.min(Math.max(1.2, 0.075 * scale), 4.2);
       this.line(a, b, wide + 3, this.halo);
       this.line(a, b, wide, this.ink);
     }
@@ -188,11 +188,11 @@
       const { pen, scene } = this;
       pen.beginPath(); pen.arc(x, y, radius, 0, 2 * Math.PI);
       pen.fillStyle = this.tints[scene.tints[k]]; pen.fill();
-      pen.lineWidth = Math.max(0.8, 0.07 * radius); pen.strokeStyle = this.ink;
+      pen.lineWidth = Math.min(Math.max(0.8, 0.07 * radius), 1.8); pen.strokeStyle = this.ink;
       if (scene.tints[k] === "dummy") pen.setLineDash([2, 2]);
       pen.stroke(); pen.setLineDash([]);
       if (radius < 9) return;
-      const label = scene.labels[k], size = Math.min(1.15 * radius, 16) * (label.length < 3 ? 1 : 0.75);
+      const label = scene.labels[k], size = Math.min(1.15 * radius, 18) * (label.length < 3 ? 1 : 0.75);
       pen.fillStyle = "#1c2430"; pen.font = size + "px " + this.font; pen.textAlign = "center"; pen.textBaseline = "middle";
       pen.fillText(label, x, y + 0.04 * size);
     }
@@ -210,7 +210,7 @@
         pen.moveTo(x - d, y - d); pen.lineTo(x + d, y + d); pen.moveTo(x - d, y + d); pen.lineTo(x + d, y - d); pen.stroke();
         return;
       }
-      const u = [move[0] / across, -move[1] / across], wide = Math.max(1.4, 0.045 * scale), length = Math.max(5, across * reach * scale);
+      const u = [move[0] / across, -move[1] / across], wide = Math.min(Math.max(1.4, 0.045 * scale), 3.4), length = Math.max(5, across * reach * scale);
       const head = Math.min(3.6 * wide, 0.7 * length), start = [x + u[0] * radius * scale, y + u[1] * radius * scale];
       const foot = [start[0] + u[0] * (length - head), start[1] + u[1] * (length - head)];
       this.line(start, foot, wide + 2.4, this.halo);

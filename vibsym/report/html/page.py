@@ -12,6 +12,7 @@ from vibsym.groups.symbols import typeset
 from vibsym.report.collection import Report, Sheet
 from vibsym.report.html.sections import SECTIONS, motions_of, shared_sections
 from vibsym.report.html.structure_view import as_data, plate, skeleton_store
+from vibsym.report.triple import holds_tritium, with_letter
 
 # Nothing may be loaded from anywhere; style and script are those of the file itself.
 _POLICY = "default-src 'none'; style-src 'unsafe-inline'; script-src 'unsafe-inline'; img-src data:; base-uri 'none'"
@@ -20,8 +21,8 @@ _ICON = ("data:image/svg+xml,%3Csvg xmlns='http://www.w3.org/2000/svg' viewBox='
          "stroke='%231b5a86' stroke-width='2'/%3E%3C/svg%3E")
 
 
-def report_page(report: Report) -> str:
-    """Return the page."""
+def report_page(report: Report, triple: str = "T") -> str:
+    """Return the page; `triple` is the letter of triply degenerate species (the JSON inside keeps T)."""
     titles = [typeset(sheet.expectation.structure.formula) for sheet in report.sheets]
     names = ", ".join(dict.fromkeys(titles))
     body = []
@@ -37,8 +38,15 @@ def report_page(report: Report) -> str:
             f"<title>{escape(names)}: infrared and Raman "
             f"bands</title>\n<style>\n{_beside('page.css')}</style>\n</head>\n"
             '<body>\n<a class="skip" href="#text">To the text</a>\n<main id="text" class="sheet-of-paper">\n'
-            + "\n".join(body) + f"\n</main>\n{_results(report)}<script>\n{_beside('page.js')}</script>\n"
+            + _lettered("\n".join(body), report, triple)
+            + f"\n</main>\n{_results(report)}<script>\n{_beside('page.js')}</script>\n"
             "</body>\n</html>\n")
+
+
+def _lettered(text: str, report: Report, triple: str) -> str:
+    if triple == "T" or any(holds_tritium(sheet.expectation) for sheet in report.sheets):
+        return text
+    return with_letter(text, triple)
 
 
 def _beside(name: str) -> str:

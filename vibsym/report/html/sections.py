@@ -115,17 +115,9 @@ def _leftovers(report: Report, sheet: Sheet, prefix: str) -> str:
     if sheet.combined is None:
         lines = tuple(f"{band.spectrum} {band}" for band in sheet.assignment.leftover)
         return set_html([Listing(lines)])
-    rows = []
-    for each in sheet.combined.explanations:
-        if each.fundamental:
-            told = f"close to {typeset(each.fundamental)}"
-        else:
-            told = "; ".join(f"{typeset(one.combination.label).replace(' - ', ' − ')} at "
-                             f"{one.combination.wavenumber:.1f}"
-                             for one in each.candidates[:4]) or "no overtone, sum or difference of two quanta is near"
-        rows.append((f"{each.line.wavenumber:g}", each.line.spectrum, each.line.strength or NOTHING, told))
-    return set_html([Table(("cm-1", "spectrum", "strength", "candidates, the likeliest "
-                                                            "first"), tuple(rows), frozenset({0}))])
+    rows = tuple((f"{each.line.wavenumber:g}", each.line.spectrum, each.line.strength or NOTHING, _candidates(each))
+                 for each in sheet.combined.explanations)
+    return set_html([Table(("cm-1", "spectrum", "strength", "candidates, the likeliest first"), rows, frozenset({0}))])
 
 
 def _motion_cards(report: Report, sheet: Sheet, prefix: str) -> str:
@@ -181,6 +173,14 @@ def _divided(sheet: Sheet) -> tuple[list, list, list]:
     if first is None:
         return parts, [], []
     return parts[:first], parts[first:last], parts[last:]
+
+
+def _candidates(explanation) -> str:
+    if explanation.fundamental:
+        return f"close to {typeset(explanation.fundamental)}"
+    names = [f"{typeset(each.combination.label).replace(' - ', ' − ')} at {each.combination.wavenumber:.1f}"
+             for each in explanation.candidates[:4]]
+    return "; ".join(names) or "no overtone, sum or difference of two quanta of the assigned fundamentals is near"
 
 
 def _place(line: float | None) -> str:
