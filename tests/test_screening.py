@@ -8,7 +8,7 @@ import numpy as np
 import pytest
 
 from vibsym.errors import VibsymError
-from vibsym.evidence.bandlist import parse_bands
+from vibsym.evidence.bandlist import parse_bands, within
 from vibsym.evidence.proposals import Proposal, screen
 from vibsym.evidence.screening import ScreenOptions, screen_predictions
 from vibsym.groups.pointgroup import point_group
@@ -187,6 +187,27 @@ def test_whole_molecules_miss_nothing_in_a_list_of_one_region():
     full = parse_bands(HEAD + "940,IR,vs\n772,Raman,vs,p\n642,Raman,w\n400,Raman,w\n")
     assert [each.to_dict() for each in screen([octahedron()], full).candidates[0].unseen] == [
         {"species": "T1u", "infrared": True, "raman": False}]
+
+
+def test_a_band_outside_the_range_of_the_other_spectrum_is_not_missing_there():
+    """Infrared ends where Raman goes on: the low Raman lines say nothing against bands active in both."""
+    bent = Structure.from_atoms(["S", "Cl", "Cl"], [[0, 0, 0], [0, 1.55, 1.3], [0, -1.55, 1.3]], source="bent.xyz")
+    inside = parse_bands(HEAD + "525,IR,s\n300,IR,w\n200,IR,w\n514,Raman,s\n208,Raman,s\n")
+    outside = parse_bands(HEAD + "525,IR,s\n300,IR,w\n514,Raman,s\n208,Raman,s\n")
+    assert {str(band) for band in outside.one_sided} == {"525", "208"}      # 300 and 514 lie in both
+    answer = screen([bent], outside).candidates[0]
+    assert [each.to_dict() for each in answer.unseen] == [{"species": "A1", "infrared": True, "raman": False}]
+    assert len(screen([bent], inside).candidates[0].unseen) == 2
+    stated = within(outside, (150, 600))
+    assert stated.one_sided == frozenset() and stated.whole_range
+    assert len(screen([bent], stated).candidates[0].unseen) == 3
+    assert not within(outside, (450, 600)).whole_range
+
+
+def test_oscillators_of_one_region_are_missing_in_either_spectrum():
+    trans, cis = (isomers_of("CO=4", "Cl=2")[name] for name in ("trans", "cis"))
+    result = screened({"trans": trans, "cis": cis}, "1890,IR,vs\n2005,Raman,s\n1930,Raman,s\n")
+    assert [len(each.unseen) for each in result.candidates] == [0, 4]
 
 
 def test_json_is_the_contract():

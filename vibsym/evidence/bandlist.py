@@ -38,9 +38,27 @@ class BandList:
 
     @property
     def whole_range(self) -> bool:
-        """Whether the lines are those of a whole spectrum, not of one region: no range stated, at least an octave."""
-        places = [line.wavenumber for line in self.lines]
-        return self.between is None and max(places) >= OCTAVE * min(places)
+        """Whether a whole spectrum was observed, not one region: the stated range, else the lines, span an octave."""
+        low, high = self.between or self._span(self.lines)
+        return high >= OCTAVE * low
+
+    @property
+    def one_sided(self) -> frozenset[Band]:
+        """The bands that lie where the other spectrum was not observed: outside the stated range or its own lines."""
+        ranges = {name: self.between or self._span([line for line in self.lines if line.spectrum == name])
+                  for name in self.spectra}
+        found = []
+        for band in self.bands:
+            low, high = self._span(band.lines)
+            if any(high < start or low > end for name, (start, end) in ranges.items() if name != band.spectrum):
+                found.append(band)
+        return frozenset(found)
+
+    @staticmethod
+    def _span(lines) -> tuple[float, float]:
+        """Return the lowest and the highest wavenumber, (0, inf) where there are no lines."""
+        places = [line.wavenumber for line in lines]
+        return (min(places), max(places)) if places else (0.0, float("inf"))
 
     def of(self, spectrum: str) -> tuple[Band, ...]:
         """Return the bands of one spectrum."""

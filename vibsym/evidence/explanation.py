@@ -49,12 +49,14 @@ class Explanation:
         return self.halves / 2
 
 
-def explain(prediction: Prediction, seen: Coincidences, spectra: tuple[str, ...] = ("IR", "Raman")) -> Explanation:
+def explain(prediction: Prediction, seen: Coincidences, spectra: tuple[str, ...] = ("IR", "Raman"),
+            one_sided: frozenset[Band] = frozenset()) -> Explanation:
     """Return the explanation with the least total weight of excuses; `spectra` are those that were measured.
 
-    With no bands the explanation is empty, without fundamentals everything stays unexplained.
+    `one_sided` are the bands that lie where the other spectrum was not observed: nothing is unseen there.  With no
+    bands the explanation is empty, without fundamentals everything stays unexplained.
     """
-    kinds = [kind_of(item) for item in seen.items]
+    kinds = [kind_of(item, one_sided) for item in seen.items]
     capacities: Counter = Counter()
     for species in prediction.bands:
         capacities[activity_of(species)] += species.count

@@ -89,9 +89,11 @@ def _unknowns(kinds, capacities, by_chance: int, spectra) -> list[_Unknown]:
 
 
 def _covered(side, activity, spectra) -> int:
-    """Whether an item shows all that its fundamental should show in the spectra that were measured."""
+    """Whether an item shows all that its fundamental should show in the spectra that were observed at its place."""
     infrared, raman = activity.infrared and "IR" in spectra, activity.raman and "Raman" in spectra
-    return int((infrared or raman) and side.infrared >= infrared and side.raman >= raman)
+    if not (infrared or raman):
+        return 0
+    return int(side.one_sided or (side.infrared >= infrared and side.raman >= raman))
 
 
 class _Programme:

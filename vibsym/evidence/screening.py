@@ -2,8 +2,10 @@
 
 The score is the total weight of the excuses plus 1/3 for each predicted fundamental that was not seen, in the spectra
 that were measured.  Verdict from the excuses alone: `fits` 0; `strained` up to the larger of 1 and 5 % of the bands;
-`excluded` above.  A fundamental of a whole molecule has no wavenumber here: none is called missing where a range was
-stated or the lines span less than an octave (the list of one region; our own rule).
+`excluded` above.  A band counts as unseen only within the observed or stated range.  Oscillators lie in their region.
+A fundamental of a whole molecule has a wavenumber only once it is seen: where the other spectrum was not observed it is
+not missing there (infrared ends where Raman goes on), and one seen nowhere counts only if the stated range, or else the
+lines, span an octave (less is the list of one region; our own rule).
 """
 
 from collections.abc import Callable, Sequence
@@ -159,22 +161,26 @@ def _mixtures(singles: list[Prediction]) -> list[Prediction]:
 
 
 def _candidate(prediction: Prediction, observed: BandList, seen: Coincidences, allow: float | None) -> Candidate:
-    explanation = explain(prediction, seen, observed.spectra)
+    one_sided = frozenset() if prediction.region else observed.one_sided
+    explanation = explain(prediction, seen, observed.spectra, one_sided)
     counted = bool(prediction.region) or observed.whole_range
-    unseen = _unseen(prediction, explanation, observed.spectra) if counted else ()
+    unseen = _unseen(prediction, explanation, observed.spectra, one_sided) if counted else ()
     limit = allow if allow is not None else max(1.0, 0.05 * len(observed.bands))
     verdict = FITS if not explanation.halves else STRAINED if explanation.total <= limit + 1e-9 else EXCLUDED
     return Candidate(prediction, explanation, excuses_of(prediction, seen, explanation), unseen, verdict)
 
 
-def _unseen(prediction: Prediction, explanation: Explanation, spectra: tuple[str, ...]) -> tuple[Unseen, ...]:
+def _unseen(prediction: Prediction, explanation: Explanation, spectra: tuple[str, ...],
+            one_sided: frozenset) -> tuple[Unseen, ...]:
     """Return one entry for each fundamental that is missing in a measured spectrum that should show it.
 
-    A fundamental active in both spectra and seen in one of them counts once, like one seen in neither.
+    A fundamental active in both spectra and seen in one of them counts once, like one seen in neither; not where the
+    other spectrum was not observed.
     """
     found: dict[SpeciesBands, list[set[str]]] = {}
     for place in explanation.places:
-        found.setdefault(place.species, []).append({band.spectrum for band in place.item})
+        alone = not place.broken and len(place.item) == 1 and place.item[0] in one_sided
+        found.setdefault(place.species, []).append(set(spectra) if alone else {band.spectrum for band in place.item})
     unseen = []
     for species in prediction.bands:
         due = {name for name in spectra if species.active_in(name)}

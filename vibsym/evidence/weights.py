@@ -11,7 +11,10 @@ from vibsym.spectra.prediction import SpeciesBands
 
 
 class Kind(NamedTuple):
-    """What distinguishes items for an explanation: where seen, where weak, and the polarisation of the Raman band."""
+    """What distinguishes items for an explanation: where seen, where weak, and the polarisation of the Raman band.
+
+    `one_sided`: a single band where the other spectrum was not observed, so that nothing is missing there.
+    """
 
     infrared: bool
     raman: bool
@@ -19,6 +22,7 @@ class Kind(NamedTuple):
     weak_raman: bool
     polarised: bool
     depolarised: bool
+    one_sided: bool = False
 
 
 class Activity(NamedTuple):
@@ -31,12 +35,13 @@ class Activity(NamedTuple):
     leak_raman: bool
 
 
-def kind_of(item: tuple[Band, ...]) -> Kind:
-    """Return the kind of an item."""
+def kind_of(item: tuple[Band, ...], one_sided: frozenset[Band] = frozenset()) -> Kind:
+    """Return the kind of an item; `one_sided` are the bands that lie where the other spectrum was not observed."""
     seen = {band.spectrum: band for band in item}
     infrared, raman = seen.get("IR"), seen.get("Raman")
     return Kind(infrared is not None, raman is not None, bool(infrared and infrared.weak), bool(raman and raman.weak),
-                bool(raman and raman.polarised), bool(raman and raman.depolarised))
+                bool(raman and raman.polarised), bool(raman and raman.depolarised),
+                len(item) == 1 and item[0] in one_sided)
 
 
 def activity_of(species: SpeciesBands) -> Activity:
