@@ -11,7 +11,8 @@ from vibsym.vibrations.calibration import relabellings
 def lines_of(sample, observed, polarisation: bool):
     """Return the band list of a molecule and the published species of every line: {(spectrum, cm-1): labels}.
 
-    Each fundamental is an infrared and a Raman line as its activity allows; fundamentals of one wavenumber are one line.
+    Each fundamental is an infrared and a Raman line as its activity allows; fundamentals of one wavenumber are one
+    line.
     """
     group, truth = sample.symmetry.group, {}
     for label, values in observed.items():
@@ -28,7 +29,7 @@ def lines_of(sample, observed, polarisation: bool):
 
 
 def judged(sample, estimates, polarisation: bool) -> list[tuple[bool, bool, float]]:
-    """Return (right, firm, least extra cost) of every line; of labels that turned axes exchange the choice that fits best."""
+    """Return (right, firm, least extra cost) of every line, with the labels of the axes that fit best."""
     counts: dict[str, int] = {}
     for mode in estimates.modes:
         counts[mode.species] = counts.get(mode.species, 0) + 1
@@ -41,9 +42,16 @@ def judged(sample, estimates, polarisation: bool) -> list[tuple[bool, bool, floa
         if not bands.lines:
             continue
         found = assign(sample.symmetry, bands, estimates=estimates)
-        lines = [(row.mode.species in truth[band.spectrum, band.lines[0].wavenumber], row.firm,
-                  min((cost for _, cost in row.alternatives), default=99.0))
-                 for row in found.assigned for band in (row.infrared, row.raman) if band is not None]
+        lines = [
+            (
+                row.mode.species in truth[band.spectrum, band.lines[0].wavenumber],
+                row.firm,
+                min((cost for _, cost in row.alternatives), default=99.0),
+            )
+            for row in found.assigned
+            for band in (row.infrared, row.raman)
+            if band is not None
+        ]
         lines += [(False, False, 0.0)] * len(found.leftover)
         if not best or sum(line[0] for line in lines) > sum(line[0] for line in best):
             best = lines
@@ -53,5 +61,9 @@ def judged(sample, estimates, polarisation: bool) -> list[tuple[bool, bool, floa
 def score(lines) -> tuple[int, float, float, float]:
     """Return the number of lines, the parts that are right, firm, and of the firm ones right."""
     firm = [line for line in lines if line[1]]
-    return (len(lines), sum(line[0] for line in lines) / len(lines), len(firm) / len(lines),
-            sum(line[0] for line in firm) / max(len(firm), 1))
+    return (
+        len(lines),
+        sum(line[0] for line in lines) / len(lines),
+        len(firm) / len(lines),
+        sum(line[0] for line in firm) / max(len(firm), 1),
+    )

@@ -7,8 +7,8 @@ from pathlib import Path
 import numpy as np
 import pytest
 from click.testing import CliRunner
-
 from published_lines import judged, score
+
 from vibsym.cli.main import cli
 from vibsym.errors import VibsymError
 from vibsym.evidence.assignment import assign
@@ -42,8 +42,10 @@ def methane():
 
 @pytest.mark.parametrize(("polarisation", "least"), [(True, 0.97), (False, 0.87)])
 def test_published_species_come_back(published, polarisation, least):
-    """T. Shimanouchi, NSRDS-NBS 39 (1972): lines without labels; in sample (left out: tests/benchmarks/assignment.py)."""
-    number, right, firm, sure = score([line for sample, each in published for line in judged(sample, each, polarisation)])
+    """T. Shimanouchi, NSRDS-NBS 39 (1972): lines without labels, in sample (left out: benchmarks/)."""
+    number, right, firm, sure = score(
+        [line for sample, each in published for line in judged(sample, each, polarisation)]
+    )
     assert number > 2300
     assert right >= least
     assert firm >= 0.4
@@ -78,7 +80,11 @@ def exhaustive(costs):
             for row, place in zip(units, places):
                 if row in partner:
                     number = costs.pairs.index((row, partner[row]))
-                    total += (costs.together[number, place] if place >= 0 else costs.leftover[row] + costs.leftover[partner[row]])
+                    total += (
+                        costs.together[number, place]
+                        if place >= 0
+                        else costs.leftover[row] + costs.leftover[partner[row]]
+                    )
                 else:
                     total += costs.single[row, place] if place >= 0 else costs.leftover[row]
             best = min(best, total)
@@ -161,8 +167,16 @@ def test_commands(tmp_path):
     assert page.exit_code == 0 and "firm" in page.output and "Lines left over" in page.output
     answer = json.loads(run("assign", structure, "--bands", bands, "--format", "json").output)
     assert set(answer) >= {"structure", "point_group", "assignments", "leftover", "unseen", "cost"}
-    assert answer["assignments"][0].keys() >= {"mode", "species", "infrared_line", "raman_line", "estimate", "description", "firm",
-                                                "alternatives"}
+    assert answer["assignments"][0].keys() >= {
+        "mode",
+        "species",
+        "infrared_line",
+        "raman_line",
+        "estimate",
+        "description",
+        "firm",
+        "alternatives",
+    }
     assert answer["leftover"] == [{"spectrum": "IR", "wavenumber": 2600.0}]
     table = run("assign", structure, "--bands", bands, "--format", "csv").output
     file = parse_assignment(table)
@@ -172,10 +186,22 @@ def test_commands(tmp_path):
     refined = json.loads(run("normal", structure, "--refine", saved, "--format", "json").output)
     assert len(refined["refinement"]["residuals"]) == 4
     modes = json.loads(run("normal", structure, "--format", "json").output)["modes"]
-    assert modes[0].keys() >= {"mode", "species", "degeneracy", "wavenumber", "imaginary", "infrared", "raman", "weight", "shares"}
+    assert modes[0].keys() >= {
+        "mode",
+        "species",
+        "degeneracy",
+        "wavenumber",
+        "imaginary",
+        "infrared",
+        "raman",
+        "weight",
+        "shares",
+    }
 
 
-@pytest.mark.parametrize("arguments", [("--pin", "A1=1306"), ("--bands", "nowhere.csv"), ("--window", "-1"), ("--as", "D7h")])
+@pytest.mark.parametrize(
+    "arguments", [("--pin", "A1=1306"), ("--bands", "nowhere.csv"), ("--window", "-1"), ("--as", "D7h")]
+)
 def test_bad_input_is_one_line(tmp_path, arguments):
     bands = tmp_path / "bands.csv"
     bands.write_text(METHANE, encoding="utf-8")

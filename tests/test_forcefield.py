@@ -1,4 +1,4 @@
-"""The valence force field: its table can be made again, its fall-back is marked, its constants can be replaced and refined."""
+"""The valence force field: the table can be made again, the fall-back is marked, constants replaced and refined."""
 
 from pathlib import Path
 
@@ -32,9 +32,13 @@ def made():
 
 
 def test_wavenumbers_of_the_table(made):
-    """Median at most 2 %, nine tenths within 8 % on the molecules of the fit (those left out are worse, see the error table)."""
+    """Median at most 2 %, nine tenths within 8 %, in sample (left out: estimate_errors.csv)."""
     errors = made.errors(parameters_of(made, standard_field()))
-    own = [values for number, values in errors.items() if not made.samples[made.problem.blocks[number].molecule].from_memory]
+    own = [
+        values
+        for number, values in errors.items()
+        if not made.samples[made.problem.blocks[number].molecule].from_memory
+    ]
     size = np.abs(np.exp(np.concatenate(own)) - 1)
     assert len(size) > 1450
     assert np.median(size) < 0.02
@@ -122,8 +126,10 @@ def test_refinement_finds_the_constants_back():
     from vibsym.spectra.modes import Mode
 
     changed = standard_field().with_scales({"stretch C-H": 1.06, "bend H-C-H": 0.93})
-    molecules = [(each, [Mode(mode.name, mode.species, mode.wavenumber) for mode in estimate(each, changed).modes])
-                 for each in (published("methane"), published("methane-d4"))]
+    molecules = [
+        (each, [Mode(mode.name, mode.species, mode.wavenumber) for mode in estimate(each, changed).modes])
+        for each in (published("methane"), published("methane-d4"))
+    ]
     result = with_refinement(analyse(molecules[0][0]), molecules)
     assert result.refinement.scales["stretch C-H"] == pytest.approx(1.06, rel=2e-3)
     assert result.refinement.scales["bend H-C-H"] == pytest.approx(0.93, rel=2e-3)

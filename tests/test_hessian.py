@@ -1,4 +1,4 @@
-"""Imported Hessians: species and wavenumbers come back from a turned, noisy Hessian; bad ones are refused in one line."""
+"""Imported Hessians: species and wavenumbers come back, turned and with noise; bad ones are refused in one line."""
 
 from pathlib import Path
 
@@ -16,8 +16,18 @@ from vibsym.vibrations.internal import internal_coordinates
 from vibsym.vibrations.units import HESSIAN_UNITS
 
 PUBLISHED = Path(__file__).parent / "reference" / "shimanouchi"
-MOLECULES = ["methane", "benzene", "allene", "ethane", "acetylene", "uranium-hexafluoride", "hexachloroethane", "diborane-11b",
-             "bromochloromethane-d1", "propyne-3,3,3-d3"]
+MOLECULES = [
+    "methane",
+    "benzene",
+    "allene",
+    "ethane",
+    "acetylene",
+    "uranium-hexafluoride",
+    "hexachloroethane",
+    "diborane-11b",
+    "bromochloromethane-d1",
+    "propyne-3,3,3-d3",
+]
 
 
 def own_hessian(symmetry):

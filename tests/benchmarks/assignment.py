@@ -2,8 +2,8 @@
 
     python tests/benchmarks/assignment.py            # about two minutes on one core
 
-Prints, for lines with and without polarisation, how many have the published species and how many of the firm ones; the limit FIRM of
-vibsym/evidence/assignment.py is chosen on the left-out figures.
+Prints, for lines with and without polarisation, how many have the published species and how many of the firm ones; the
+limit FIRM of vibsym/evidence/assignment.py is chosen on the left-out figures.
 """
 
 import sys
@@ -33,16 +33,26 @@ def main() -> None:
         for number in family:
             outside[number] = estimate(made.samples[number].symmetry, field)
     for memory, source in ((False, "NSRDS-NBS 39"), (True, "from memory")):
-        chosen = [values for number, values in errors.items()
-                  if made.samples[made.problem.blocks[number].molecule].from_memory == memory]
+        chosen = [
+            values
+            for number, values in errors.items()
+            if made.samples[made.problem.blocks[number].molecule].from_memory == memory
+        ]
         print(f"{source}, left out: {summary(np.concatenate(chosen))}")
         for name, estimates in (("in sample", inside), ("left out", outside)):
             for polarisation in (True, False):
-                lines = [line for sample, each in zip(made.samples, estimates) if sample.from_memory == memory
-                         for line in judged(sample, each, polarisation)]
+                lines = [
+                    line
+                    for sample, each in zip(made.samples, estimates)
+                    if sample.from_memory == memory
+                    for line in judged(sample, each, polarisation)
+                ]
                 number, right, firm, sure = score(lines)
-                print(f"{source}, {name}, {'with' if polarisation else 'without'} polarisation: {number} lines, {100 * right:.2f} % right, "
-                      f"{100 * firm:.0f} % firm, of these {100 * sure:.2f} % right")
+                print(
+                    f"{source}, {name}, {'with' if polarisation else 'without'} polarisation: "
+                    f"{number} lines, {100 * right:.2f} % right, "
+                    f"{100 * firm:.0f} % firm, of these {100 * sure:.2f} % right"
+                )
 
 
 if __name__ == "__main__":

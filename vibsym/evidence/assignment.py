@@ -1,9 +1,10 @@
 """Assign observed lines to fundamentals: the optimum of the cost of `assignment_costs.py`, and how firm each line is.
 
-Activity and a measured polarisation are constraints; a coincident pair, the estimates of the force field, strengths and characteristic
-ranges are costs.  For every line the whole spectrum is assigned again with the line in each other species that could hold
-it: the extra cost tells how nearly another assignment is as good.  A line is firm when every other species costs at least FIRM more
-(measured: of such lines at least 98 % have the published species, tests/benchmarks/assignment.py).
+Activity and a measured polarisation are constraints; a coincident pair, the estimates of the force field, strengths
+and characteristic ranges are costs.  For every line the whole spectrum is assigned again with the line in each other
+species that could hold it: the extra cost tells how nearly another assignment is as good.  A line is firm when every
+other species costs at least FIRM more (measured: of such lines at least 98 % have the published species,
+tests/benchmarks/assignment.py).
 """
 
 from collections.abc import Sequence
@@ -30,8 +31,8 @@ from vibsym.structures.symmetry import Symmetry
 from vibsym.vibrations.estimates import Estimates, describe, estimate
 from vibsym.vibrations.normal_modes import Mode
 
-FIRM = 5.0                 # extra cost from which a line is firm
-TOLD = 30.0                # alternatives dearer than this are not told
+FIRM = 5.0  # extra cost from which a line is firm
+TOLD = 30.0  # alternatives dearer than this are not told
 
 
 @dataclass(frozen=True, eq=False)
@@ -58,9 +59,16 @@ class Assigned:
 
     def to_dict(self) -> dict:
         """Return the row for JSON."""
-        return {"mode": self.mode.name, "species": self.mode.species, "infrared_line": _value(self.infrared),
-                "raman_line": _value(self.raman), "estimate": round(self.mode.wavenumber, 1), "description": self.description,
-                "firm": bool(self.firm), "alternatives": [{"species": label, "extra_cost": cost} for label, cost in self.alternatives]}
+        return {
+            "mode": self.mode.name,
+            "species": self.mode.species,
+            "infrared_line": _value(self.infrared),
+            "raman_line": _value(self.raman),
+            "estimate": round(self.mode.wavenumber, 1),
+            "description": self.description,
+            "firm": bool(self.firm),
+            "alternatives": [{"species": label, "extra_cost": cost} for label, cost in self.alternatives],
+        }
 
 
 @dataclass(frozen=True, eq=False)
@@ -78,15 +86,30 @@ class Assignment:
 
     def to_dict(self) -> dict:
         """Return the JSON object."""
-        unseen = [{"mode": mode.name, "species": mode.species, "estimate": round(mode.wavenumber, 1)} for mode in self.unseen]
-        leftover = [{"spectrum": band.spectrum, "wavenumber": line.wavenumber} for band in self.leftover for line in band.lines]
-        return {"structure": self.symmetry.structure.to_dict(), "point_group": self.symmetry.to_dict(),
-                "assignments": [row.to_dict() for row in self.assigned], "leftover": leftover, "unseen": unseen,
-                "cost": round(self.cost, 3)}
+        unseen = [
+            {"mode": mode.name, "species": mode.species, "estimate": round(mode.wavenumber, 1)} for mode in self.unseen
+        ]
+        leftover = [
+            {"spectrum": band.spectrum, "wavenumber": line.wavenumber} for band in self.leftover for line in band.lines
+        ]
+        return {
+            "structure": self.symmetry.structure.to_dict(),
+            "point_group": self.symmetry.to_dict(),
+            "assignments": [row.to_dict() for row in self.assigned],
+            "leftover": leftover,
+            "unseen": unseen,
+            "cost": round(self.cost, 3),
+        }
 
 
-def assign(symmetry: Symmetry, observed: BandList, *, window: float = WINDOW, pins: Sequence[str] = (),
-           estimates: Estimates | None = None) -> Assignment:
+def assign(
+    symmetry: Symmetry,
+    observed: BandList,
+    *,
+    window: float = WINDOW,
+    pins: Sequence[str] = (),
+    estimates: Estimates | None = None,
+) -> Assignment:
     """Return the assignment of least cost.
 
     `pins` fix lines (`ν4=1306`, `T2=1306`); `estimates` are those of the standard force field when not given.
@@ -101,9 +124,14 @@ def assign(symmetry: Symmetry, observed: BandList, *, window: float = WINDOW, pi
     together = pair_costs(bands, candidates, estimates)
     possible = np.isfinite(together).any(axis=1) if len(candidates) else np.zeros(0, bool)
     pairs = tuple(pair for pair, kept in zip(candidates, possible) if kept)
-    costs = Costs(single_costs(bands, estimates, observed.spectra), together[possible], pairs,
-                  np.array([LEFT_OVER_WEAK if band.weak else LEFT_OVER for band in bands]),
-                  np.array([_unseen_cost(mode, observed) for mode in estimates.modes]), BROKEN_PAIR)
+    costs = Costs(
+        single_costs(bands, estimates, observed.spectra),
+        together[possible],
+        pairs,
+        np.array([LEFT_OVER_WEAK if band.weak else LEFT_OVER for band in bands]),
+        np.array([_unseen_cost(mode, observed) for mode in estimates.modes]),
+        BROKEN_PAIR,
+    )
     held = parse_pins(pins, symmetry.group, estimates.modes)
     allowed = pinned(held, bands, estimates.modes)
     best = cheapest(costs, allowed)
@@ -120,13 +148,19 @@ def _unseen_cost(mode: Mode, observed: BandList) -> float:
 
 
 def _in_order(best: Matching, bands, modes: Sequence[Mode], held: Sequence[Pin]) -> Matching:
-    """Let the lines of one species follow the order of its estimates: within a species modes are numbered by wavenumber."""
+    """Let the lines of one species follow the order of its estimates, as the numbers do."""
     places = best.places.copy()
     fixed = {pin.mode for pin in held if pin.mode is not None}
     for species in {mode.species for mode in modes}:
         for kind in {_kind(best, row) for row in range(len(bands))}:
-            items = [row for row in range(len(bands)) if places[row] >= 0 and modes[places[row]].species == species
-                     and places[row] not in fixed and _kind(best, row) == kind]
+            items = [
+                row
+                for row in range(len(bands))
+                if places[row] >= 0
+                and modes[places[row]].species == species
+                and places[row] not in fixed
+                and _kind(best, row) == kind
+            ]
             columns = sorted({int(places[row]) for row in items}, key=lambda column: -modes[column].wavenumber)
             groups: dict[int, list[int]] = {}
             for row in items:
@@ -151,15 +185,26 @@ def _result(symmetry, observed, estimates, costs, allowed, best, held) -> Assign
     for column in sorted(rows):
         seen = rows[column]
         others = alternatives(costs, allowed, best, list(seen.values()), modes[column].species, modes)
-        assigned.append(Assigned(modes[column], *(bands[seen[name]] if name in seen else None for name in ("IR", "Raman")),
-                                 describe(modes[column]), others, any(_holds(pin, bands, seen) for pin in held)))
+        assigned.append(
+            Assigned(
+                modes[column],
+                *(bands[seen[name]] if name in seen else None for name in ("IR", "Raman")),
+                describe(modes[column]),
+                others,
+                any(_holds(pin, bands, seen) for pin in held),
+            )
+        )
     leftover = tuple(bands[row] for row, column in enumerate(best.places.tolist()) if column < 0)
     unseen = tuple(mode for column, mode in enumerate(modes) if column not in rows)
-    return Assignment(symmetry, observed, estimates, tuple(assigned), leftover, unseen, best.cost, _notes(estimates, observed))
+    return Assignment(
+        symmetry, observed, estimates, tuple(assigned), leftover, unseen, best.cost, _notes(estimates, observed)
+    )
 
 
-def alternatives(costs: Costs, allowed, best: Matching, rows: Sequence[int], species: str, modes) -> tuple[tuple[str, float], ...]:
-    """Return (species, extra cost) of the best assignment with the lines `rows` in each other species, the cheapest first."""
+def alternatives(
+    costs: Costs, allowed, best: Matching, rows: Sequence[int], species: str, modes
+) -> tuple[tuple[str, float], ...]:
+    """Return (species, extra cost) of the best assignment with these lines in each other species."""
     found = []
     for label in dict.fromkeys(mode.species for mode in modes):
         if label == species:
@@ -184,7 +229,9 @@ def _holds(pin: Pin, bands, seen: dict[str, int]) -> bool:
 def _notes(estimates: Estimates, observed: BandList) -> tuple[str, ...]:
     notes = list(observed.notes)
     for each in estimates.fallback:
-        notes.append(f"{each['set']}: no tabulated force constant, estimated by Badger's rule ({each['constant']:.0f} N/m)")
+        notes.append(
+            f"{each['set']}: no tabulated force constant, estimated by Badger's rule ({each['constant']:.0f} N/m)"
+        )
     return tuple(notes)
 
 

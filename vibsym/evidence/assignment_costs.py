@@ -1,10 +1,13 @@
-"""What it costs to give a line to a fundamental, to leave it over, or not to see a fundamental (our own rules, measured).
+"""What it costs to give a line to a fundamental, to leave it over, or not to see a fundamental (our own rules).
 
 All costs are in the units of χ² (−2 ln of a likelihood):
 
-- estimate: h(z), z = ln(observed/estimate)/s with the spread s of the error model; h(z) = z² up to |z| = 1.5, then 3|z| − 2.25;
-- characteristic range (tables/characteristic_wavenumbers.csv) of a set that makes at least 60 % of the mode: h(distance/RANGE_WIDTH), at most 3;
-- a line measured depolarised at a totally symmetric fundamental: 3; a Raman line without polarisation there, where others have one: 1;
+- estimate: h(z), z = ln(observed/estimate)/s with the spread s of the error model; h(z) = z² up to |z| = 1.5, then
+  3|z| − 2.25;
+- characteristic range (tables/characteristic_wavenumbers.csv) of a set that makes at least 60 % of the mode:
+  h(distance/RANGE_WIDTH), at most 3;
+- a line measured depolarised at a totally symmetric fundamental: 3; a Raman line without polarisation there, where
+  others have one: 1;
 - strengths: a strong Raman line that is not totally symmetric, a weak one that is: ½;
 - a fundamental active in both spectra but given a line of one, both being measured: 2; a broken pair: 12;
 - a line left over: 24, a weak one 12; an active fundamental not seen: 1.
@@ -22,7 +25,7 @@ from vibsym.vibrations.estimates import Estimates, characteristic_name
 
 LEFT_OVER, LEFT_OVER_WEAK, UNSEEN, BROKEN_PAIR, ONE_SPECTRUM = 24.0, 12.0, 1.0, 12.0, 2.0
 DEPOLARISED, UNMARKED, STRENGTH = 3.0, 1.0, 0.5
-RANGE_WIDTH, RANGE_MOST, RANGE_SHARE = 30.0, 3.0, 0.6      # cm-1, cost, share of the set in the mode
+RANGE_WIDTH, RANGE_MOST, RANGE_SHARE = 30.0, 3.0, 0.6  # cm-1, cost, share of the set in the mode
 STRONG = ("vs", "vvs", "s")
 
 
@@ -86,7 +89,7 @@ def single_costs(bands, estimates: Estimates, spectra) -> np.ndarray:
 
 
 def pair_costs(bands, pairs, estimates: Estimates) -> np.ndarray:
-    """Return (p, f) the cost of a pair at every fundamental: the mean of both estimates' costs, and what each spectrum says."""
+    """Return (p, f) the cost of a pair: the mean of both estimates' costs, and what each spectrum says."""
     cost = estimate_costs(bands, estimates)
     marked = any(band.polarised or band.depolarised for band in bands)
     table = np.zeros((len(pairs), len(estimates.modes)))

@@ -1,9 +1,10 @@
 """The cheapest way to give lines to fundamentals: an assignment problem with pairs, solved exactly.
 
-Items are single lines and coincident pairs.  A line takes one fundamental or stays over; a fundamental takes one line, or a pair.
-A pair can be broken, at a price.  Without broken pairs this is the linear assignment problem (H. W. Kuhn, Naval Res. Logist. Quart.
-2, 83 (1955)); with them, branch and bound: in the relaxed problem an undecided pair may break at its price while its Raman line
-costs nothing, which is never dearer than the truth; where the relaxed answer breaks a pair, both decisions are tried.
+Items are single lines and coincident pairs.  A line takes one fundamental or stays over; a fundamental takes one line,
+or a pair. A pair can be broken, at a price.  Without broken pairs this is the linear assignment problem (H. W. Kuhn,
+Naval Res. Logist. Quart. 2, 83 (1955)); with them, branch and bound: in the relaxed problem an undecided pair may
+break at its price while its Raman line costs nothing, which is never dearer than the truth; where the relaxed answer
+breaks a pair, both decisions are tried.
 """
 
 from dataclasses import dataclass
@@ -18,8 +19,9 @@ WHOLE, BROKEN = "whole", "broken"
 class Costs:
     """Costs of single lines (n, f) and pairs (p, f) at fundamentals; np.inf where forbidden.
 
-    `pairs` lists (row of the infrared line, row of the Raman line), `leftover` (n,) the price of each line left over, `unseen` (f,)
-    that of a fundamental without a line, `broken` that of a broken pair.  Pairs for which every fundamental is forbidden are no pairs.
+    `pairs` lists (row of the infrared line, row of the Raman line), `leftover` (n,) the price of each line left over,
+    `unseen` (f,) that of a fundamental without a line, `broken` that of a broken pair.  Pairs for which every
+    fundamental is forbidden are no pairs.
     """
 
     single: np.ndarray
@@ -124,8 +126,11 @@ class _Search:
                 return number
             place = places[i]
             true = self.together[number, place] if place >= 0 else self.leftover[i] + self.leftover[r]
-            relaxed = (min(self.together[number, place], self.single[i, place] + self.costs.broken) if place >= 0
-                       else min(true, self.leftover[i] + self.costs.broken))
+            relaxed = (
+                min(self.together[number, place], self.single[i, place] + self.costs.broken)
+                if place >= 0
+                else min(true, self.leftover[i] + self.costs.broken)
+            )
             if true > relaxed + 1e-12:
                 return number
         return None

@@ -10,7 +10,7 @@ from vibsym.errors import VibsymError
 from vibsym.evidence.assignment_costs import mean_wavenumber
 from vibsym.evidence.lines import Band
 
-NEAR = 0.51               # cm-1; a pin names a line to the last whole wavenumber
+NEAR = 0.51  # cm-1; a pin names a line to the last whole wavenumber
 
 
 @dataclass(frozen=True)
@@ -24,8 +24,10 @@ class Pin:
 
     def matches(self, band: Band) -> bool:
         """Whether the pin means this band."""
-        return any(abs(value - self.wavenumber) <= NEAR
-                   for value in (mean_wavenumber(band), *(line.wavenumber for line in band.lines)))
+        return any(
+            abs(value - self.wavenumber) <= NEAR
+            for value in (mean_wavenumber(band), *(line.wavenumber for line in band.lines))
+        )
 
 
 def parse_pins(texts: Sequence[str], group, modes) -> list[Pin]:
@@ -39,7 +41,9 @@ def parse_pins(texts: Sequence[str], group, modes) -> list[Pin]:
         except ValueError:
             value = float("nan")
         if not equals or not value > 0 or value == float("inf"):
-            raise VibsymError(f"--pin {text}: write a fundamental or a species and a line in cm-1, as in ν4=1306 or T2=1306")
+            raise VibsymError(
+                f"--pin {text}: write a fundamental or a species and a line in cm-1, as in ν4=1306 or T2=1306"
+            )
         number = re.fullmatch(r"(?:ν|v|nu)_?(\d+)(?::(.+))?", left, re.IGNORECASE)
         if number:
             name = f"ν{int(number[1])}"
@@ -72,12 +76,18 @@ def pinned(pins: Sequence[Pin], bands: Sequence[Band], modes) -> np.ndarray | No
         possible = [row for row in rows if reasons[row] is None]
         if not possible:
             raise VibsymError(f"--pin {pin.text}: against the selection rules: {reasons[rows[0]]}")
-        wanted = np.array([number == pin.mode if pin.mode is not None else each.species == pin.species
-                           for number, each in enumerate(modes)])
+        wanted = np.array(
+            [
+                number == pin.mode if pin.mode is not None else each.species == pin.species
+                for number, each in enumerate(modes)
+            ]
+        )
         for row in possible:
             allowed[row] &= wanted
             if not allowed[row].any():
-                raise VibsymError(f"--pin {pin.text}: the line {bands[row]} is pinned elsewhere too; take one --pin away")
+                raise VibsymError(
+                    f"--pin {pin.text}: the line {bands[row]} is pinned elsewhere too; take one --pin away"
+                )
     return allowed
 
 

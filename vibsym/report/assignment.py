@@ -13,25 +13,50 @@ def parts(result, strip: bool = False, **_) -> list:
     """Return the page."""
     symmetry = result.symmetry
     firm = sum(row.firm for row in result.assigned)
-    page = [Title(*about_structure(symmetry.structure)),
-            Paragraph(f"Point group {group_text(symmetry.group.symbol)}, {found_within(symmetry)}"),
-            Paragraph(f"{len(result.assigned)} fundamentals assigned, {firm} of them firm; "
-                      f"{len(result.leftover)} lines left over, {len(result.unseen)} fundamentals not seen", strong=True)]
+    page = [
+        Title(*about_structure(symmetry.structure)),
+        Paragraph(f"Point group {group_text(symmetry.group.symbol)}, {found_within(symmetry)}"),
+        Paragraph(
+            f"{len(result.assigned)} fundamentals assigned, {firm} of them firm; "
+            f"{len(result.leftover)} lines left over, {len(result.unseen)} fundamentals not seen",
+            strong=True,
+        ),
+    ]
     head = ("mode", "species", "infrared", "Raman", "pol.", "estimate", "firmness", "description")
     page.append(Table(head, tuple(_row(row) for row in result.assigned), right=frozenset({2, 3, 5}), flow=True))
-    page.append(Paragraph(f"Firm: every other species costs at least {FIRM:g} more; else the nearest other species with its extra cost. "
-                          f"Total cost {result.cost:.1f} (χ² units; vibsym/evidence/assignment_costs.py)."))
+    page.append(
+        Paragraph(
+            f"Firm: every other species costs at least {FIRM:g} more; else the nearest other species with its "
+            "extra cost. "
+            f"Total cost {result.cost:.1f} (χ² units; vibsym/evidence/assignment_costs.py)."
+        )
+    )
     if strip:
         from vibsym.report.strip import assignment_strip
 
         page += assignment_strip(result)
     if result.leftover:
-        page.append(Listing(tuple(f"{band.spectrum} {band} {', '.join(filter(None, {line.strength for line in band.lines}))}".strip()
-                                  for band in result.leftover), "Lines left over"))
+        page.append(
+            Listing(
+                tuple(
+                    f"{band.spectrum} {band} {', '.join(filter(None, {line.strength for line in band.lines}))}".strip()
+                    for band in result.leftover
+                ),
+                "Lines left over",
+            )
+        )
     if result.unseen:
-        page.append(Table(("mode", "species", "estimate", "active in"), tuple(
-            (mode.name, typeset(mode.species), f"{mode.wavenumber:.0f}", _active(mode)) for mode in result.unseen),
-            right=frozenset({2}), heading="Fundamentals not seen"))
+        page.append(
+            Table(
+                ("mode", "species", "estimate", "active in"),
+                tuple(
+                    (mode.name, typeset(mode.species), f"{mode.wavenumber:.0f}", _active(mode))
+                    for mode in result.unseen
+                ),
+                right=frozenset({2}),
+                heading="Fundamentals not seen",
+            )
+        )
     page += _axes(symmetry)
     if result.notes:
         page.append(Listing(result.notes, "Beware"))
@@ -40,18 +65,32 @@ def parts(result, strip: bool = False, **_) -> list:
 
 def _row(row) -> tuple[str, ...]:
     infrared, raman = (NOTHING if band is None else str(band) for band in (row.infrared, row.raman))
-    polarised = NOTHING if row.raman is None else "p" if row.raman.polarised else "dp" if row.raman.depolarised else NOTHING
+    polarised = (
+        NOTHING if row.raman is None else "p" if row.raman.polarised else "dp" if row.raman.depolarised else NOTHING
+    )
     if row.pinned:
         firmness = "pinned"
     elif row.firm:
         firmness = "firm"
     else:
         firmness = ", ".join(f"{typeset(label)} +{cost:.1f}" for label, cost in row.alternatives[:2])
-    return (row.mode.name, typeset(row.mode.species), infrared, raman, polarised, f"{row.mode.wavenumber:.0f}", firmness, row.description)
+    return (
+        row.mode.name,
+        typeset(row.mode.species),
+        infrared,
+        raman,
+        polarised,
+        f"{row.mode.wavenumber:.0f}",
+        firmness,
+        row.description,
+    )
 
 
 def _active(mode) -> str:
-    return " and ".join(name for name, active in (("infrared", mode.infrared), ("Raman", mode.raman)) if active) or "neither"
+    return (
+        " and ".join(name for name, active in (("infrared", mode.infrared), ("Raman", mode.raman)) if active)
+        or "neither"
+    )
 
 
 def _axes(symmetry) -> list:
@@ -70,14 +109,31 @@ def assignment_file(result) -> AssignmentFile:
 
     rows = []
     for row in result.assigned:
-        rows.append(AssignmentRow("assigned", row.mode.name, row.mode.species, _mean(row.infrared), _mean(row.raman), _strength(row.infrared),
-                                  _strength(row.raman), _polarisation(row.raman), round(row.mode.wavenumber, 1), row.description,
-                                  bool(row.firm), row.alternatives, _extra(row.infrared, row.raman)))
+        rows.append(
+            AssignmentRow(
+                "assigned",
+                row.mode.name,
+                row.mode.species,
+                _mean(row.infrared),
+                _mean(row.raman),
+                _strength(row.infrared),
+                _strength(row.raman),
+                _polarisation(row.raman),
+                round(row.mode.wavenumber, 1),
+                row.description,
+                bool(row.firm),
+                row.alternatives,
+                _extra(row.infrared, row.raman),
+            )
+        )
     for mode in result.unseen:
         rows.append(AssignmentRow("unseen", mode.name, mode.species, estimate=round(mode.wavenumber, 1)))
     for band in result.leftover:
-        lines = {"infrared_line": _mean(band), "strength_infrared": _strength(band)} if band.spectrum == "IR" else {
-            "raman_line": _mean(band), "strength_raman": _strength(band), "polarisation": _polarisation(band)}
+        lines = (
+            {"infrared_line": _mean(band), "strength_infrared": _strength(band)}
+            if band.spectrum == "IR"
+            else {"raman_line": _mean(band), "strength_raman": _strength(band), "polarisation": _polarisation(band)}
+        )
         rows.append(AssignmentRow("leftover", **lines, extra=_extra(band)))
     words = "; ".join(f"{name}: {text}" for name, text in axis_words(result.symmetry).words.items())
     return AssignmentFile(tuple(rows), result.symmetry.structure.source, result.symmetry.group.symbol, words)

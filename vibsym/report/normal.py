@@ -13,15 +13,28 @@ def parts(result, **_) -> list:
     symmetry = result.symmetry
     imported = result.field is None
     origin = "imported Hessian" if imported else "valence force field, fitted to observed fundamentals"
-    page = [Title(*about_structure(symmetry.structure)),
-            Paragraph(f"Point group {group_text(symmetry.group.symbol)}, {found_within(symmetry)}\nNormal modes: {origin}")]
+    page = [
+        Title(*about_structure(symmetry.structure)),
+        Paragraph(f"Point group {group_text(symmetry.group.symbol)}, {found_within(symmetry)}\nNormal modes: {origin}"),
+    ]
     rows = []
     for mode in result.modes:
         flag = "imaginary" if mode.imaginary else ""
-        last = (f"{mode.weight:.3f}{' doubtful' if mode.weight < DOUBTFUL else ''} {flag}".strip() if imported
-                else f"{describe(mode)} {flag}".strip())
-        rows.append((mode.name, typeset(mode.species), f"{mode.wavenumber:.1f}", "active" if mode.infrared else NOTHING,
-                     ("polarised" if mode.polarised else "active") if mode.raman else NOTHING, last))
+        last = (
+            f"{mode.weight:.3f}{' doubtful' if mode.weight < DOUBTFUL else ''} {flag}".strip()
+            if imported
+            else f"{describe(mode)} {flag}".strip()
+        )
+        rows.append(
+            (
+                mode.name,
+                typeset(mode.species),
+                f"{mode.wavenumber:.1f}",
+                "active" if mode.infrared else NOTHING,
+                ("polarised" if mode.polarised else "active") if mode.raman else NOTHING,
+                last,
+            )
+        )
     if rows:
         head = ("mode", "species", "cm-1", "infrared", "Raman", "weight" if imported else "energy distribution")
         page.append(Table(head, tuple(rows), right=frozenset({2}), flow=True))
@@ -36,18 +49,42 @@ def parts(result, **_) -> list:
 
 def _refinement(found) -> list:
     scales = tuple((name.replace("-", "–"), f"{value:.3f}") for name, value in found.scales.items())
-    lines = tuple((row.structure, row.mode, typeset(row.species), f"{row.observed:.1f}", f"{row.before:.1f}", f"{row.after:.1f}",
-                   f"{row.observed - row.after:+.1f}") for row in found.residuals)
+    lines = tuple(
+        (
+            row.structure,
+            row.mode,
+            typeset(row.species),
+            f"{row.observed:.1f}",
+            f"{row.before:.1f}",
+            f"{row.after:.1f}",
+            f"{row.observed - row.after:+.1f}",
+        )
+        for row in found.residuals
+    )
     head = ("structure", "mode", "species", "observed", "before", "refined", "left")
-    return [Table(("set", "scale of the constant"), scales, right=frozenset({1}), heading="Refined constants"),
-            Table(head, lines, right=frozenset({3, 4, 5, 6}), heading="Residuals (cm-1)")]
+    return [
+        Table(("set", "scale of the constant"), scales, right=frozenset({1}), heading="Refined constants"),
+        Table(head, lines, right=frozenset({3, 4, 5, 6}), heading="Residuals (cm-1)"),
+    ]
 
 
 def rows(result, **_) -> list[dict]:
     """Return the CSV rows, one a mode."""
-    return [{"source": result.symmetry.structure.source, "mode": mode.name, "species": mode.species, "degeneracy": mode.degeneracy,
-             "wavenumber": round(mode.wavenumber, 3), "imaginary": mode.imaginary, "infrared": mode.infrared, "raman": mode.raman,
-             "weight": round(float(mode.weight), 4), "description": describe(mode)} for mode in result.modes]
+    return [
+        {
+            "source": result.symmetry.structure.source,
+            "mode": mode.name,
+            "species": mode.species,
+            "degeneracy": mode.degeneracy,
+            "wavenumber": round(mode.wavenumber, 3),
+            "imaginary": mode.imaginary,
+            "infrared": mode.infrared,
+            "raman": mode.raman,
+            "weight": round(float(mode.weight), 4),
+            "description": describe(mode),
+        }
+        for mode in result.modes
+    ]
 
 
 def as_object(result, **_) -> dict:

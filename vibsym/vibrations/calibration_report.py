@@ -1,7 +1,7 @@
 """What the calibration prints and writes: errors, the two tables, and the error model of estimates.
 
-Error model: the spread of ln(observed/calculated) on molecules left out, by the kind of coordinate that dominates the mode (half-width of
-the central 68 %), so that an estimate can be weighed against another when bands are assigned.
+Error model: the spread of ln(observed/calculated) on molecules left out, by the kind of coordinate that dominates the
+mode (half-width of the central 68 %), so that an estimate can be weighed against another when bands are assigned.
 """
 
 import csv
@@ -26,19 +26,32 @@ from vibsym.vibrations.forcefield import ForceField, standard_field
 from vibsym.vibrations.internal import internal_coordinates
 from vibsym.vibrations.normal_modes import normal_modes
 
-NEGLIGIBLE = 0.005        # of ln(factor) or of a share
-FEWEST = 12               # left-out modes a class needs for a spread of its own
+NEGLIGIBLE = 0.005  # of ln(factor) or of a share
+FEWEST = 12  # left-out modes a class needs for a spread of its own
 
 HEAD = """\
-# Valence force field: factors whose product is a diagonal constant or a 1,3-repulsion, and shares of interactions (vibsym/vibrations/valence.py).
-# stretch: N/m at the length given (Å), scaled to other lengths by Badger's law; class by bond order, or for bonds to hydrogen by the
-# neighbours of the heavier atom. bend, linear bend: N/m, times r1 r2; wag, torsion: N/m Å² (100 N/m Å² = 1 aJ/rad²); repulsion: N/m at
-# 0.8 of the contact distance; all other factors are pure numbers, shares are parts of the geometric mean of two diagonal constants.
+# Valence force field: factors whose product is a diagonal constant or a 1,3-repulsion, and shares of interactions
+# (vibsym/vibrations/valence.py).
+# stretch: N/m at the length given (Å), scaled to other lengths by Badger's law; class by bond order, or for bonds to
+# hydrogen by the
+# neighbours of the heavier atom. bend, linear bend: N/m, times r1 r2; wag, torsion: N/m Å² (100 N/m Å² = 1 aJ/rad²);
+# repulsion: N/m at
+# 0.8 of the contact distance; all other factors are pure numbers, shares are parts of the geometric mean of two
+# diagonal constants.
 # badger i-j: d (Å) of k = 186 N/m Å³/(r - d)³ for atoms of periods i and j, the fall-back for bonds without an entry.
-# "fitted": python -m vibsym.vibrations.calibration --write, on NSRDS-NBS 39 and on fundamentals from memory (tests/reference).
-# The constants reproduce observed fundamentals (anharmonicity included), not harmonic frequencies. Factors within 0.5 % of 1 are left out.
+# "fitted": python -m vibsym.vibrations.calibration --write, on NSRDS-NBS 39 and on fundamentals from memory
+# (tests/reference).
+# The constants reproduce observed fundamentals (anharmonicity included), not harmonic frequencies. Factors within 0.5
+# % of 1 are left out.
 """
-UNITS = (("stretch", "N/m"), ("bend", "N/m"), ("linear bend", "N/m"), ("wag", "N/m Å2"), ("square wag", "N/m Å2"), ("repulsion", "N/m"))
+UNITS = (
+    ("stretch", "N/m"),
+    ("bend", "N/m"),
+    ("linear bend", "N/m"),
+    ("wag", "N/m Å2"),
+    ("square wag", "N/m Å2"),
+    ("repulsion", "N/m"),
+)
 
 
 def report(arguments: list[str]) -> None:
@@ -95,8 +108,10 @@ def split_by_fallback(made: Calibration, errors: dict) -> tuple[dict, dict]:
         for number in used:
             users.setdefault(number, set()).add(made.samples[block.molecule].family)
     alone = {molecule for molecule, used in per_molecule.items() if any(len(users[number]) == 1 for number in used)}
-    return ({k: v for k, v in errors.items() if made.problem.blocks[k].molecule not in alone},
-            {k: v for k, v in errors.items() if made.problem.blocks[k].molecule in alone})
+    return (
+        {k: v for k, v in errors.items() if made.problem.blocks[k].molecule not in alone},
+        {k: v for k, v in errors.items() if made.problem.blocks[k].molecule in alone},
+    )
 
 
 def table_text(made: Calibration, p: np.ndarray) -> str:
@@ -115,11 +130,31 @@ def table_text(made: Calibration, p: np.ndarray) -> str:
     for name in sorted(fit_values, key=_place):
         value = fit_values[name]
         if name not in known and abs(value) > NEGLIGIBLE and not name.startswith("stretch "):
-            unit = "share" if is_share(name) else dict(UNITS).get(name, "N/m" if name.startswith("repulsion ") and name[-1] == "H"
-                                                                  and name[10].isdigit() else "factor")
-            unit = "N/m Å2" if name.startswith("torsion ") and len(name.split()) == 3 and "heavy" not in name and "large" not in name else unit
-            rows.append({"name": name, "length": "", "value": f"{value if is_share(name) else np.exp(value):.5g}", "unit": unit,
-                         "source": "fitted"})
+            unit = (
+                "share"
+                if is_share(name)
+                else dict(UNITS).get(
+                    name,
+                    "N/m" if name.startswith("repulsion ") and name[-1] == "H" and name[10].isdigit() else "factor",
+                )
+            )
+            unit = (
+                "N/m Å2"
+                if name.startswith("torsion ")
+                and len(name.split()) == 3
+                and "heavy" not in name
+                and "large" not in name
+                else unit
+            )
+            rows.append(
+                {
+                    "name": name,
+                    "length": "",
+                    "value": f"{value if is_share(name) else np.exp(value):.5g}",
+                    "unit": unit,
+                    "source": "fitted",
+                }
+            )
     return HEAD + _csv(("name", "length", "value", "unit", "source"), rows)
 
 
@@ -130,11 +165,17 @@ def error_table(made: Calibration, errors: dict, classes: dict) -> str:
         for value, name in zip(values, classes[number]):
             found.setdefault(name, []).append(float(value))
             found.setdefault("any", []).append(float(value))
-    rows = [{"class": name, "spread": f"{_spread(values):.4f}", "shift": f"{np.median(values):.4f}", "modes": len(values)}
-            for name, values in sorted(found.items()) if len(values) >= FEWEST]
-    head = ("# Error model of estimated wavenumbers: half-width of the central 68 % of ln(estimate/observed) by the kind of coordinate that\n"
-            "# dominates the mode, and its median (shift). Measured on molecules left out of the fit with all their isotopologues:\n"
-            "# python -m vibsym.vibrations.calibration --leave-out --write\n")
+    rows = [
+        {"class": name, "spread": f"{_spread(values):.4f}", "shift": f"{np.median(values):.4f}", "modes": len(values)}
+        for name, values in sorted(found.items())
+        if len(values) >= FEWEST
+    ]
+    head = (
+        "# Error model of estimated wavenumbers: half-width of the central 68 % of ln(estimate/observed) by the kind\n"
+        "# of coordinate that dominates the mode, and its median (shift). Measured on molecules left out of the fit\n"
+        "# with all their isotopologues:\n"
+        "# python -m vibsym.vibrations.calibration --leave-out --write\n"
+    )
     return head + _csv(("class", "spread", "shift", "modes"), rows)
 
 
@@ -158,12 +199,30 @@ def _spread(values) -> float:
 
 
 def _chosen(made: Calibration, errors: dict, memory: bool) -> np.ndarray:
-    return np.concatenate([values for number, values in errors.items()
-                           if made.samples[made.problem.blocks[number].molecule].from_memory == memory])
+    return np.concatenate(
+        [
+            values
+            for number, values in errors.items()
+            if made.samples[made.problem.blocks[number].molecule].from_memory == memory
+        ]
+    )
 
 
 def _place(name: str) -> tuple:
-    kinds = ("stretch", "hydrogen", "bend", "linear", "wag", "square", "torsion", "repulsion", "bonds", "bends", "wags", "torsions")
+    kinds = (
+        "stretch",
+        "hydrogen",
+        "bend",
+        "linear",
+        "wag",
+        "square",
+        "torsion",
+        "repulsion",
+        "bonds",
+        "bends",
+        "wags",
+        "torsions",
+    )
     words = name.split()
     return kinds.index(words[0]), len(words), name
 

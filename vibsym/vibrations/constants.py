@@ -10,9 +10,9 @@
     [bend]
     "H-C-H" = 0.55
 
-Tables: stretch, bend, "linear bend", wag, torsion; keys are the sets that `vibsym normal` lists, without isotope marks.  A constant
-replaces the diagonal constant of every coordinate of its set; interactions, which are shares of diagonal constants, follow.
-A torsion is the sum over the dihedral angles of its bond.
+Tables: stretch, bend, "linear bend", wag, torsion; keys are the sets that `vibsym normal` lists, without isotope
+marks.  A constant replaces the diagonal constant of every coordinate of its set; interactions, which are shares of
+diagonal constants, follow. A torsion is the sum over the dihedral angles of its bond.
 """
 
 from collections.abc import Sequence
@@ -24,11 +24,11 @@ from vibsym.vibrations.naming import KINDS
 
 UNITS = {"stretch": {"N/m": 1.0, "mdyn/A": 100.0, "mdyn/Å": 100.0, "aJ/A2": 100.0, "aJ/Å2": 100.0}}
 ANGLES = {"aJ/rad2": 100.0, "mdyn A/rad2": 100.0, "mdyn Å/rad2": 100.0, "N/m A2": 1.0, "N/m Å2": 1.0}
-LARGEST = 1e5             # N/m; the stiffest bond known (N2) has 2300
+LARGEST = 1e5  # N/m; the stiffest bond known (N2) has 2300
 
 
 def read_constants(path: str, symbols: Sequence[str], sets) -> dict[str, float]:
-    """Return {set: constant in N/m or N/m Å²} of a file; an unknown key is an error that lists the sets of the structure."""
+    """Return {set: constant in N/m or N/m Å²} of a file; an unknown key is an error with the sets."""
     import tomllib
 
     try:
@@ -46,10 +46,10 @@ def read_constants(path: str, symbols: Sequence[str], sets) -> dict[str, float]:
         for elements, value in entries.items():
             name = _set_name(path, kind, elements, known)
             if isinstance(value, bool) or not isinstance(value, int | float) or not 0 < value * units[kind] <= LARGEST:
-                raise VibsymError(f"{path}: [{kind}] \"{elements}\" = {value!r}: a positive force constant is needed")
+                raise VibsymError(f'{path}: [{kind}] "{elements}" = {value!r}: a positive force constant is needed')
             found[name] = float(value) * units[kind]
     if not found:
-        raise VibsymError(f"{path}: no force constants; write for example [stretch] and \"C-H\" = 480")
+        raise VibsymError(f'{path}: no force constants; write for example [stretch] and "C-H" = 480')
     return found
 
 
@@ -73,4 +73,4 @@ def _set_name(path: str, kind: str, elements: str, known: dict) -> str:
         if name in known:
             return name
     own = ", ".join(name.rpartition(" ")[2] for name in known if name.rpartition(" ")[0] == kind) or "none"
-    raise VibsymError(f"{path}: [{kind}] has the unknown key \"{elements}\"; the structure has {own}")
+    raise VibsymError(f'{path}: [{kind}] has the unknown key "{elements}"; the structure has {own}')

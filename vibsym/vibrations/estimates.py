@@ -1,4 +1,4 @@
-"""Estimated wavenumbers of a structure with their uncertainty: the force field, and the error model of its calibration."""
+"""Estimated wavenumbers of a structure with their uncertainty, measured in the calibration."""
 
 from collections.abc import Sequence
 from dataclasses import dataclass
@@ -11,7 +11,7 @@ from vibsym.vibrations.internal import internal_coordinates
 from vibsym.vibrations.normal_modes import Mode, normal_modes
 from vibsym.vibrations.surroundings import Surroundings
 
-DOMINANT = 0.5            # share from which a kind names a mode
+DOMINANT = 0.5  # share from which a kind names a mode
 HALOGENS = ("F", "Cl", "Br", "I")
 
 
@@ -65,7 +65,9 @@ def mode_class(mode: Mode, lacking: set[str]) -> str:
     kind = max(totals, key=totals.get, default="mixed")
     if totals.get(kind, 0) < DOMINANT:
         return "mixed"
-    if kind == "stretch H" and any(name.startswith("stretch ") and name.rpartition(" ")[2] in ("C-H", "C-D") for name, _ in mode.shares[:1]):
+    if kind == "stretch H" and any(
+        name.startswith("stretch ") and name.rpartition(" ")[2] in ("C-H", "C-D") for name, _ in mode.shares[:1]
+    ):
         return "stretch C-H"
     return kind
 

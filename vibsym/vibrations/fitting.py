@@ -2,10 +2,11 @@
 
     minimise  Σ w ρ(ln(calculated/observed)/0.025)  +  Σ ((p - p0)/σ)² ,      ρ(z) = 2 (√(1 + z²) - 1)
 
-over p = ln(factor), or p = share of an interaction.  p0, σ are prior value and spread (ridge): what the data cannot tell stays at
-its prior.  The species are compared one by one, both lists sorted.  H = Σ_t c_t K_t is linear in the constants c_t, and
-dν/ν = v'K_t v dc_t/(2λ) (Hellmann–Feynman), so one evaluation needs only the small matrices K_t of every species.
-Damping after K. Levenberg, Quart. Appl. Math. 2, 164 (1944); D. W. Marquardt, J. Soc. Ind. Appl. Math. 11, 431 (1963).
+over p = ln(factor), or p = share of an interaction.  p0, σ are prior value and spread (ridge): what the data cannot
+tell stays at its prior.  The species are compared one by one, both lists sorted.  H = Σ_t c_t K_t is linear in the
+constants c_t, and dν/ν = v'K_t v dc_t/(2λ) (Hellmann–Feynman), so one evaluation needs only the small matrices K_t of
+every species. Damping after K. Levenberg, Quart. Appl. Math. 2, 164 (1944); D. W. Marquardt, J. Soc. Ind. Appl. Math.
+11, 431 (1963).
 """
 
 from collections.abc import Callable, Sequence
@@ -16,11 +17,11 @@ import numpy as np
 
 from vibsym.vibrations.units import WAVENUMBER
 
-SCALE = 0.025             # of ln(calculated/observed): where an error begins to count as an outlier
-SOFT = 300.0              # cm-1; modes below weigh less, in proportion
+SCALE = 0.025  # of ln(calculated/observed): where an error begins to count as an outlier
+SOFT = 300.0  # cm-1; modes below weigh less, in proportion
 LONGEST_STEP = 0.6
-FLOOR = 1e-4              # N/m/u; keeps the logarithm of a vanishing eigenvalue finite
-ENOUGH = 1e-4             # change of the cost at which the fit has converged
+FLOOR = 1e-4  # N/m/u; keeps the logarithm of a vanishing eigenvalue finite
+ENOUGH = 1e-4  # change of the cost at which the fit has converged
 
 
 class Block(NamedTuple):
@@ -38,10 +39,10 @@ class Problem:
     """Parameters with priors, constants as products of parameters, and the species of all molecules."""
 
     names: list[str]
-    prior: np.ndarray             # (p,)
-    spread: np.ndarray            # (p,)
-    powers: np.ndarray            # (types, p)
-    share: np.ndarray             # (types,) index of a signed parameter, or -1
+    prior: np.ndarray  # (p,)
+    spread: np.ndarray  # (p,)
+    powers: np.ndarray  # (types, p)
+    share: np.ndarray  # (types,) index of a signed parameter, or -1
     blocks: list[Block]
 
     def constants(self, p: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
@@ -140,16 +141,24 @@ class Assembly:
         return Problem(list(self.parameters), priors[:, 0], priors[:, 1], powers, share, self.blocks)
 
 
-def fit(problem: Problem, observed: dict[int, np.ndarray], weights: np.ndarray, start: np.ndarray | None = None,
-        molecules=None, rounds: int = 40) -> np.ndarray:
-    """Return the parameters of least cost; `observed` maps block numbers to falling wavenumbers, `weights` are by molecule.
+def fit(
+    problem: Problem,
+    observed: dict[int, np.ndarray],
+    weights: np.ndarray,
+    start: np.ndarray | None = None,
+    molecules=None,
+    rounds: int = 40,
+) -> np.ndarray:
+    """Return the parameters of least cost; `observed` by block number, falling; `weights` by molecule.
 
     With `molecules` only those take part: the others are left out.
     """
     used = [number for number in observed if molecules is None or problem.blocks[number].molecule in molecules]
     chosen = {problem.blocks[number].molecule for number in used}
     seen = np.concatenate([observed[number] for number in used])
-    weight = np.concatenate([np.full(len(observed[number]), weights[problem.blocks[number].molecule]) for number in used])
+    weight = np.concatenate(
+        [np.full(len(observed[number]), weights[problem.blocks[number].molecule]) for number in used]
+    )
     weight = weight * np.clip(seen / SOFT, 0.3, 1.0)
     p = (problem.prior if start is None else start).copy()
     damping, residual = 1e-2, _Residual(problem, used, chosen, np.log(seen))
@@ -160,7 +169,9 @@ def fit(problem: Problem, observed: dict[int, np.ndarray], weights: np.ndarray, 
         normal = (J.T * pull) @ J + np.diag(1 / problem.spread**2)
         slope = (J.T * pull) @ r + (p - problem.prior) / problem.spread**2
         while True:
-            step = np.linalg.solve(normal + damping * np.diag(np.diag(normal)), -slope).clip(-LONGEST_STEP, LONGEST_STEP)
+            step = np.linalg.solve(normal + damping * np.diag(np.diag(normal)), -slope).clip(
+                -LONGEST_STEP, LONGEST_STEP
+            )
             lower = _cost(problem, p + step, residual(p + step)[0], weight)
             if lower < cost:
                 break

@@ -1,8 +1,8 @@
 """The valence force field: the factors of `tables/force_field.csv` put together to the matrix F of a molecule.
 
-A bond without an entry takes Badger's rule k = 1.86 mdyn/Å / (r - d_ij)³ (R. M. Badger, J. Chem. Phys. 2, 128 (1934); 3, 710 (1935)),
-d_ij by the periods of the two atoms; the result names it as fall-back.  The constants stand for observed fundamentals, not for
-harmonic frequencies: anharmonicity is absorbed.
+A bond without an entry takes Badger's rule k = 1.86 mdyn/Å / (r - d_ij)³ (R. M. Badger, J. Chem. Phys. 2, 128 (1934);
+3, 710 (1935)), d_ij by the periods of the two atoms; the result names it as fall-back.  The constants stand for
+observed fundamentals, not for harmonic frequencies: anharmonicity is absorbed.
 
 Units: stretch N/m; angles N/m Å² (1 aJ/rad² = 1 mdyn Å = 100 N/m Å²).
 """
@@ -19,11 +19,11 @@ from vibsym.vibrations.naming import bend_name, bond_name, wag_name
 from vibsym.vibrations.surroundings import Surroundings, period
 from vibsym.vibrations.valence import Terms, valence_terms
 
-BADGER = 186.0         # N/m Å³
+BADGER = 186.0  # N/m Å³
 
 
 class BondEntry(NamedTuple):
-    """What the table says of a bond: name of the factor, class, and the constant relative to that at the tabulated length."""
+    """What the table says of a bond: factor, class, constant relative to that at the tabulated length."""
 
     name: str
     bond_class: str
@@ -70,8 +70,8 @@ class BondTable:
 class ForceField:
     """Factors and shares by name; what is not named has the factor 1, or the share 0.
 
-    `constants` are diagonal constants given by the user for whole sets, in N/m (stretches) or N/m Å²; they replace d_q.  `scales`
-    multiply the diagonal constants of sets (refinement).
+    `constants` are diagonal constants given by the user for whole sets, in N/m (stretches) or N/m Å²; they replace
+    d_q.  `scales` multiply the diagonal constants of sets (refinement).
     """
 
     values: Mapping[str, float]
@@ -85,17 +85,26 @@ class ForceField:
 
     def matrix(self, symbols: Sequence[str], positions, sets) -> np.ndarray:
         """Return F (m, m) over the rows of B, N/m for stretches, N/m Å and N/m Å² where angles take part."""
-        return self.matrix_of(self.terms(symbols, positions, sets), self.given(symbols, sets), self.scale(symbols, sets))
+        return self.matrix_of(
+            self.terms(symbols, positions, sets), self.given(symbols, sets), self.scale(symbols, sets)
+        )
 
     def given(self, symbols, sets) -> np.ndarray:
         """Return (m,) the user's diagonal constants, NaN where there is none."""
-        rows = [np.full(len(each) * each.components, self.constants.get(plain_name(each, symbols), np.nan))
-                for each in sets if len(each)]
+        rows = [
+            np.full(len(each) * each.components, self.constants.get(plain_name(each, symbols), np.nan))
+            for each in sets
+            if len(each)
+        ]
         return np.concatenate(rows) if rows else np.zeros(0)
 
     def scale(self, symbols, sets) -> np.ndarray:
         """Return (m,) the scales of the rows."""
-        rows = [np.full(len(each) * each.components, self.scales.get(plain_name(each, symbols), 1.0)) for each in sets if len(each)]
+        rows = [
+            np.full(len(each) * each.components, self.scales.get(plain_name(each, symbols), 1.0))
+            for each in sets
+            if len(each)
+        ]
         return np.concatenate(rows) if rows else np.zeros(0)
 
     def product(self, names) -> float:
@@ -108,7 +117,7 @@ class ForceField:
         return value
 
     def matrix_of(self, terms: Terms, given: np.ndarray | None = None, scales: np.ndarray | None = None) -> np.ndarray:
-        """Return F of given terms; `given` (m,) replaces diagonal constants where it is not NaN, `scales` (m,) multiplies them."""
+        """Return F of given terms; `given` (m,) replaces diagonal constants unless NaN, `scales` multiply."""
         diagonal = np.array([self.product(each.factors) * each.geometry for each in terms.diagonals])
         if given is not None:
             diagonal = np.where(np.isnan(given), diagonal, given)
@@ -161,6 +170,9 @@ def standard_field() -> ForceField:
     rows = read_table("force_field.csv")
     values = {row["name"]: float(row["value"]) for row in rows if not row["name"].startswith("badger ")}
     lengths = {row["name"]: float(row["length"]) for row in rows if row["length"]}
-    periods = {tuple(map(int, row["name"].split()[1].split("-"))): float(row["value"]) for row in rows
-               if row["name"].startswith("badger ")}
+    periods = {
+        tuple(map(int, row["name"].split()[1].split("-"))): float(row["value"])
+        for row in rows
+        if row["name"].startswith("badger ")
+    }
     return ForceField(values, BondTable(lengths, periods))

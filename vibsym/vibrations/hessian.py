@@ -1,11 +1,11 @@
-"""Normal modes of a Cartesian Hessian computed elsewhere, labelled by species even where the geometry is only nearly symmetric.
+"""Normal modes of a Cartesian Hessian computed elsewhere, labelled even where the geometry is nearly symmetric.
 
-The matrix is made symmetric (within SYMMETRIC of its largest element), turned to the standard frame, mass-weighted, and freed of
-translations and rotations at the geometry as read.  Modes of near-equal wavenumber form blocks; in each block the directions that belong
-to one species are found from the species projectors, so that a split degenerate pair, or two modes of different species that
-mix by accident, come apart again.  The weight of a mode is the part of it inside its species; below 0.95 it is flagged.  The
-modes are then counted out so that every species has as many as Γvib says (E. B. Wilson, J. C. Decius, P. C. Cross, Molecular
-Vibrations, 1955, ch. 6).
+The matrix is made symmetric (within SYMMETRIC of its largest element), turned to the standard frame, mass-weighted,
+and freed of translations and rotations at the geometry as read.  Modes of near-equal wavenumber form blocks; in each
+block the directions that belong to one species are found from the species projectors, so that a split degenerate pair,
+or two modes of different species that mix by accident, come apart again.  The weight of a mode is the part of it
+inside its species; below 0.95 it is flagged.  The modes are then counted out so that every species has as many as Γvib
+says (E. B. Wilson, J. C. Decius, P. C. Cross, Molecular Vibrations, 1955, ch. 6).
 """
 
 from dataclasses import dataclass
@@ -14,18 +14,18 @@ from pathlib import Path
 import numpy as np
 
 from vibsym.errors import VibsymError
+from vibsym.groups.projection import symmetry_vectors
 from vibsym.structures.symmetry import Symmetry
 from vibsym.vibrations.bmatrix import rigid_motions
 from vibsym.vibrations.cartesian import displacements
 from vibsym.vibrations.normal_modes import Mode, wavenumbers_of
 from vibsym.vibrations.numbering import numbered
-from vibsym.groups.projection import symmetry_vectors
 from vibsym.vibrations.units import HESSIAN_UNITS
 
-SYMMETRIC = 1e-3          # of the largest element: how far H may be from its transpose
-NEAR = 5.0                # cm-1; modes closer than this are projected as one block
-DOUBTFUL = 0.95           # weight below which a label is flagged
-HIGHEST, LOWEST = 6000.0, 30.0   # cm-1; beyond, the unit is wrong
+SYMMETRIC = 1e-3  # of the largest element: how far H may be from its transpose
+NEAR = 5.0  # cm-1; modes closer than this are projected as one block
+DOUBTFUL = 0.95  # weight below which a label is flagged
+HIGHEST, LOWEST = 6000.0, 30.0  # cm-1; beyond, the unit is wrong
 
 
 @dataclass(frozen=True, eq=False)
@@ -33,12 +33,12 @@ class HessianModes:
     """Modes of an imported Hessian, what translations and rotations had, and what to know."""
 
     modes: tuple[Mode, ...]
-    rigid: tuple[float, ...]        # cm-1, of translations and rotations before they were taken out
+    rigid: tuple[float, ...]  # cm-1, of translations and rotations before they were taken out
     notes: tuple[str, ...]
 
 
 def read_hessian(path: str, atoms: int) -> np.ndarray:
-    """Return the (3N, 3N) numbers of a file: text parted by blanks or commas, or a NumPy .npy file (told by content)."""
+    """Return the (3N, 3N) numbers of a file: text with blanks or commas, or .npy (told by content)."""
     try:
         raw = Path(path).read_bytes()
     except OSError as error:
@@ -70,11 +70,15 @@ def _numbers(raw: bytes, path: str) -> np.ndarray:
             try:
                 found.append(float(word.replace("D", "e").replace("d", "e")))
             except ValueError:
-                raise VibsymError(f"{path}, line {number}: '{word[:30]}' is not a number; a Hessian is 3N × 3N numbers") from None
+                raise VibsymError(
+                    f"{path}, line {number}: '{word[:30]}' is not a number; a Hessian is 3N × 3N numbers"
+                ) from None
     return np.array(found)
 
 
-def hessian_modes(symmetry: Symmetry, hessian: np.ndarray, unit: str = "N/m", mass_weighted: bool = False) -> HessianModes:
+def hessian_modes(
+    symmetry: Symmetry, hessian: np.ndarray, unit: str = "N/m", mass_weighted: bool = False
+) -> HessianModes:
     """Return the modes of a Hessian given in the orientation of the structure as read.
 
     `unit` is a key of HESSIAN_UNITS; with `mass_weighted` the elements are already divided by √(m_i m_j), m in u.
@@ -99,8 +103,10 @@ def hessian_modes(symmetry: Symmetry, hessian: np.ndarray, unit: str = "N/m", ma
     values, vectors = wavenumbers_of(squares), inner @ vectors
     _check_unit(values, unit)
     if np.abs(loose).max() > 50:
-        notes.append(f"translations and rotations had up to {np.abs(loose).max():.0f} cm-1 before they were taken out: "
-                     "was the Hessian computed at this geometry and in this orientation?")
+        notes.append(
+            f"translations and rotations had up to {np.abs(loose).max():.0f} cm-1 before they were taken out: "
+            "was the Hessian computed at this geometry and in this orientation?"
+        )
     modes = _labelled(symmetry, H, values, vectors, notes)
     return HessianModes(modes, tuple(float(value) for value in loose), tuple(notes))
 
@@ -111,10 +117,14 @@ def _symmetric(hessian: np.ndarray, notes: list[str]) -> np.ndarray:
         raise VibsymError("the Hessian is zero throughout")
     if gap.max() > SYMMETRIC * largest:
         i, j = np.unravel_index(int(gap.argmax()), gap.shape)
-        raise VibsymError(f"the Hessian is not symmetric: element {i + 1},{j + 1} is {hessian[i, j]:g}, element {j + 1},{i + 1} is "
-                          f"{hessian[j, i]:g}; they may differ by {SYMMETRIC:g} of the largest element ({largest:g})")
+        raise VibsymError(
+            f"the Hessian is not symmetric: element {i + 1},{j + 1} is {hessian[i, j]:g}, element {j + 1},{i + 1} is "
+            f"{hessian[j, i]:g}; they may differ by {SYMMETRIC:g} of the largest element ({largest:g})"
+        )
     if gap.max() > 0:
-        notes.append(f"the Hessian was made symmetric (largest difference {gap.max() / largest:.1e} of the largest element)")
+        notes.append(
+            f"the Hessian was made symmetric (largest difference {gap.max() / largest:.1e} of the largest element)"
+        )
     return (hessian + hessian.T) / 2
 
 
@@ -122,11 +132,15 @@ def _check_unit(values: np.ndarray, unit: str) -> None:
     highest = np.abs(values).max(initial=0.0)
     if values.size and not LOWEST <= highest <= HIGHEST:
         others = ", ".join(name for name in HESSIAN_UNITS if name != unit)
-        raise VibsymError(f"the highest wavenumber would be {highest:.3g} cm-1: the Hessian is not in {unit}; "
-                          f"try --hessian-unit with {others}, or --mass-weighted if it is")
+        raise VibsymError(
+            f"the highest wavenumber would be {highest:.3g} cm-1: the Hessian is not in {unit}; "
+            f"try --hessian-unit with {others}, or --mass-weighted if it is"
+        )
 
 
-def _labelled(symmetry: Symmetry, H: np.ndarray, values: np.ndarray, vectors: np.ndarray, notes: list[str]) -> tuple[Mode, ...]:
+def _labelled(
+    symmetry: Symmetry, H: np.ndarray, values: np.ndarray, vectors: np.ndarray, notes: list[str]
+) -> tuple[Mode, ...]:
     gamma = displacements(symmetry).gamma_vib
     frames = _species_rows(symmetry)
     labels = [label for label in frames if label in gamma]
@@ -143,16 +157,30 @@ def _labelled(symmetry: Symmetry, H: np.ndarray, values: np.ndarray, vectors: np
         species = symmetry.group.species_named(label)
         own = sorted((k for k in range(len(squares)) if places[k] == number), key=lambda k: squares[k])
         for start in range(0, len(own), species.degeneracy):
-            members = own[start:start + species.degeneracy]
+            members = own[start : start + species.degeneracy]
             weight = float(np.mean([weights[k, number] for k in members]))
             value = float(np.mean(wavenumbers_of(np.array([squares[k] for k in members]))))
-            modes.append(Mode("", label, species.degeneracy, value, species.infrared, species.raman, species.polarised, (),
-                              min(weight, 1.0), columns[members[0]]))
+            modes.append(
+                Mode(
+                    "",
+                    label,
+                    species.degeneracy,
+                    value,
+                    species.infrared,
+                    species.raman,
+                    species.polarised,
+                    (),
+                    min(weight, 1.0),
+                    columns[members[0]],
+                )
+            )
     _check_totals(weights, labels, gamma, symmetry, notes)
     doubtful = sum(mode.weight < DOUBTFUL for mode in modes)
     if doubtful:
-        notes.append(f"{doubtful} of {len(modes)} labels have a weight below {DOUBTFUL}: the geometry is far from "
-                     f"{symmetry.group.symbol} for these modes")
+        notes.append(
+            f"{doubtful} of {len(modes)} labels have a weight below {DOUBTFUL}: the geometry is far from "
+            f"{symmetry.group.symbol} for these modes"
+        )
     return numbered(modes, symmetry)
 
 
@@ -186,8 +214,11 @@ def _parted(H: np.ndarray, block: np.ndarray, frames: list[np.ndarray]):
 
 def _counted_out(weights: np.ndarray, labels: list[str], gamma: dict[str, int], symmetry: Symmetry) -> np.ndarray:
     """Return the species of every vector so that each has as many as Γvib says, with the largest total weight."""
-    slots = [number for number, label in enumerate(labels)
-             for _ in range(gamma[label] * symmetry.group.species_named(label).degeneracy)]
+    slots = [
+        number
+        for number, label in enumerate(labels)
+        for _ in range(gamma[label] * symmetry.group.species_named(label).degeneracy)
+    ]
     best = weights.argmax(axis=1)
     if sorted(best.tolist()) == slots:
         return best
@@ -201,9 +232,14 @@ def _counted_out(weights: np.ndarray, labels: list[str], gamma: dict[str, int], 
 
 def _check_totals(weights, labels, gamma, symmetry, notes) -> None:
     best = weights.argmax(axis=1)
-    counts = {label: int((best == number).sum()) // symmetry.group.species_named(label).degeneracy
-              for number, label in enumerate(labels)}
+    counts = {
+        label: int((best == number).sum()) // symmetry.group.species_named(label).degeneracy
+        for number, label in enumerate(labels)
+    }
     wrong = [label for label in labels if counts[label] != gamma[label]]
     if wrong:
-        notes.append("the modes nearest to " + ", ".join(f"{label} are {counts[label]}, not {gamma[label]}" for label in wrong)
-                     + ": labels were counted out to fit Γvib")
+        notes.append(
+            "the modes nearest to "
+            + ", ".join(f"{label} are {counts[label]}, not {gamma[label]}" for label in wrong)
+            + ": labels were counted out to fit Γvib"
+        )

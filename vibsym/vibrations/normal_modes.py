@@ -1,12 +1,14 @@
 """Normal modes by the GF method, species by species.
 
-With B the coordinates and F their force constants, H = M^-1/2 B'FB M^-1/2 has the eigenvalues λ of GF and ν = (λ)^(1/2)/2πc
-(E. B. Wilson, J. Chem. Phys. 7, 1047 (1939); E. B. Wilson, J. C. Decius, P. C. Cross, Molecular Vibrations, 1955, ch. 4 and 6).
-H is taken in symmetry displacements of one component of a species, with translations and rotations taken out; redundant
-coordinates do no harm.  A pair of conjugate species is solved as a whole, [[A, -B], [B, A]], each value twice.
+With B the coordinates and F their force constants, H = M^-1/2 B'FB M^-1/2 has the eigenvalues λ of GF and ν =
+(λ)^(1/2)/2πc (E. B. Wilson, J. Chem. Phys. 7, 1047 (1939); E. B. Wilson, J. C. Decius, P. C. Cross, Molecular
+Vibrations, 1955, ch. 4 and 6). H is taken in symmetry displacements of one component of a species, with translations
+and rotations taken out; redundant coordinates do no harm.  A pair of conjugate species is solved as a whole, [[A, -B],
+[B, A]], each value twice.
 
-Potential energy distribution: the share of a set is Σ_i S_i (F S)_i / Σ all, i over its coordinates (Y. Morino, K. Kuchitsu,
-J. Chem. Phys. 20, 1809 (1952)); interaction constants count half for each side, so a small share can be negative.
+Potential energy distribution: the share of a set is Σ_i S_i (F S)_i / Σ all, i over its coordinates (Y. Morino, K.
+Kuchitsu, J. Chem. Phys. 20, 1809 (1952)); interaction constants count half for each side, so a small share can be
+negative.
 """
 
 from collections.abc import Sequence
@@ -21,15 +23,15 @@ from vibsym.vibrations.cartesian import displacements
 from vibsym.vibrations.redundancy import species_frames
 from vibsym.vibrations.units import WAVENUMBER
 
-RIGID = 0.5           # singular value (0 or 1 but for rounding) above which a direction of a species is a rigid motion
+RIGID = 0.5  # singular value (0 or 1 but for rounding) above which a direction of a species is a rigid motion
 
 
 class SpeciesBlock(NamedTuple):
-    """One species: orthonormal vibrational directions (3N, k) in mass-weighted displacements, and rows = B M^-1/2 U (m, k)."""
+    """One species: vibrational directions U (3N, k), mass-weighted, orthonormal; rows = B M^-1/2 U."""
 
     species: str
     degeneracy: int
-    norm: int              # 2: pair of conjugate species, both components side by side
+    norm: int  # 2: pair of conjugate species, both components side by side
     modes: int
     vectors: np.ndarray
     rows: np.ndarray | None
@@ -37,17 +39,17 @@ class SpeciesBlock(NamedTuple):
 
 @dataclass(frozen=True, eq=False)
 class Mode:
-    """A normal mode; a degenerate set is one. `vector` (3N,) is one component in mass-weighted displacements, standard frame."""
+    """A normal mode; a degenerate set is one. `vector` (3N,) is one component, mass-weighted."""
 
-    name: str                   # "ν3"
+    name: str  # "ν3"
     species: str
     degeneracy: int
-    wavenumber: float           # cm-1; negative: imaginary
+    wavenumber: float  # cm-1; negative: imaginary
     infrared: bool
     raman: bool
     polarised: bool
-    shares: tuple[tuple[str, float], ...] = ()     # (set, share), the largest first
-    weight: float = 1.0                            # of the species in an imported mode
+    shares: tuple[tuple[str, float], ...] = ()  # (set, share), the largest first
+    weight: float = 1.0  # of the species in an imported mode
     vector: np.ndarray = field(default=None, repr=False)
 
     @property
@@ -57,9 +59,17 @@ class Mode:
 
     def to_dict(self) -> dict:
         """Return the mode for JSON."""
-        return {"mode": self.name, "species": self.species, "degeneracy": self.degeneracy, "wavenumber": round(self.wavenumber, 4),
-                "imaginary": self.imaginary, "infrared": self.infrared, "raman": self.raman, "weight": round(float(self.weight), 6),
-                "shares": [{"set": name, "share": round(share, 4)} for name, share in self.shares]}
+        return {
+            "mode": self.name,
+            "species": self.species,
+            "degeneracy": self.degeneracy,
+            "wavenumber": round(self.wavenumber, 4),
+            "imaginary": self.imaginary,
+            "infrared": self.infrared,
+            "raman": self.raman,
+            "weight": round(float(self.weight), 6),
+            "shares": [{"set": name, "share": round(share, 4)} for name, share in self.shares],
+        }
 
 
 def species_blocks(symmetry: Symmetry, sets: Sequence = ()) -> list[SpeciesBlock]:
@@ -96,13 +106,20 @@ def normal_modes(symmetry: Symmetry, sets: Sequence, F: np.ndarray, shares: bool
         parts = np.zeros((len(sets), len(keep)))
         np.add.at(parts, owner, energy)
         for column, number in enumerate(keep):
-            found.append(_mode(symmetry, block, float(values[number]), block.vectors @ vectors[:, number],
-                               _distribution(sets, parts[:, column]) if shares else ()))
+            found.append(
+                _mode(
+                    symmetry,
+                    block,
+                    float(values[number]),
+                    block.vectors @ vectors[:, number],
+                    _distribution(sets, parts[:, column]) if shares else (),
+                )
+            )
     return numbered(found, symmetry)
 
 
 def rigid_wavenumbers(symmetry: Symmetry, hessian: np.ndarray) -> np.ndarray:
-    """Return the wavenumbers (cm-1, imaginary ones negative) that a mass-weighted Hessian gives to translations and rotations."""
+    """Return the wavenumbers that a mass-weighted Hessian gives to translations and rotations."""
     motions = rigid_frame(symmetry)
     return wavenumbers_of(np.linalg.eigvalsh(motions.T @ hessian @ motions))
 
@@ -119,10 +136,22 @@ def wavenumbers_of(squares: np.ndarray) -> np.ndarray:
     return np.sign(squares) * WAVENUMBER * np.sqrt(np.abs(squares))
 
 
-def _mode(symmetry: Symmetry, block: SpeciesBlock, square: float, vector: np.ndarray, shares, weight: float = 1.0) -> Mode:
+def _mode(
+    symmetry: Symmetry, block: SpeciesBlock, square: float, vector: np.ndarray, shares, weight: float = 1.0
+) -> Mode:
     species = symmetry.group.species_named(block.species)
-    return Mode("", block.species, block.degeneracy, float(wavenumbers_of(np.array(square))), species.infrared, species.raman,
-                species.polarised, shares, weight, vector)
+    return Mode(
+        "",
+        block.species,
+        block.degeneracy,
+        float(wavenumbers_of(np.array(square))),
+        species.infrared,
+        species.raman,
+        species.polarised,
+        shares,
+        weight,
+        vector,
+    )
 
 
 def _distribution(sets, energies: np.ndarray) -> tuple[tuple[str, float], ...]:

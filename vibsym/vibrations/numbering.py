@@ -1,8 +1,8 @@
 """Number the fundamentals ν1, ν2, ... as Herzberg does.
 
-Species by species, g before u and ′ before ″ within a kind (Σg+ Σu+ Πg Πu; A1′ A1″ A2′ A2″ E′ E″; A1g A1u A2g A2u Eg Eu T1g T1u), by
-falling wavenumber within a species; in a linear triatomic molecule the bend is ν2 (G. Herzberg, Infrared and Raman
-Spectra, 1945, p. 272).  This is not the order in which character tables list the species.
+Species by species, g before u and ′ before ″ within a kind (Σg+ Σu+ Πg Πu; A1′ A1″ A2′ A2″ E′ E″; A1g A1u A2g A2u Eg
+Eu T1g T1u), by falling wavenumber within a species; in a linear triatomic molecule the bend is ν2 (G. Herzberg,
+Infrared and Raman Spectra, 1945, p. 272).  This is not the order in which character tables list the species.
 
 >>> sorted(["A2''", "E'", "A1'"], key=herzberg_key)
 ["A1'", "A2''", "E'"]

@@ -2,8 +2,9 @@
 
     minimise  Σ (ln(calculated/observed)/0.01)²  +  Σ (ln(scale)/0.5)²
 
-over one scale for each set of coordinates; interactions, shares of diagonal constants, follow.  The second term damps what the
-wavenumbers do not determine.  Isotopologues share the scales and are refined together.  K. Levenberg (1944), D. W. Marquardt (1963).
+over one scale for each set of coordinates; interactions, shares of diagonal constants, follow.  The second term damps
+what the wavenumbers do not determine.  Isotopologues share the scales and are refined together.  K. Levenberg (1944),
+D. W. Marquardt (1963).
 """
 
 from collections.abc import Sequence
@@ -33,8 +34,14 @@ class Residual:
 
     def to_dict(self) -> dict:
         """Return the row for JSON."""
-        return {"structure": self.structure, "mode": self.mode, "species": self.species, "observed": self.observed,
-                "before": round(self.before, 2), "after": round(self.after, 2)}
+        return {
+            "structure": self.structure,
+            "mode": self.mode,
+            "species": self.species,
+            "observed": self.observed,
+            "before": round(self.before, 2),
+            "after": round(self.after, 2),
+        }
 
 
 @dataclass(frozen=True, eq=False)
@@ -47,8 +54,10 @@ class Refinement:
 
     def to_dict(self) -> dict:
         """Return what JSON holds."""
-        return {"scales": {name: round(value, 5) for name, value in self.scales.items()},
-                "residuals": [row.to_dict() for row in self.residuals]}
+        return {
+            "scales": {name: round(value, 5) for name, value in self.scales.items()},
+            "residuals": [row.to_dict() for row in self.residuals],
+        }
 
 
 class _Molecule:
@@ -63,8 +72,9 @@ class _Molecule:
         self.seen = _matched(modes, observed, self.name)
 
     def modes(self, field: ForceField, scales: dict[str, float]):
-        rows = np.concatenate([np.full(len(each) * each.components, scales.get(name, 1.0))
-                               for each, name in zip(self.sets, self.names)])
+        rows = np.concatenate(
+            [np.full(len(each) * each.components, scales.get(name, 1.0)) for each, name in zip(self.sets, self.names)]
+        )
         F = field.matrix_of(self.terms, self.given, rows)
         return normal_modes(self.symmetry, self.sets, F, shares=False)
 
@@ -76,7 +86,7 @@ class _Molecule:
 
 
 def refine(field: ForceField, molecules: Sequence[tuple[Symmetry, Sequence]]) -> Refinement:
-    """Return the field refined to assigned fundamentals: pairs of a symmetry and modes with name, species, wavenumber."""
+    """Return the field refined to pairs of a symmetry and its assigned modes."""
     prepared = [_Molecule(symmetry, observed, field) for symmetry, observed in molecules]
     names = list(dict.fromkeys(name for each in prepared for name in each.names))
     observed = np.log(np.concatenate([[value for *_, value in each.seen] for each in prepared]))
@@ -95,8 +105,15 @@ def refine(field: ForceField, molecules: Sequence[tuple[Symmetry, Sequence]]) ->
     before = values = calculated(p)
     total, r = cost(p, values)
     for _ in range(ROUNDS):
-        J = np.array([(np.log(np.maximum(calculated(p + STEP * unit), 1e-3)) - np.log(np.maximum(values, 1e-3))) / STEP
-                      for unit in np.eye(len(names))]).T / ERROR
+        J = (
+            np.array(
+                [
+                    (np.log(np.maximum(calculated(p + STEP * unit), 1e-3)) - np.log(np.maximum(values, 1e-3))) / STEP
+                    for unit in np.eye(len(names))
+                ]
+            ).T
+            / ERROR
+        )
         normal = J.T @ J + np.eye(len(names)) / SPREAD**2
         slope = J.T @ r + p / SPREAD**2
         while damping < 1e8:
@@ -122,7 +139,7 @@ def refine(field: ForceField, molecules: Sequence[tuple[Symmetry, Sequence]]) ->
 
 
 def _matched(modes, observed, name: str) -> list[tuple[str, str, int, float]]:
-    """Return (mode, species, place in the species, wavenumber): by the number of the mode, else by falling wavenumber."""
+    """Return (mode, species, place, wavenumber): by the number of the mode, else by falling wavenumber."""
     places = {}
     counts: dict[str, int] = {}
     for mode in sorted(modes, key=lambda mode: -mode.wavenumber):
@@ -132,9 +149,14 @@ def _matched(modes, observed, name: str) -> list[tuple[str, str, int, float]]:
     for species in dict.fromkeys(each.species for each in observed):
         own = sorted((each for each in observed if each.species == species), key=lambda each: -each.wavenumber)
         if species not in counts or len(own) > counts[species]:
-            raise VibsymError(f"{name}: {len(own)} assigned fundamentals of species {species}; the structure has {counts.get(species, 0)}")
+            raise VibsymError(
+                f"{name}: {len(own)} assigned fundamentals of species {species}; "
+                f"the structure has {counts.get(species, 0)}"
+            )
         known = [places.get(each.name) for each in own]
-        numbered = all(place and place[0] == species for place in known) and len({place[1] for place in known if place}) == len(own)
+        numbered = all(place and place[0] == species for place in known) and len(
+            {place[1] for place in known if place}
+        ) == len(own)
         for rank, (each, place) in enumerate(zip(own, known)):
             found.append((each.name, species, place[1] if numbered else rank, float(each.wavenumber)))
     return found

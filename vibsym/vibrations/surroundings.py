@@ -1,8 +1,8 @@
 """What a force field asks of the surroundings of a bond or a centre: neighbours, planarity, bond class, periods.
 
-Bond classes say how strong a bond of two elements is: for bonds to hydrogen how many neighbours the heavier atom has (`H4`, `H3`,
-`H2`), with `Hald` for the C-H of an aldehyde or formyl group and `Hbr` for a bridging hydrogen; for others the bond order
-(`1`, `1.5`, `2`, `3`), from the length: the class whose tabulated length comes nearest.
+Bond classes say how strong a bond of two elements is: for bonds to hydrogen how many neighbours the heavier atom has
+(`H4`, `H3`, `H2`), with `Hald` for the C-H of an aldehyde or formyl group and `Hbr` for a bridging hydrogen; for
+others the bond order (`1`, `1.5`, `2`, `3`), from the length: the class whose tabulated length comes nearest.
 """
 
 from itertools import combinations
@@ -13,9 +13,22 @@ from vibsym.structures.elements import atomic_number, covalent_radius
 
 NOBLE = (2, 10, 18, 36, 54, 86)
 LONGEST_SMALL_RING = 3
-# van der Waals radii in Å: A. Bondi, J. Phys. Chem. 68, 441 (1964), from memory; elsewhere covalent radius + 0.9 (our own rule).
-VAN_DER_WAALS = {"H": 1.2, "C": 1.7, "N": 1.55, "O": 1.52, "F": 1.47, "Si": 2.1, "P": 1.8, "S": 1.8, "Cl": 1.75, "Se": 1.9, "Br": 1.85,
-                 "I": 1.98}
+# van der Waals radii in Å: A. Bondi, J. Phys. Chem. 68, 441 (1964), from memory; elsewhere covalent radius + 0.9 (our
+# own rule).
+VAN_DER_WAALS = {
+    "H": 1.2,
+    "C": 1.7,
+    "N": 1.55,
+    "O": 1.52,
+    "F": 1.47,
+    "Si": 2.1,
+    "P": 1.8,
+    "S": 1.8,
+    "Cl": 1.75,
+    "Se": 1.9,
+    "Br": 1.85,
+    "I": 1.98,
+}
 
 
 def period(element: str) -> int:
@@ -44,8 +57,12 @@ class Surroundings:
                 self.planar.update(each.atoms[:, 0].tolist())
             elif each.kind == "linear bend":
                 self.straight.update(each.atoms[:, 1].tolist())
-        self.small_ring = {centre for centre, around in enumerate(self.beside)
-                           for i, k in combinations(around, 2) if k in self.beside[i]}
+        self.small_ring = {
+            centre
+            for centre, around in enumerate(self.beside)
+            for i, k in combinations(around, 2)
+            if k in self.beside[i]
+        }
 
     def distance(self, i: int, j: int) -> float:
         """Return the distance of two atoms, Å."""
@@ -64,7 +81,7 @@ class Surroundings:
         return str(min(number, 6))
 
     def end(self, atom: int) -> str:
-        """Return the element of an end of a bend, with `l` where the end itself is a straight centre (M-C-O)."""
+        """Return the element of an end of a bend, with `l` where it is itself a straight centre (M-C-O)."""
         return self.symbols[atom] + ("l" if atom in self.straight else "")
 
     def elements(self, i: int, j: int) -> str:
@@ -85,7 +102,7 @@ class Surroundings:
         return f"H{min(len(around), 4)}"
 
     def bond_class(self, i: int, j: int, known: dict[str, float]) -> str:
-        """Return the class of a bond among the known ones of its elements (class: tabulated length); without any `1`."""
+        """Return the class of a bond among the known ones of its elements (class: length); without any `1`."""
         if "H" in (self.symbols[i], self.symbols[j]):
             wanted = self.hydrogen_class(i, j)
             if wanted in known or not known:

@@ -6,12 +6,12 @@ CODATA 2018: atomic mass constant 1.66053906660e-27 kg, c = 299792458 m/s (exact
 
 from math import pi, sqrt
 
-ATOMIC_MASS = 1.66053906660e-27     # kg
-LIGHT = 299792458e2                 # cm/s
-HARTREE = 4.3597447222071e-18       # J
-BOHR = 0.529177210903e-10           # m
-ELECTRON_MASS = 9.1093837015e-31    # kg
-ELECTRONVOLT = 1.602176634e-19      # J
+ATOMIC_MASS = 1.66053906660e-27  # kg
+LIGHT = 299792458e2  # cm/s
+HARTREE = 4.3597447222071e-18  # J
+BOHR = 0.529177210903e-10  # m
+ELECTRON_MASS = 9.1093837015e-31  # kg
+ELECTRONVOLT = 1.602176634e-19  # J
 
 # cm-1 for 1 N/m and 1 u
 WAVENUMBER = sqrt(1 / ATOMIC_MASS) / (2 * pi * LIGHT)

@@ -2,15 +2,16 @@
 
     2 V = Σ d_q S_q²  +  Σ k_AB (δ r_AB)²  +  2 Σ_{q<p} w_qp s_qp (d_q d_p)^(1/2) S_q S_p
 
-- Diagonal constants d_q: stretches d = k [(r0 - d_ij)/(r - d_ij)]³, with k at the tabulated length r0 and d_ij of Badger's rule;
-  bends and linear bends d = H r1 r2; wags d; torsions d = t/n for the sum over n dihedral angles.
-- 1,3-repulsion between the ends A, B of every bend (T. Simanouti, J. Chem. Phys. 17, 245 (1949); second derivative only):
-  δr_AB = (r1 - r2 cos a)/r_AB δr1 + (r2 - r1 cos a)/r_AB δr2 + r1 r2 sin a/r_AB δa, k_AB falls as exp(-6 r_AB/(R_A + R_B)).
-- Interactions, as shares s of the geometric mean of two diagonal constants: two bonds at one centre, two bends at one centre or at
-  the two ends of a bond (w = cosine of the dihedral angle), adjacent linear bends, wags and torsions.
+- Diagonal constants d_q: stretches d = k [(r0 - d_ij)/(r - d_ij)]³, with k at the tabulated length r0 and d_ij of
+  Badger's rule; bends and linear bends d = H r1 r2; wags d; torsions d = t/n for the sum over n dihedral angles.
+- 1,3-repulsion between the ends A, B of every bend (T. Simanouti, J. Chem. Phys. 17, 245 (1949); second derivative
+  only): δr_AB = (r1 - r2 cos a)/r_AB δr1 + (r2 - r1 cos a)/r_AB δr2 + r1 r2 sin a/r_AB δa, k_AB falls as exp(-6
+  r_AB/(R_A + R_B)).
+- Interactions, as shares s of the geometric mean of two diagonal constants: two bonds at one centre, two bends at one
+  centre or at the two ends of a bond (w = cosine of the dihedral angle), adjacent linear bends, wags and torsions.
 
-Every constant is a product of factors named in `tables/force_field.csv`: a general one (kind), one for the centre, one for
-each end, and one for the case itself, so that a molecule with unusual elements still gets a sensible field.
+Every constant is a product of factors named in `tables/force_field.csv`: a general one (kind), one for the centre, one
+for each end, and one for the case itself, so that a molecule with unusual elements still gets a sensible field.
 """
 
 from itertools import combinations
@@ -20,8 +21,8 @@ import numpy as np
 
 from vibsym.vibrations.surroundings import Surroundings, contact, period
 
-STRAIGHT = -0.996         # cosine below which two bonds at a centre are trans
-SMALL_ANGLE = 0.259       # cosine of 75 degrees: angles inside three-membered rings
+STRAIGHT = -0.996  # cosine below which two bonds at a centre are trans
+SMALL_ANGLE = 0.259  # cosine of 75 degrees: angles inside three-membered rings
 
 
 class Diagonal(NamedTuple):
@@ -117,8 +118,16 @@ class _Builder:
         one, two = sorted((around.end(i), around.end(k)))
         element = around.symbols[centre]
         ends = {0: "XX", 1: "HX", 2: "HH"}[(one == "H") + (two == "H")]
-        return factors("bend", f"bend shape {shape}", f"bend centre {element}", f"bend centre {element}{around.shape(centre)}",
-                       f"bend end {one}", f"bend end {two}", f"bend ends {ends}", f"bend {one}-{element}-{two} {shape}")
+        return factors(
+            "bend",
+            f"bend shape {shape}",
+            f"bend centre {element}",
+            f"bend centre {element}{around.shape(centre)}",
+            f"bend end {one}",
+            f"bend end {two}",
+            f"bend ends {ends}",
+            f"bend {one}-{element}-{two} {shape}",
+        )
 
     def _bend(self, each, number, atoms):
         i, centre, k = atoms
@@ -130,8 +139,13 @@ class _Builder:
         i, centre, k = atoms
         one, two = sorted((self.around.symbols[i], self.around.symbols[k]))
         element = self.around.symbols[centre]
-        names = factors("linear bend", f"linear bend centre {element}", f"linear bend end {one}", f"linear bend end {two}",
-                        f"linear bend {one}-{element}-{two}")
+        names = factors(
+            "linear bend",
+            f"linear bend centre {element}",
+            f"linear bend end {one}",
+            f"linear bend end {two}",
+            f"linear bend {one}-{element}-{two}",
+        )
         size = self.around.distance(i, centre) * self.around.distance(centre, k)
         for direction in each.directions[number]:
             self.straight_bends.append((len(self.diagonals), tuple(atoms), direction))
@@ -146,7 +160,9 @@ class _Builder:
             ends = ends[:2]
         element, names = self.around.symbols[centre], sorted(self.around.symbols[atom] for atom in ends)
         own = f"{kind} {element} {'-'.join(names)}"
-        self.diagonals.append(Diagonal(factors(kind, f"{kind} centre {element}", *(f"{kind} end {name}" for name in names), own), 1.0))
+        self.diagonals.append(
+            Diagonal(factors(kind, f"{kind} centre {element}", *(f"{kind} end {name}" for name in names), own), 1.0)
+        )
 
     def _torsion(self, each, number, atoms):
         around, (a, b) = self.around, (atoms[0], atoms[-1])
@@ -184,7 +200,9 @@ class _Builder:
         near = np.exp(-6.0 * (apart / (contact(one) + contact(two)) - 0.8))
         rows = self.stretch_row[frozenset((i, centre))], self.stretch_row[frozenset((k, centre))], row
         slopes = (r1 - r2 * cosine) / apart, (r2 - r1 * cosine) / apart, r1 * r2 * np.sqrt(1 - cosine * cosine) / apart
-        return Repulsion(factors(f"repulsion {hydrogens} H", f"repulsion {one}-{two}"), float(near), rows, tuple(map(float, slopes)))
+        return Repulsion(
+            factors(f"repulsion {hydrogens} H", f"repulsion {one}-{two}"), float(near), rows, tuple(map(float, slopes))
+        )
 
     def _two_bonds(self, i, centre, k, cosine) -> list[Interaction]:
         bonds = [frozenset((i, centre)), frozenset((k, centre))]
@@ -197,13 +215,18 @@ class _Builder:
             name = f"bonds {hydrogens} H {multiple} multiple {6 if number >= 5 else max(3, number)}"
         symbols = self.around.symbols
         ends = sorted(f"{symbols[atom]}({self.class_of[bond]})" for atom, bond in zip((i, k), bonds))
-        own = f"bonds at {symbols[centre]} {self.around.shape(centre)}{' trans' if cosine < STRAIGHT else ''} {' '.join(ends)}"
+        opposite = " trans" if cosine < STRAIGHT else ""
+        own = f"bonds at {symbols[centre]} {self.around.shape(centre)}{opposite} {' '.join(ends)}"
         return [Interaction(each, self.stretch_row[bonds[0]], self.stretch_row[bonds[1]], 1.0) for each in (name, own)]
 
     def _two_bends(self, centre) -> list[Interaction]:
         around, found = self.around, []
         shape = around.shape(centre)
-        ends = [pair for pair in combinations(sorted(around.beside[centre]), 2) if (pair[0], centre, pair[1]) in self.bend_row]
+        ends = [
+            pair
+            for pair in combinations(sorted(around.beside[centre]), 2)
+            if (pair[0], centre, pair[1]) in self.bend_row
+        ]
         light = [around.symbols[atom] == "H" for atom in range(len(around.symbols))]
         for one, two in combinations(ends, 2):
             common = set(one) & set(two)
@@ -238,9 +261,15 @@ class _Builder:
                     dihedral = float(u @ v / np.sqrt((u @ u) * (v @ v)))
                     light = (around.symbols[i] == "H") + (around.symbols[k] == "H")
                     name = f"bends across a bond {light} H {flat}"
-                    sides = sorted((f"{around.symbols[i]}-{around.symbols[c]}{around.shape(c)}",
-                                    f"{around.symbols[k]}-{around.symbols[e]}{around.shape(e)}"))
-                    found += [Interaction(each, one, two, dihedral) for each in (name, f"bends across {' '.join(sides)}")]
+                    sides = sorted(
+                        (
+                            f"{around.symbols[i]}-{around.symbols[c]}{around.shape(c)}",
+                            f"{around.symbols[k]}-{around.symbols[e]}{around.shape(e)}",
+                        )
+                    )
+                    found += [
+                        Interaction(each, one, two, dihedral) for each in (name, f"bends across {' '.join(sides)}")
+                    ]
         return found
 
     def _out_of_plane(self) -> list[Interaction]:
