@@ -12,6 +12,7 @@ import numpy as np
 from vibsym.report.scene import Motion, Scene, tint_of
 
 ARROW = 0.85                   # Å, of the largest displacement in a drawing
+CROWDED = 20                   # atoms; in a larger structure the far side is drawn faintly
 LETTERED = 9.0                 # px; smaller discs carry no letter
 TINTS = {"hydrogen": "#ffffff", "carbon": "#c9c5bb", "nitrogen": "#b9c8ee", "oxygen": "#f3b9a8", "halogen": "#bfe0bd",
          "third": "#f2d992", "noble": "#cfe4ea", "metal": "#d9c2e6", "dummy": "#ffffff"}
@@ -119,11 +120,21 @@ def _disc(label: str, place: tuple[float, float], radius: float) -> str:
 
 
 def _arrows(scene: Scene, flat: np.ndarray, motion: Motion, box: _Frame) -> list[str]:
-    """Return the displacements: one path of shafts with its halo, one of heads, one of rings."""
+    """Return the displacements; of a large structure those on the far side are faint and come first."""
+    far = flat[:, 2] < -0.15 * scene.reach if len(flat) > CROWDED else np.zeros(len(flat), bool)
+    parts = []
+    for chosen, faint in ((far, True), (~far, False)):
+        drawn = "".join(_arrows_of(scene, flat, motion, box, np.flatnonzero(chosen)))
+        parts.append(f'<g opacity="0.3">{drawn}</g>' if faint and drawn else drawn)
+    return parts
+
+
+def _arrows_of(scene: Scene, flat: np.ndarray, motion: Motion, box: _Frame, atoms) -> list[str]:
+    """Return the displacements of some atoms: one path of shafts with its halo, one of heads, one of rings."""
     moves = motion.vectors @ scene.view.T
     wide = min(max(1.2, 0.045 * box.scale), 3.4)
     shafts, heads, rings, dots = [], [], [], []
-    for point, radius, move in zip(flat, scene.radii, moves):
+    for point, radius, move in zip(flat[atoms], scene.radii[atoms], moves[atoms]):
         size = float(np.linalg.norm(move))
         if size < 0.04:
             continue

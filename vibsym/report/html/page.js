@@ -153,7 +153,7 @@
       if (!width) return;
       pen.clearRect(0, 0, width, height);
       const marked = this.shown.size > 0;
-      const swing = 0.28 * Math.min(2.2, scene.reach), arrow = 0.85 * Math.min(1, 0.35 * Math.max(scene.reach, 1));
+      const swing = 0.2 * Math.min(2.2, scene.reach), arrow = 0.85 * Math.min(1, 0.35 * Math.max(scene.reach, 1));
       const reach = scene.reach * (marked ? 1.22 : 1.02) + (this.motion && !marked ? 0.6 * arrow : 0);
       const scale = Math.min(width, height) / 2 / reach;
       const moves = this.motion ? scene.motions[this.motion] : null;
@@ -163,7 +163,11 @@
       const items = scene.bonds.map(([i, j]) => [(flat[i][2] + flat[j][2]) / 2 - 0.05, () => this.drawBond(flat, i, j, at, scale)]);
       flat.forEach((point, k) => items.push([point[2], () => this.drawAtom(k, at(point), scene.radii[k] * scale)]));
       items.sort((a, b) => a[0] - b[0]).forEach(item => item[1]());
-      if (moves) flat.forEach((point, k) => this.drawArrow(point, times(this.view, moves[k]), scene.radii[k], at, scale, arrow));
+      if (moves) flat.forEach((point, k) => {
+        pen.globalAlpha = flat.length > 20 && point[2] < -0.15 * scene.reach ? 0.3 : 1;
+        this.drawArrow(point, times(this.view, moves[k]), scene.radii[k], at, scale, arrow);
+        pen.globalAlpha = 1;
+      });
       if (marked) this.drawElements(at, false);
       this.drawFrame();
       this.drawn = (this.drawn || 0) + 1;
@@ -223,7 +227,7 @@
     }
 
     drawElements(at, behind) {
-      const { pen, scene } = this, reach = scene.reach;
+      const { pen, scene } = this, reach = scene.reach, labelled = [];
       scene.elements.forEach((each, number) => {
         if (!this.shown.has(number)) return;
         if (each.kind === "centre") { if (!behind) { pen.strokeStyle = this.glass; pen.lineWidth = 1.6; pen.beginPath(); pen.arc(...at([0, 0, 0]), 4.5, 0, 2 * Math.PI); pen.stroke(); } return; }
@@ -232,7 +236,13 @@
           if (each.kind === "plane") { if (behind) this.drawPlane(v, at, reach); return; }
           const end = v.map(c => 1.1 * reach * c);
           if (behind) this.line(at(end.map(c => -c)), at(end), 1.4, this.glass, each.kind === "improper" ? [3, 4] : [10, 3, 2, 3]);
-          else if (k < 3) { pen.fillStyle = this.glass; pen.font = "italic 13px " + this.font; pen.textAlign = "center"; pen.textBaseline = "middle"; pen.fillText(each.symbol, ...at(v.map(c => 1.17 * reach * c))); }
+          else if (k < 3) {
+            let [x, y] = at(v.map(c => 1.17 * reach * c));
+            while (labelled.some(other => Math.abs(other[0] - x) < 22 && Math.abs(other[1] - y) < 14)) x += 23;
+            labelled.push([x, y]);
+            pen.fillStyle = this.glass; pen.font = "italic 13px " + this.font; pen.textAlign = "center"; pen.textBaseline = "middle";
+            pen.fillText(each.symbol, x, y);
+          }
         });
       });
     }
