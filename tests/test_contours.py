@@ -16,6 +16,7 @@ from vibsym.spectra.contours import gas_phase, parse_zeta, separation_parallel, 
 from vibsym.spectra.expectation import expect
 from vibsym.structures.structure import Structure
 from vibsym.vibrations.coriolis import coriolis_constant, partners
+from vibsym.vibrations.envelope import branch_separation, direction_cosines
 from vibsym.vibrations.estimates import estimate
 from vibsym.vibrations.rotor import rotor, spin_weights
 
@@ -262,3 +263,64 @@ def test_command():
 def test_command_errors_are_one_line(arguments, words):
     done = run("samples/cylinder-bf3.xyz", *arguments)
     assert done.exit_code == 1 and words in done.output and done.output.count("\n") == 1
+
+
+def across_of(constants, axis):
+    return (sum(constants) - constants[axis]) / 2
+
+
+@pytest.mark.parametrize(
+    ("constants", "axis"),
+    [((3.0, 0.301, 0.3), 0), ((1.0, 0.301, 0.3), 0), ((0.301, 0.3, 0.15), 2), ((0.3002, 0.3001, 0.3), 1)],
+    ids=["prolate", "nearly-spherical-prolate", "planar-oblate", "spherical"],
+)
+def test_summed_lines_meet_the_formula_of_symmetric_tops(constants, axis):
+    """Near the symmetric limits the rigid rotor is the parallel band of Gerhard and Dennison."""
+    across = across_of(constants, axis)
+    formula = separation_parallel(constants[axis], across, 300.0)
+    assert branch_separation(constants, axis, 300.0 / 1.438776877) == pytest.approx(formula, rel=0.05)
+
+
+def test_direction_cosines_are_complete():
+    """Strengths from a level to all others add up to 2J + 1 for a moment along any axis, thrice that for all three."""
+    for j in range(6):
+        for axis in range(3):
+            cosines = [direction_cosines(j, upper, axis) for upper in range(max(j - 1, 0), j + 2)]
+            total = sum((m**2).sum(axis=0) for m in cosines)
+            assert total.sum() == pytest.approx(2 * j + 1)
+        one = [
+            sum((direction_cosines(j, u, a) ** 2).sum(axis=0) for a in range(3)) for u in range(max(j - 1, 0), j + 2)
+        ]
+        assert sum(one) == pytest.approx(np.full(2 * j + 1, 3.0))
+
+
+# A, B, C in cm-1 of SO2, ethylene, pyridine, naphthalene (from memory), separations in √(B kT/hc), B the mean across
+# the moment, from a sum of lines without symmetrising, written apart (width 0.18, kT = 300 of the mean constant).
+SUMMED = [
+    ((2.027, 0.344, 0.2935), "A", 3.27),
+    ((2.027, 0.344, 0.2935), "B", 1.79),
+    ((4.828, 1.0012, 0.8282), "B", 1.88),
+    ((0.2014, 0.1936, 0.0987), "A", 3.19),
+    ((0.2014, 0.1936, 0.0987), "C", 4.26),
+    ((0.104, 0.0411, 0.0295), "A", 3.50),
+    ((0.104, 0.0411, 0.0295), "B", 2.00),
+    ((0.104, 0.0411, 0.0295), "C", 2.66),
+]
+
+
+@pytest.mark.parametrize(("constants", "letter", "expected"), SUMMED)
+def test_asymmetric_tops_against_another_sum_of_lines(constants, letter, expected):
+    axis = "ABC".index(letter)
+    assert branch_separation(constants, axis, 1 / across_of(constants, axis)) == pytest.approx(expected, rel=0.03)
+
+
+def test_separations_of_asymmetric_tops_name_their_source():
+    """The formula where it holds (A of H2O), the rigid rotor where it does not, none for K structure and hybrids."""
+    water = {each.species: each for each in gas_of("H2O")[0].contours}
+    assert water["B2"].source == "Seth-Paul 1969" and water["A1"].source == "rigid rotor, summed"
+    a, b, c = gas_of("H2O")[0].rotor.constants
+    assert water["B2"].separation == pytest.approx(separation_parallel(a, (b + c) / 2, 296))
+    assert 0.4 * water["B2"].separation < water["A1"].separation < 0.7 * water["B2"].separation
+    sulfide = {each.type: each for each in gas_of("hydrogen-sulfide")[0].contours}
+    assert sulfide["A"].source == "rigid rotor, summed"  # nearly oblate, the moment in the plane
+    assert branch_separation((9.4, 0.3433, 0.3306), 2, 206.0) is None

@@ -3,16 +3,18 @@
 The transition moment lies along the functions x, y, z of the species.  Linear: Σ bands P R, Π bands P Q R.  Symmetric
 tops: parallel and perpendicular.  Asymmetric tops: type A, B or C after the principal axis along the moment, hybrid
 where the species holds more than one (G. Herzberg, Infrared and Raman Spectra, 1945, ch. IV).  Separations of the P
-and R maxima, cm-1:
+and R maxima, cm-1 (papers from memory):
 
-    linear, parallel        S(β) √(8 B kT/hc),  log10 S = 0.721/(β + 4)^1.13,  β = A/B - 1 (A: about the axis; linear:
-    S = 1) S. L. Gerhard, D. M. Dennison, Phys. Rev. 43, 197 (1933), no Coriolis coupling (ζ = 0) spherical
-    4 (1 - ζ) √(B kT/hc) W. F. Edgell, R. E. Moynihan, J. Chem. Phys. 27, 155 (1957) asymmetric, A and C     the
-    parallel formula, the constant about the axis of the moment for A and the mean of the others for B W. A.
-    Seth-Paul, J. Mol. Struct. 3, 403 (1969)
+- linear, parallel: S(β) √(8 B kT/hc), log10 S = 0.721/(β + 4)^1.13, β = A/B - 1, A about the axis; linear: S = 1.
+  S. L. Gerhard, D. M. Dennison, Phys. Rev. 43, 197 (1933), no Coriolis coupling (ζ = 0).
+- spherical: 4 (1 - ζ) √(B kT/hc).  W. F. Edgell, R. E. Moynihan, J. Chem. Phys. 27, 155 (1957).
+- asymmetric, A and C: the parallel formula with the constant about the axis of the moment for A and the mean of the
+  others for B.  W. A. Seth-Paul, J. Mol. Struct. 3, 403 (1969).
 
-(papers from memory; none is given for type B, hybrids, and type C of nearly prolate tops, where the formula does not
-hold).  Perpendicular bands of symmetric tops are Q branches 2[A(1 - ζ) - B] apart.
+The last holds only as far as the top is nearly symmetric about that axis.  So the lines of the rigid rotor are summed
+(vibsym/vibrations/envelope.py): where the formula agrees within 10 % it is given, else the sum, and for type B always
+the sum.  None is given for hybrids, whose shares are not known.  Perpendicular bands of symmetric tops are Q branches
+2[A(1 - ζ) - B] apart.
 """
 
 from collections.abc import Mapping
@@ -23,13 +25,15 @@ import numpy as np
 from vibsym.errors import VibsymError
 from vibsym.spectra.populations import DEFAULT_TEMPERATURE, HC_OVER_K, checked_temperature
 from vibsym.structures.symmetry import Symmetry
+from vibsym.vibrations.envelope import branch_separation
 from vibsym.vibrations.rotor import Rotor, rotor, spin_weights
 
 GERHARD_DENNISON = "Gerhard & Dennison 1933, ζ = 0"
 EDGELL_MOYNIHAN = "Edgell & Moynihan 1957"
 SETH_PAUL = "Seth-Paul 1969"
 ESTIMATED = "normal"               # Coriolis constants from the normal modes of the valence force field
-LOWEST_BETA = -0.6                 # the formula was fitted for β from -1/2; a planar top with B near A lies there
+RIGID_ROTOR = "rigid rotor, summed"
+TRUSTED = 0.1                      # how far the formula for asymmetric tops may be from the rigid rotor
 
 
 @dataclass(frozen=True)
@@ -186,12 +190,15 @@ def _asymmetric(top: Rotor, species, inside: np.ndarray, temperature: float) -> 
     if len(letters) > 1:
         return Contour(species.label, "/".join(letters) + " hybrid", "PQR")
     axis = "ABC".index(letters[0])
-    if letters[0] == "B":                                 # a minimum in the centre; no formula with one constant
-        return Contour(species.label, "B", "PR")
+    branches = "PR" if letters[0] == "B" else "PQR"       # type B: a minimum in the centre
+    summed = branch_separation(top.constants, axis, temperature / HC_OVER_K)
+    if summed is None:
+        return Contour(species.label, letters[0], branches)
     about, across = top.constants[axis], sum(value for k, value in enumerate(top.constants) if k != axis) / 2
-    if about / across - 1 < LOWEST_BETA:                  # C band of a nearly prolate top: many Q branches
-        return Contour(species.label, letters[0], "PQR")
-    return Contour(species.label, letters[0], "PQR", separation_parallel(about, across, temperature), source=SETH_PAUL)
+    formula = separation_parallel(about, across, temperature)
+    if letters[0] != "B" and abs(formula - summed) <= TRUSTED * summed:
+        return Contour(species.label, letters[0], branches, formula, source=SETH_PAUL)
+    return Contour(species.label, letters[0], branches, summed, source=RIGID_ROTOR)
 
 
 def _share(top: Rotor, species) -> np.ndarray:
