@@ -12,6 +12,7 @@ import numpy as np
 from vibsym.report.scene import Motion, Scene, tint_of
 
 ARROW = 0.85                   # Å, of the largest displacement in a drawing
+MOST_PLANES = 4
 CROWDED = 20                   # atoms; in a larger structure the far side is drawn faintly
 LETTERED = 9.0                 # px; smaller discs carry no letter
 TINTS = {"hydrogen": "#ffffff", "carbon": "#c9c5bb", "nitrogen": "#b9c8ee", "oxygen": "#f3b9a8", "halogen": "#bfe0bd",
@@ -28,8 +29,7 @@ def structure_svg(scene: Scene, motion: Motion | None = None, elements: bool = F
     box = _Frame(scene, flat, motion, elements, width, height)
     body = []
     if elements:
-        body += [_plane(box, scene, vector) for each in scene.elements if each.kind == "plane"
-                 for vector in each.vectors[:6]]
+        body += [_plane(box, scene, vector) for vector in _planes(scene)]
         body += _axes(box, scene)
     body += _skeleton(scene, flat, box)
     if motion is not None:
@@ -174,6 +174,15 @@ def _ring(x: float, y: float, r: float) -> str:
 
 def _xy(point) -> str:
     return f"{point[0]:.1f} {point[1]:.1f}"
+
+
+def _planes(scene: Scene) -> list:
+    """Return the normals of the planes that are drawn: kind by kind while they stay few enough to be told apart."""
+    shown: list = []
+    for each in scene.elements:
+        if each.kind == "plane" and len(shown) + len(each.vectors) <= MOST_PLANES:
+            shown += each.vectors
+    return shown
 
 
 def _plane(box: _Frame, scene: Scene, normal) -> str:
