@@ -32,7 +32,7 @@ def command(spectrum, kind, prominence, distance, baseline, unit, ordinate, lase
 
     \b
     Example:
-      vibsym peaks try-it/tube-infrared.csv --spectrum IR --output bands.csv
+      vibsym peaks try-it/flask-infrared.csv --spectrum IR --output bands.csv
     """
     from vibsym.evidence.peaks import pick_peaks
     from vibsym.evidence.spectrum import read_spectrum
