@@ -27,6 +27,7 @@ from vibsym.evidence.coincidence import WINDOW, pair_bands
 from vibsym.evidence.lines import Band
 from vibsym.evidence.matching import Costs, Matching, cheapest
 from vibsym.evidence.pins import Pin, parse_pins, pinned
+from vibsym.structures.finder import find_symmetry
 from vibsym.structures.symmetry import Symmetry
 from vibsym.vibrations.estimates import Estimates, describe, estimate
 from vibsym.vibrations.normal_modes import Mode
@@ -103,17 +104,18 @@ class Assignment:
 
 
 def assign(
-    symmetry: Symmetry,
+    structure: "Symmetry | object",
     observed: BandList,
     *,
     window: float = WINDOW,
     pins: Sequence[str] = (),
     estimates: Estimates | None = None,
 ) -> Assignment:
-    """Return the assignment of least cost.
+    """Return the assignment of least cost to a structure, or to a structure in the group and axes of its `Symmetry`.
 
     `pins` fix lines (`ν4=1306`, `T2=1306`); `estimates` are those of the standard force field when not given.
     """
+    symmetry = structure if isinstance(structure, Symmetry) else find_symmetry(structure)
     estimates = estimate(symmetry) if estimates is None else estimates
     if not estimates.modes:
         raise VibsymError(f"{symmetry.structure.formula}: no vibrations, so there is nothing to assign")
@@ -152,27 +154,15 @@ def _in_order(best: Matching, bands, modes: Sequence[Mode], held: Sequence[Pin])
     places = best.places.copy()
     fixed = {pin.mode for pin in held if pin.mode is not None}
     for species in {mode.species for mode in modes}:
-        for kind in {_kind(best, row) for row in range(len(bands))}:
-            items = [
-                row
-                for row in range(len(bands))
-                if places[row] >= 0
-                and modes[places[row]].species == species
-                and places[row] not in fixed
-                and _kind(best, row) == kind
-            ]
-            columns = sorted({int(places[row]) for row in items}, key=lambda column: -modes[column].wavenumber)
-            groups: dict[int, list[int]] = {}
-            for row in items:
+        groups: dict[int, list[int]] = {}
+        for row in range(len(bands)):
+            if places[row] >= 0 and modes[places[row]].species == species and places[row] not in fixed:
                 groups.setdefault(int(places[row]), []).append(row)
-            ordered = sorted(groups.values(), key=lambda rows: -np.mean([mean_wavenumber(bands[row]) for row in rows]))
-            for column, rows in zip(columns, ordered):
-                places[rows] = column
+        columns = sorted(groups, key=lambda column: -modes[column].wavenumber)
+        ordered = sorted(groups.values(), key=lambda rows: -np.mean([mean_wavenumber(bands[row]) for row in rows]))
+        for column, rows in zip(columns, ordered):
+            places[rows] = column
     return Matching(places, best.whole, best.cost)
-
-
-def _kind(best: Matching, row: int) -> int:
-    return 0
 
 
 def _result(symmetry, observed, estimates, costs, allowed, best, held) -> Assignment:
