@@ -281,3 +281,53 @@ def test_planes_are_named_by_atoms_off_the_axis():
     assert {words["x"], words["y"]} == {
         "perpendicular to the mirror plane through atoms C5, C7, O9, O11 and 4 more",
         "perpendicular to the mirror plane through atoms C6, C8, O10, O12 and 4 more"}
+
+
+def square_orbit(x, y):
+    """Return the four or eight images of a point of the plane under the rotations and mirrors of a square."""
+    images = {(round(float(p), 9), round(float(q), 9)) for a, b in ((x, y), (x, -y), (y, x), (y, -x))
+              for p, q in ((a, b), (-a, -b))}
+    return np.array([(p, q, 0.0) for p, q in sorted(images)])
+
+
+def porphyrin():
+    """Return a flat metalloporphin, idealised: N on x and y, meso C-H on the diagonals."""
+    shells = [("Zn", 0, 0), ("N", 2.05, 0), ("C", 2.85, 1.1), ("C", 4.24, 0.68), ("H", 5.05, 1.4), ("C", 2.43, 2.43),
+              ("H", 3.2, 3.2)]
+    parts = [(name, square_orbit(x, y)) for name, x, y in shells]
+    return [name for name, points in parts for _ in points], np.vstack([points for _, points in parts])
+
+
+def naphthalene():
+    """Return naphthalene with regular rings, its central bond on y."""
+    side = 1.4 * 3 ** 0.5 / 2
+    carbons = [(0, .7), (0, -.7)] + [(s * side, t * 1.4) for s in (1, -1) for t in (1, -1)]
+    carbons += [(s * 2 * side, t * .7) for s in (1, -1) for t in (1, -1)]
+    hydrogens = [(s * side, t * 2.48) for s in (1, -1) for t in (1, -1)]
+    hydrogens += [(s * (side + 2.48 * 3 ** 0.5 / 2), t * 1.24) for s in (1, -1) for t in (1, -1)]
+    return ["C"] * 10 + ["H"] * 8, np.array([(x, y, 0.0) for x, y in carbons + hydrogens])
+
+
+@pytest.mark.parametrize(("case", "symbol", "telling"), [
+    ("water", "C2v", "Shimanouchi's tables"), ("C2H4", "D2h", "x along C=C"), ("B2H6", "D2h", "x along B–B"),
+    ("XeF4", "D4h", "both choices of C2'"), (porphyrin(), "D4h", "literature puts C2' through N"),
+    (naphthalene(), "D2h", "several choices of axes for naphthalene")],
+    ids=["water", "ethylene", "diborane", "XeF4", "porphyrin", "naphthalene"])
+def test_known_clashes_with_print_are_told(case, symbol, telling):
+    symmetry = symmetry_of(case, seed=4)
+    assert symmetry.group.symbol == symbol
+    assert any(telling in note for note in axis_words(symmetry).notes)
+
+
+def test_porphyrin_and_naphthalene_by_the_ladder_of_choice():
+    """More atoms decide: C2' through the meso C-H (5 atoms against 3); z of naphthalene through the central bond.
+
+    Naphthalene: 9Ag + 3B1g + 4B2g + 8B3g + 4Au + 8B1u + 8B2u + 4B3u, x across the plane (in-plane 9 + 8 + 8 + 8 = 33).
+    """
+    from vibsym.vibrations.cartesian import displacements
+
+    names, points = porphyrin()
+    x = find_symmetry(Structure.from_atoms(names, points)).frame[0]
+    assert abs(abs(x[0]) - abs(x[1])) < 1e-9
+    assert displacements(symmetry_of(naphthalene(), seed=5)).gamma_vib == {
+        "Ag": 9, "B1g": 3, "B2g": 4, "B3g": 8, "Au": 4, "B1u": 8, "B2u": 8, "B3u": 4}
