@@ -150,3 +150,8 @@ def test_files_that_are_no_lists(tmp_path):
         read_bands()
     with pytest.raises(VibsymError, match="--bands names both spectra"):
         read_bands("a", infrared="b")
+
+
+def test_the_american_spelling_of_polarisation_is_no_unknown_column():
+    line = parse_bands("wavenumber,spectrum,Polarization\n900,Raman,p\n").lines[0]
+    assert line.polarised and line.extra == {}

@@ -126,6 +126,7 @@ NAMED = [
     ("TBPY-5", "CO=4 PPh3=1", {"axial": "TBPY-5-12", "equatorial": "TBPY-5-22"}),
     ("TBPY-5", "CO=3 PPh3=2", {"diaxial": "TBPY-5-11", "diequatorial": "TBPY-5-22", "axial, equatorial": "TBPY-5-12"}),
     ("SPY-5", "CO=4 Cl=1", {"apical": "SPY-5-12", "basal": "SPY-5-22"}),
+    ("SPY-5", "CO=3 Cl=2", {"apical, basal": "SPY-5-12", "cis-dibasal": "SPY-5-22", "trans-dibasal": "SPY-5-21"}),
     ("TS-3", "Cl=2 CO=1", {"stem": "TS-3-2", "crosspiece": "TS-3-1"}),
     ("OC-6", "en=2 Cl=2", {"cis": "OC-6-22", "trans": "OC-6-12"}),
     ("OC-6", "gly=3", {"fac": "OC-6-22", "mer": "OC-6-21"}),
@@ -338,6 +339,8 @@ def test_default_oscillators():
     ("OC-6 --centre Mo --ligand CO=6 --limit 0", "--limit 0"),
     ("OC-6 --centre Mo --ligand a(N,N,N,N)=1 --ligand CO=2", "chelates have two or three"),
     ("OC-6 --centre Mo", "no ligands"),
+    ("OC-6 --centre Mo --ligand CO=6 --mixture", "--mixture needs observed bands"),
+    ("OC-6 --centre Mo --ligand CO=6 --between 1800 2100", "--between needs observed bands"),
 ])
 def test_bad_input_is_one_line_and_status_1(arguments, words):
     result = CliRunner().invoke(cli, ["isomers", *arguments.split()])

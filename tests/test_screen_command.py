@@ -126,5 +126,8 @@ def test_isomers_with_bands_in_one_command():
     assert page.rstrip().endswith("one that was not proposed may fit as well.")
     table = CliRunner().invoke(cli, [*arguments, "--format", "csv"]).stdout.splitlines()
     assert table[0].endswith("rank,score,verdict,excuses,unseen") and len(table) == 3
+    mixed = json.loads(CliRunner().invoke(cli, [*arguments, "--mixture", "--format", "json"]).stdout)
+    assert [each["isomers"] for each in mixed["mixtures"]] == [["cis", "trans"]] and len(mixed["isomers"]) == 2
+    assert len(mixed["mixtures"][0]["structures"]) == 2 and "mixtures" not in answer
     short = CliRunner().invoke(cli, [*arguments, "--limit", "1"]).stdout
     assert "2 isomers" in short and "Proofs of the other 1" in short

@@ -33,13 +33,18 @@ def command(symbol, centre, ligands, donors, oscillators, limit, write, form, ou
       vibsym isomers SP-4 --centre Pt --ligand CO=2 --ligand Cl=2 --write cis-trans
       vibsym isomers OC-6 --centre Mo --ligand CO=4 --ligand L=2 --bands try-it/flask-bands.csv
     """
+    from vibsym.errors import VibsymError
     from vibsym.report import isomers as view
     from vibsym.spectra.isomer_bands import list_isomers
 
+    measured = bands["bands"] or bands["infrared"] or bands["raman"]
+    for name in ("mixture", "between", "allow"):
+        if bands[name] and not measured:
+            raise VibsymError(f"--{name} needs observed bands: --bands FILE, or --ir FILE and --raman FILE")
     result = list_isomers(symbol, centre, ligands, donors, oscillators, limit)
     if write is not None:
         save(result, write)
-    if bands["bands"] or bands["infrared"] or bands["raman"]:
+    if measured:
         from vibsym.report import isomer_screening as view
 
         result = screened(list_isomers(symbol, centre, ligands, donors, oscillators, None), limit, **bands)

@@ -14,6 +14,7 @@ from vibsym.errors import VibsymError
 from vibsym.evidence.lines import SPECTRA, Band, Line, bands_of
 from vibsym.evidence.rows import Doubt, parse_row
 
+ALIASES = {"polarization": "polarisation"}
 KNOWN = ("wavenumber", "spectrum", "strength", "polarisation", "uncertainty", "together", "note")
 LARGEST_FILE = 2_000_000  # bytes; a list of bands has a hundred lines, a measured spectrum is another kind of file
 OCTAVE = 2.0
@@ -238,6 +239,7 @@ def _columns(head: list[str], source: str, spectrum: str | None) -> list[str]:
         unit = plain[len(word):].strip(" /()[]").replace("−", "-").replace("⁻¹", "-1").replace("^", "")
         if word == "wavenumber" and unit not in ("", "cm-1", "1/cm", "cm -1"):
             raise VibsymError(f"{source}: column '{cell}' is not in cm-1; convert it and name it wavenumber")
+        word = ALIASES.get(word, word)
         names.append(word if word in KNOWN else cell)
     if "wavenumber" not in names:
         hint = " (the first row must name the columns)" if any(_is_number(cell) for cell in head) else ""

@@ -22,9 +22,13 @@ class IsomerScreening:
         return self.pairs[:self.limit]
 
     def to_dict(self) -> dict:
-        """Return the JSON object of `vibsym isomers --bands`."""
+        """Return the JSON object of `vibsym isomers --bands`; `mixtures` only if they were asked for."""
         answer = self.listing.to_dict()
         answer["isomers"] = [entry.to_dict() | candidate.evidence() for entry, candidate in self.listed]
+        mixtures = [each for each in self.screening.candidates if each.prediction.parts]
+        if mixtures:
+            answer["mixtures"] = [{"isomers": [part.name for part in each.prediction.parts]} | each.to_dict()
+                                  for each in mixtures[:self.limit]]
         return answer | {"bands": self.screening.bands_object(), "separating": list(self.screening.separating),
                          "limits": list(self.screening.limits), "caution": self.screening.caution}
 

@@ -105,7 +105,11 @@ def _places(found: Orbits, rows: Sequence[Sequence[int]]) -> list[str]:
         return [""] * len(rows)
     totals = Counter(rows[0])
     rarest = min(totals, key=lambda colour: (totals[colour], -colour))
-    named = [_of_colour(places, [site for site, here in enumerate(row) if here == rarest]) for row in rows]
+    where = [[site for site, here in enumerate(row) if here == rarest] for row in rows]
+    named = [_of_colour(places, sites) for sites in where]
+    if found.shape.symbol == "SPY-5" and totals[rarest] == 2:
+        named = [f"{_relation(found, sites)}-{name}" if name == "dibasal" else name
+                 for name, sites in zip(named, where)]
     if len(totals) == 2 or len(set(named)) == len(rows):
         return named
     return ["; ".join(f"{kind} " + ", ".join(label(found, row[site]) for site in sorted(
