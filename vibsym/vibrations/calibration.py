@@ -264,7 +264,7 @@ def fitted(made: Calibration, molecules=None, start: np.ndarray | None = None, r
     return fit(made.problem, made.observed, made.weights, start, molecules, rounds)
 
 
-def left_out(made: Calibration, p: np.ndarray, rounds: int = 6) -> Iterator[tuple[set[int], np.ndarray]]:
+def left_out(made: Calibration, p: np.ndarray, rounds: int = 3) -> Iterator[tuple[set[int], np.ndarray]]:
     """Yield each family with the parameters fitted without it; what only it has starts at the prior."""
     everything = set(range(len(made.samples)))
     for family in made.families():
