@@ -34,7 +34,7 @@ def deliver(results: list, view, form: str, output: str | None = None, **options
         return
     on_screen = form == "table" and sys.stdout.isatty()
     width = _screen_width() if on_screen else PLAIN_WIDTH
-    colour = on_screen and "NO_COLOR" not in os.environ
+    colour = on_screen and not os.environ.get("NO_COLOR") and os.environ.get("TERM") != "dumb"
     text = render(results, view, form, width, colour, **options)
     plain = spelled(text, form)
     if plain != text and form == "table":
