@@ -6,7 +6,7 @@ from vibsym.evidence.assignment import FIRM
 from vibsym.evidence.assignment_file import AssignmentFile, AssignmentRow, write_assignment
 from vibsym.groups.symbols import typeset
 from vibsym.report.document import Facts, Listing, Paragraph, Table, Title
-from vibsym.report.wording import NOTHING, about_structure, found_within, group_text
+from vibsym.report.wording import NOTHING, about_structure, count_text, found_within, group_text
 
 
 def parts(result, strip: bool = False, **_) -> list:
@@ -17,8 +17,9 @@ def parts(result, strip: bool = False, **_) -> list:
         Title(*about_structure(symmetry.structure)),
         Paragraph(f"Point group {group_text(symmetry.group.symbol)}, {found_within(symmetry)}"),
         Paragraph(
-            f"{len(result.assigned)} fundamentals assigned, {firm} of them firm; "
-            f"{len(result.leftover)} lines left over, {len(result.unseen)} fundamentals not seen",
+            f"{count_text(len(result.assigned), 'fundamental')} assigned, {firm} of them firm; "
+            f"{count_text(len(result.leftover), 'band')} left over, "
+            f"{count_text(len(result.unseen), 'fundamental')} not seen",
             strong=True,
         ),
     ]
@@ -28,7 +29,7 @@ def parts(result, strip: bool = False, **_) -> list:
         Paragraph(
             f"Firm: every other species costs at least {FIRM:g} more; else the nearest other species with its "
             "extra cost. "
-            f"Total cost {result.cost:.1f} (χ² units; vibsym/evidence/assignment_costs.py)."
+            f"Total cost {result.cost:.1f} in units of χ²."
         )
     )
     if strip:
@@ -99,7 +100,12 @@ def _axes(symmetry) -> list:
     choice = axis_words(symmetry)
     pairs = tuple(choice.words.items())
     if choice.exchange:
-        pairs += (("other", f"the other choice of axes (--axes) exchanges {', '.join(map(typeset, choice.exchange))}"),)
+        pairs += (
+            (
+                "other",
+                f"the other choice of axes (--axes) exchanges {', '.join(typeset(each).replace('<->', '↔') for each in choice.exchange)}",
+            ),
+        )
     return [Facts(pairs, "Axes")] if pairs else []
 
 
