@@ -89,6 +89,16 @@ def test_carbon_dioxide_fermi_doublet():
     assert pair.doublet.interaction == pytest.approx(50.0, abs=0.1)
 
 
+def test_a_doublet_belongs_to_the_nearest_combination():
+    """Of two combinations in reach only the one near the undisturbed position gets the estimate."""
+    modes = ["ν1:A1=1388", "ν2:A1=667", "ν3:A1=705"]  # 2ν2 = 1334, ν2 + ν3 = 1372, 2ν3 = 1410
+    pairs = made("C2v", modes, doublets=[parse_doublet("1388:1285=1.6")]).fermi
+    assert {pair.combination for pair in pairs} == {"ν2 + ν3", "2ν3"} | {"2ν2"}
+    (marked,) = [pair for pair in pairs if pair.doublet]
+    assert marked.combination == "2ν2"  # undisturbed at 1324.6
+    assert not any(pair.doublet for pair in made("C2v", modes, doublets=[parse_doublet("1500:1285=1.6")]).fermi)
+
+
 def test_pairs_need_a_common_species():
     """2ν4 of methane (A1 + E + T2) lies near a fundamental A1, not near one of species T1."""
     assert made("Td", ["ν4:T2=1306", "ν1:A1=2620"]).fermi
@@ -144,6 +154,34 @@ def test_the_usual_shift_comes_first():
     modes = parse_modes(["ν1:A=1000", "ν2:A=996", "ν3:A=500"], group)
     (found,) = explain_lines([Line(1998.0, "IR")], combine(group, modes), 5)
     assert [each.combination.label for each in found.candidates] == ["2ν1", "ν1 + ν2"]
+
+
+def test_hot_bands_explain_lines_too():
+    """A line below ν2 of CO2 can be 2ν2 - ν2 (7 % of the molecules in ν2); from thinly filled levels nothing is."""
+    result = made("Dinfh", DIOXIDE)
+    (below,) = explain_lines([Line(660.5, "IR")], result)
+    hot = {each.combination.label: each for each in below.candidates}
+    assert list(hot) == ["2ν2 - ν2"] and hot["2ν2 - ν2"].usual
+    (above,) = explain_lines([Line(674.5, "IR")], result)
+    assert not above.candidates[0].usual and above.candidates[0].score > below.candidates[0].score
+
+
+def test_modes_without_numbers_follow_the_table():
+    modes = parse_modes(["T2=1306", "E=1534", "T2=3019", "A1=2917"], point_group("Td"))
+    assert [m.name for m in combine(point_group("Td"), modes).modes] == ["A1(1)", "E(1)", "T2(1)", "T2(2)"]
+
+
+@pytest.mark.parametrize(
+    ("group", "text", "words"),
+    [
+        ("Dinfh", "Σg-=100", "fundamentals of D∞h are Σg\\+, Πg, Σu\\+, Πu"),
+        ("Cinfv", "Δ=100", "fundamentals of C∞v are Σ\\+, Π$"),
+        ("Kh", "Pu=100", "single atom, which has no vibrations"),
+    ],
+)
+def test_no_vibration_of_a_linear_molecule(group, text, words):
+    with pytest.raises(VibsymError, match=words):
+        parse_modes([text], point_group(group))
 
 
 def test_names_of_modes():
@@ -270,6 +308,8 @@ def test_command_formats():
         (["Td", *options(METHANE), "--quanta", "1"], "at least 2"),
         (["missing.xyz", "--mode", "A=5"], "missing"),
         (["samples/cylinder-bf3.xyz", "--mode", "A1''=500"], "no vibration of species A1''"),
+        (["samples/cylinder-bf3.xyz", *options(["E'=1", "E'=2", "E'=3"])], "3 fundamentals of species E' are given"),
+        (["Td", *options(METHANE), "--window", "-1"], "--window -1: give a distance"),
     ],
 )
 def test_command_errors_are_one_line(arguments, words):

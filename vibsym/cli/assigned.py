@@ -1,5 +1,6 @@
 """A molecule with its assigned fundamentals, from the command line: structure or group, --mode and --assignment."""
 
+from collections import Counter
 from dataclasses import dataclass
 
 from vibsym.errors import VibsymError
@@ -78,12 +79,16 @@ def check_group(file, group) -> None:
 
 
 def _check_species(symmetry, modes) -> None:
-    """Refuse a fundamental of a species that has no vibration in the structure."""
+    """Refuse fundamentals of a species that has none, or fewer, in the structure."""
     from vibsym.groups.reduction import write_reduction
     from vibsym.vibrations.cartesian import displacements
 
     gamma = displacements(symmetry).gamma_vib
-    for mode in modes:
-        if mode.species not in gamma:
+    given = Counter(mode.species for mode in modes)
+    for species, count in given.items():
+        have = gamma.get(species, 0)
+        if count > have:
             name = symmetry.structure.source or symmetry.structure.formula
-            raise VibsymError(f"{name}: no vibration of species {mode.species}; Γvib = {write_reduction(gamma)}")
+            what = f"no vibration of species {species}" if not have else (
+                f"{count} fundamentals of species {species} are given, and it has {have}")
+            raise VibsymError(f"{name}: {what}; Γvib = {write_reduction(gamma)}")

@@ -1,4 +1,4 @@
-"""Lines that no fundamental explains, matched with overtones, combinations and differences.
+"""Lines that no fundamental explains, matched with overtones, combinations, differences and hot bands.
 
 A candidate must be active in the spectrum of the line and lie within the match (cm-1).  Candidates are ranked by
 
@@ -6,7 +6,8 @@ A candidate must be active in the spectrum of the line and lie within the match 
     and, for a difference, + ½ - ½ √fraction
 
 (vibsym's own rule): observed overtones and sums lie below the sum of the fundamentals, as a rule; more quanta are
-weaker; a difference is weakened by the few molecules in its lower level.
+weaker; a difference is weakened by the few molecules in its lower level.  A hot band counts as a difference of three
+quanta that lies below its fundamental, as a rule; those from levels with less than 1 % of the molecules are left out.
 """
 
 from bisect import bisect_left
@@ -15,10 +16,11 @@ from dataclasses import dataclass
 
 from vibsym.errors import VibsymError
 from vibsym.evidence.lines import Line
-from vibsym.spectra.combinations import Combination, Combinations
+from vibsym.spectra.combinations import Combination, Combinations, HotBand
 
 DEFAULT_MATCH = 10.0               # cm-1
 DEFAULT_WINDOW = 5.0               # cm-1, between a line and the fundamental that it is
+POPULATED = 0.01                   # share of the molecules in the lower level of a hot band
 SLACK = 1.0                        # cm-1; a shift that small has no direction
 
 
@@ -26,7 +28,7 @@ SLACK = 1.0                        # cm-1; a shift that small has no direction
 class Candidate:
     """A combination that may be a line; `shift` = observed - sum of the fundamentals, cm-1; lowest score first."""
 
-    combination: Combination
+    combination: Combination | HotBand
     shift: float
     usual: bool
     score: float
@@ -57,7 +59,10 @@ def explain_lines(lines: Sequence[Line], result: Combinations, match: float = DE
     """Return for every line the fundamental within `window` that is active there, or else the ranked candidates."""
     if not 0 <= match < float("inf"):
         raise VibsymError(f"--match {match:g}: give a distance in cm-1, zero or more")
-    known = [each for each in result.combinations if each.wavenumber is not None]
+    if not 0 <= window < float("inf"):
+        raise VibsymError(f"--window {window:g}: give a distance in cm-1, zero or more")
+    populated = [band for band in result.hot_bands if band.fraction >= POPULATED]
+    known = [each for each in (*result.combinations, *populated) if each.wavenumber is not None]
     known.sort(key=lambda each: each.wavenumber)
     positions = [each.wavenumber for each in known]
     found = []
@@ -83,9 +88,10 @@ def _fundamental(line: Line, result: Combinations, window: float) -> str | None:
     return min(near)[1] if near else None
 
 
-def _candidate(line: Line, combination: Combination, match: float) -> Candidate:
+def _candidate(line: Line, combination: Combination | HotBand, match: float) -> Candidate:
     shift = line.wavenumber - combination.wavenumber
-    usual = combination.is_difference or shift <= SLACK
+    either_way = combination.is_difference and not isinstance(combination, HotBand)
+    usual = either_way or shift <= SLACK
     score = abs(shift) / (match or 1.0) * (1 if usual else 2) + 0.5 * (combination.order - 2)
     if combination.is_difference:
         score += 0.5 - 0.5 * (combination.fraction or 0.0) ** 0.5

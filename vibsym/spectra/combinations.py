@@ -80,6 +80,8 @@ class HotBand:
     raman: bool
     wavenumber: float | None
     fraction: float
+    order = 3                      # two quanta above, one below
+    is_difference = True
 
     def to_dict(self) -> dict:
         """Return the hot band for JSON."""
@@ -130,7 +132,7 @@ def combine(group, modes: Sequence[Mode], quanta: int = 2, *, temperature: float
     >>> result.combinations[0].label, result.combinations[0].species
     ('2ν4', {'A1': 1, 'E': 1, 'T2': 1})
     """
-    modes = tuple(sorted(modes, key=mode_number))
+    modes = tuple(sorted(modes, key=lambda mode: _place(group, mode)))
     temperature = checked_temperature(temperature)
     if not modes:
         raise VibsymError("no fundamentals: give --mode ν4:T2=1306 (once for each) or --assignment FILE")
@@ -186,6 +188,13 @@ class _Builder:
         return states(lower, self.degeneracy) * boltzmann(energy, self.temperature) / self.partition
 
 
+def _place(group, mode: Mode) -> tuple:
+    """Order of the modes: by number; those without one by species, then by falling wavenumber."""
+    label = group.species_named(mode.species).label
+    own = group.labels.index(label) if label in group.labels else len(group.labels)
+    return mode_number(mode), own, -(mode.wavenumber or 0.0)
+
+
 def _vectors(modes: tuple[Mode, ...], quanta: int) -> Iterator[tuple[tuple[int, int], ...]]:
     """Yield sums, then differences with a position above zero, as (place, quanta) with the lower level last."""
     levels = [[_counted(choice) for choice in combinations_with_replacement(range(len(modes)), n)]
@@ -231,23 +240,30 @@ def _label(quanta: Quanta) -> str:
 
 
 def _with_fermi(found: list[Combination], modes, resonance: float, doublets) -> list[Combination]:
-    """Give each overtone and sum the fundamentals that it can perturb."""
+    """Give each overtone and sum the fundamentals that it can perturb.
+
+    A doublet of lines belongs to a fundamental that is one of them and to the combination of a common species that
+    lies nearest to where the doublet has it undisturbed.
+    """
     positions = np.array([np.nan if each.is_difference or each.wavenumber is None else each.wavenumber
                           for each in found])
-    result = list(found)
     pairs: dict[int, list[FermiPair]] = {}
     for mode in modes:
         if mode.wavenumber is None:
             continue
         doublet = next((each for each in doublets if each.holds(mode.wavenumber)), None)
         reach = max(resonance, doublet.upper - doublet.lower) if doublet else resonance
-        for k in np.flatnonzero(np.abs(positions - mode.wavenumber) <= reach):
-            each = found[k]
-            if mode.species in each.species and set(each.quanta) != {mode.name}:
-                pairs.setdefault(int(k), []).append(FermiPair(mode.name, each.label, (mode.species,),
-                                                              each.wavenumber - mode.wavenumber, doublet))
-    for k, own in pairs.items():
-        result[k] = replace(found[k], fermi=tuple(sorted(own, key=lambda pair: abs(pair.distance))))
+        near = [int(k) for k in np.flatnonzero(np.abs(positions - mode.wavenumber) <= reach)
+                if mode.species in found[k].species and set(found[k].quanta) != {mode.name}]
+        own = min(near, key=lambda k: abs(positions[k] - doublet.partner)) if doublet and near else None
+        for k in near:
+            distance = found[k].wavenumber - mode.wavenumber
+            if k == own or abs(distance) <= resonance:
+                pairs.setdefault(k, []).append(FermiPair(mode.name, found[k].label, (mode.species,), distance,
+                                                         doublet if k == own else None))
+    result = list(found)
+    for k, own_pairs in pairs.items():
+        result[k] = replace(found[k], fermi=tuple(sorted(own_pairs, key=lambda pair: abs(pair.distance))))
     return result
 
 

@@ -2,9 +2,10 @@
 
 Observed products normally exceed theory, because anharmonicity lowers the lighter molecule more: for hydrogen and
 deuterium by 0 to 2 % for each vibration of the exchanged atoms.  A product is `doubtful` below -1.5 %, or above 2 %
-for each hydrogenic vibration by more than 2 %, or above 5 % in any case (vibsym's own limits); where no hydrogen is
-exchanged, outside ±0.5 %.  A fundamental in Fermi resonance must be deperturbed first.  Source: G. Herzberg, Infrared
-and Raman Spectra (1945), ch. II,6.
+for each hydrogenic vibration by more than 2 %, or above 5.5 % in any case (vibsym's own limits: in print about 5 % is
+reached where two or more such vibrations share a species); where no hydrogen is exchanged, outside ±0.5 %.  A
+fundamental in Fermi resonance must be deperturbed first.  Source: G. Herzberg, Infrared and Raman Spectra (1945), ch.
+II,6.
 """
 
 from collections.abc import Mapping, Sequence
@@ -20,7 +21,7 @@ from vibsym.structures.isotopes import Substitution
 from vibsym.vibrations.cartesian import displacements
 from vibsym.vibrations.productrule import ProductLine, product_rule
 
-LOW, EACH, SPARE, HIGHEST = -1.5, 2.0, 2.0, 5.0     # %, see above
+LOW, EACH, SPARE, HIGHEST = -1.5, 2.0, 2.0, 5.5     # %, see above
 HEAVY = 0.5                                         # %, no hydrogen exchanged
 
 

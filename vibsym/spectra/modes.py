@@ -71,7 +71,18 @@ def _parse(text: str, group) -> Mode:
     if match is None:
         raise VibsymError(f"mode '{text}' cannot be read; write number:species=wavenumber, as in ν4:T2=1306 or T2=1306")
     species = group.species_named(match["species"]).label
+    _check_linear(text, group, species)
     return Mode(mode_name(match["name"]) if match["name"] else "", species, _wavenumber(text, match["value"]))
+
+
+def _check_linear(text: str, group, species: str) -> None:
+    """Refuse what no vibration of a linear molecule is (Σ-, Δ, ...), and any vibration of a single atom."""
+    if group.symbol == "Kh":
+        raise VibsymError(f"mode '{text}': Kh is the group of a single atom, which has no vibrations")
+    if group.infinite:
+        possible = [label for label in group.image_labels.values() if not label.startswith("Σ") or label.endswith("+")]
+        if species not in possible:
+            raise VibsymError(f"mode '{text}': fundamentals of {group.symbol} are {', '.join(possible)}")
 
 
 def _wavenumber(text: str, value: str | None) -> float | None:

@@ -4,6 +4,7 @@ The common group of a molecule and its isotopologue holds the operations that ex
 in both; in it the species of the two can be compared, and the product rule holds.
 """
 
+import re
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from functools import cached_property
@@ -99,7 +100,10 @@ def substitution(structure: Structure, replacements: str, tolerance: float = DEF
 
 def compare(one: Structure, other: Structure, tolerance: float = DEFAULT_TOLERANCE,
             axes: str | None = None) -> Substitution:
-    """Return two isotopologues, the same atoms in the same places, with their groups and the group they share."""
+    """Return two isotopologues, the same atoms in the same places, with their groups and the group they share.
+
+    `axes` makes another choice of axes (see `find_symmetry`), in both where they have one group.
+    """
     if len(one) == 1:
         raise VibsymError(f"{one.source or one.formula}: one atom has no vibrations; isotopes change nothing")
     for each in (one, other):
@@ -109,6 +113,8 @@ def compare(one: Structure, other: Structure, tolerance: float = DEFAULT_TOLERAN
                               "put the real atom there")
     original = find_symmetry(one, tolerance, axes=axes)
     substituted = find_symmetry(other, tolerance)
+    if axes and substituted.group is original.group:
+        substituted = find_symmetry(other, tolerance, axes=axes)
     pairs = list(zip(one.kinds.tolist(), other.kinds.tolist()))
     rank = {pair: k for k, pair in enumerate(dict.fromkeys(pairs))}
     if len(rank) == len(set(other.kinds.tolist())):       # nothing told apart that the isotopologue does not
@@ -219,8 +225,8 @@ def _distinct(permutations: np.ndarray, wanted: dict[int, int | None], count: in
 
 
 def _atoms(structure: Structure, where: str, part: str) -> list[int]:
-    if where.isascii() and where.isdigit():
-        atom = int(where)
+    if re.fullmatch(r"[+-]?\d+(\.\d*)?", where, re.ASCII):
+        atom = int(where) if where.isdigit() else 0
         if not 1 <= atom <= len(structure):
             raise VibsymError(f"replacement '{part}': there is no atom {where}; "
                               f"the structure has atoms 1 to {len(structure)}")
