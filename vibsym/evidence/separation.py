@@ -20,7 +20,7 @@ def separating(candidates, observed: BandList) -> tuple[str, ...]:
         return ()
     if not observed.whole_range and not all(each.region for each in survivors):
         return ("no measurement yet: the lines belong to one region, so compare in that region first (--oscillators)",)
-    have, sentences = observed.spectra, []
+    have, sentences, survivors = observed.spectra, [], named(survivors)
     measured = any(line.polarisation for line in observed.lines)
     if "Raman" in have and not measured:
         sentences += _polarisation(survivors, "polarisation of the Raman lines")
@@ -36,17 +36,18 @@ def separating(candidates, observed: BandList) -> tuple[str, ...]:
     return tuple(sentences)
 
 
-def name_of(prediction: Prediction, survivors: list[Prediction]) -> str:
-    """Return a short name: the group where it tells the survivors apart, else the name with the group."""
+def named(survivors: list[Prediction]) -> list[tuple[str, Prediction]]:
+    """Return each with a short name: the group where it tells the survivors apart, else the name with the group."""
     groups = [each.group for each in survivors]
-    return prediction.group if len(set(groups)) == len(groups) else f"{prediction.name} ({prediction.group})"
+    apart = len(set(groups)) == len(groups)
+    return [(group if apart else f"{each.name} ({group})", each) for group, each in zip(groups, survivors)]
 
 
-def _by_value(survivors: list[Prediction], value) -> list[tuple[object, list[str]]]:
+def _by_value(survivors: list[tuple[str, Prediction]], value) -> list[tuple[object, list[str]]]:
     """Return the values from the largest down, each with the names of the structures that predict it."""
     found: dict = {}
-    for each in survivors:
-        found.setdefault(value(each), []).append(name_of(each, survivors))
+    for name, each in survivors:
+        found.setdefault(value(each), []).append(name)
     return sorted(found.items(), key=lambda pair: pair[0], reverse=True)
 
 
@@ -61,7 +62,7 @@ def _predict(names: list[str], what: str) -> str:
     return f"{_names(names)} predict{'s' if len(set(names)) == 1 else ''} {what}"
 
 
-def _polarisation(survivors: list[Prediction], title: str) -> list[str]:
+def _polarisation(survivors: list[tuple[str, Prediction]], title: str) -> list[str]:
     values = _by_value(survivors, lambda each: each.counts["polarised"])
     if len(values) < 2:
         return []
@@ -69,7 +70,7 @@ def _polarisation(survivors: list[Prediction], title: str) -> list[str]:
     return [f"{title}: " + ", ".join([first, *(f"{_names(names)} {number or 'none'}" for number, names in values[1:])])]
 
 
-def _more_bands(survivors: list[Prediction], observed: BandList, spectrum: str) -> list[str]:
+def _more_bands(survivors: list[tuple[str, Prediction]], observed: BandList, spectrum: str) -> list[str]:
     """A better spectrum of the same kind: a band more than one structure allows would exclude it."""
     key, word = ("infrared", "infrared") if spectrum == "IR" else ("raman", "Raman")
     values = _by_value(survivors, lambda each: each.counts[key])
@@ -82,22 +83,22 @@ def _more_bands(survivors: list[Prediction], observed: BandList, spectrum: str) 
             f"{len(observed.of(spectrum))} seen"]
 
 
-def _other_spectrum(survivors: list[Prediction], title: str, key: str, word: str) -> list[str]:
+def _other_spectrum(survivors: list[tuple[str, Prediction]], title: str, key: str, word: str) -> list[str]:
     def value(each: Prediction) -> tuple[int, int]:
         return each.counts[key], each.counts["coincident"]
     values = _by_value(survivors, value)
     if len(values) < 2:
         return []
-    full = [each for each in survivors
+    full = [name for name, each in survivors
             if each.counts["infrared"] == each.counts["raman"] == each.counts["coincident"] > 0]
     if len(full) == 1:
-        return [f"{title}: only {name_of(full[0], survivors)} has all its bands in both"]
+        return [f"{title}: only {full[0]} has all its bands in both"]
     told = [f"{_names(names)} at most {number} {word} band{'s' if number != 1 else ''}, "
             f"{both or 'none'} of them in both spectra" for (number, both), names in values]
     return [f"{title}: " + "; ".join(told)]
 
 
-def _nothing(survivors: list[Prediction]) -> str:
-    names = _names([name_of(each, survivors) for each in survivors])
+def _nothing(survivors: list[tuple[str, Prediction]]) -> str:
+    names = _names([name for name, _ in survivors])
     return (f"infrared, Raman and polarisation cannot separate {names}: the numbers they predict are equal, or as many "
             "bands have been seen as any allows; isotopic substitution, intensities or diffraction can")
