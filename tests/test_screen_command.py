@@ -85,6 +85,8 @@ def test_which_isomer_is_in_the_flask():
     assert [each["point_group"]["symbol"] for each in (cis, trans)] == ["C1", "C1"]
     assert [each["local"]["point_group"]["symbol"] for each in (cis, trans)] == ["C2v", "D4h"]
     assert [each["verdict"] for each in (cis, trans)] == ["fits", "excluded"]
+    assert trans["oscillators"] == {"set": "stretch C-O, local group", "gamma": {"A1g": 1, "B1g": 1, "Eu": 1},
+                                    "infrared": 1, "raman": 2, "coincident": 0, "polarised": 1}
     leak = next(excuse for excuse in trans["excuses"] if excuse["kind"] == "leak")
     assert "(a) allowed in the true group C1, (b) let through by the surroundings (2 ligands at P)" in leak["reason"]
     whole = json.loads(run(*FLASK, *REGION).stdout)

@@ -55,14 +55,14 @@ class Candidate:
         return self.explanation.total
 
     @property
-    def thirds(self) -> int:
+    def sixths(self) -> int:
         """The score in sixths, a whole number that can be compared exactly."""
         return 3 * self.explanation.halves + 2 * len(self.unseen)
 
     @property
     def score(self) -> float:
         """Weight of the excuses and 1/3 for each unseen band."""
-        return round(self.thirds / 6, 6)
+        return round(self.sixths / 6, 6)
 
     def evidence(self) -> dict:
         """Return rank, score, verdict, excuses, explanation and unseen for JSON."""
@@ -82,10 +82,17 @@ class Candidate:
                     "point_groups": [part.point_group for part in parts]}
         else:
             head = {"structure": self.prediction.structure, "point_group": self.prediction.point_group}
-        more = {"oscillators": self.prediction.region} if self.prediction.region else {}
+        more = {"oscillators": self._oscillators()} if self.prediction.region else {}
         if self.prediction.local_group:
             more["local"] = {"point_group": self.prediction.local_group}
         return head | more | {"predicted": self.prediction.counts} | self.evidence()
+
+    def _oscillators(self) -> dict:
+        """Return the oscillators with their species and counts, as `expect` has them."""
+        gamma: dict[str, int] = {}
+        for species in self.prediction.bands:
+            gamma[species.label] = gamma.get(species.label, 0) + species.count
+        return {"set": self.prediction.region, "gamma": gamma, **self.prediction.counts}
 
 
 @dataclass(frozen=True)
@@ -194,8 +201,8 @@ def _unseen(prediction: Prediction, explanation: Explanation, spectra: tuple[str
 def _ranked(candidates: list[Candidate]) -> tuple[Candidate, ...]:
     """Return the candidates by score; equal scores share a rank and keep the order given."""
     ranked: list[Candidate] = []
-    for place, each in enumerate(sorted(candidates, key=lambda each: each.thirds), 1):
-        tied = ranked and ranked[-1].thirds == each.thirds
+    for place, each in enumerate(sorted(candidates, key=lambda each: each.sixths), 1):
+        tied = ranked and ranked[-1].sixths == each.sixths
         ranked.append(Candidate(each.prediction, each.explanation, each.excuses, each.unseen, each.verdict,
                                 ranked[-1].rank if tied else place))
     return tuple(ranked)
