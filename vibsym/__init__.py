@@ -13,8 +13,11 @@ _OWNERS = {
     "VibsymError": "vibsym.errors",
     "character_table": "vibsym.groups.character_table",
     "climb": "vibsym.spectra.climb",
+    "combine": "vibsym.spectra.combinations",
+    "descend": "vibsym.spectra.descent",
     "expect": "vibsym.spectra.expectation",
     "find_symmetry": "vibsym.structures.finder",
+    "isotopes": "vibsym.spectra.isotopes",
     "ladder": "vibsym.structures.ladder",
     "point_group": "vibsym.groups.pointgroup",
     "read": "vibsym.structures.reading",
@@ -24,8 +27,8 @@ _OWNERS = {
     "screen": "vibsym.evidence.proposals",
     "write_reduction": "vibsym.groups.reduction",
 }
-__all__ = ["Structure", "VibsymError", "character_table", "climb", "expect", "find_symmetry", "ladder", "point_group",
-           "read", "read_all", "read_bands", "reduce", "screen", "write_reduction"]
+__all__ = ["Structure", "VibsymError", "character_table", "climb", "combine", "descend", "expect", "find_symmetry",
+           "isotopes", "ladder", "point_group", "read", "read_all", "read_bands", "reduce", "screen", "write_reduction"]
 
 
 def __getattr__(name: str):

@@ -16,9 +16,10 @@ from math import comb
 import numpy as np
 
 from vibsym.errors import VibsymError
+from vibsym.groups.pointgroup import point_group
 from vibsym.groups.products import product_of, symmetric_power
 from vibsym.spectra.fermi import DEFAULT_RESONANCE, Doublet, FermiPair
-from vibsym.spectra.modes import Mode, mode_number
+from vibsym.spectra.modes import Mode, mode_number, named_modes, parse_modes
 from vibsym.spectra.populations import (
     DEFAULT_TEMPERATURE,
     boltzmann,
@@ -119,20 +120,23 @@ class Combinations:
                 "hot_bands": [each.to_dict() for each in self.hot_bands]}
 
 
-def combine(group, modes: Sequence[Mode], quanta: int = 2, *, temperature: float = DEFAULT_TEMPERATURE,
+def combine(group, modes: Sequence[Mode | str], quanta: int = 2, *, temperature: float = DEFAULT_TEMPERATURE,
             resonance: float = DEFAULT_RESONANCE, doublets: Sequence[Doublet] = ()) -> Combinations:
     """Return every overtone, sum and difference with 2 to `quanta` quanta.
 
-    `resonance` (cm-1) is how near a fundamental and a combination of a common species count as a Fermi pair;
-    `doublets` are observed pairs of lines with their intensity ratio.  A combination without a known wavenumber has
-    none.
+    `group` is a point group or its symbol, `modes` are fundamentals, or texts such as "ν4:T2=1306".  `resonance` (cm-1)
+    is how near a fundamental and a combination of a common species count as a Fermi pair; `doublets` are observed pairs
+    of lines with their intensity ratio.  A combination without a known wavenumber has none.
 
-    >>> from vibsym.groups.pointgroup import point_group
-    >>> result = combine(point_group("Td"), [Mode("ν4", "T2", 1306.0)])
+    >>> result = combine("Td", ["ν4:T2=1306"])
     >>> result.combinations[0].label, result.combinations[0].species
     ('2ν4', {'A1': 1, 'E': 1, 'T2': 1})
     """
-    modes = tuple(sorted(modes, key=lambda mode: _place(group, mode)))
+    group = point_group(group) if isinstance(group, str) else group
+    if any(isinstance(mode, str) for mode in modes):
+        modes = parse_modes([mode for mode in modes if isinstance(mode, str)], group) + tuple(
+            mode for mode in modes if not isinstance(mode, str))
+    modes = tuple(sorted(named_modes(modes), key=lambda mode: _place(group, mode)))
     temperature = checked_temperature(temperature)
     if not modes:
         raise VibsymError("no fundamentals: give --mode ν4:T2=1306 (once for each) or --assignment FILE")

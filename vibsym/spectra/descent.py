@@ -8,6 +8,7 @@ from functools import cached_property
 
 from vibsym.errors import VibsymError
 from vibsym.groups.descent import Embedding, all_embeddings, descend_gamma, embeddings
+from vibsym.groups.pointgroup import point_group
 from vibsym.spectra.activity import Counts, count_bands
 from vibsym.spectra.isotopes import activity_changes
 from vibsym.structures.symmetry import Symmetry
@@ -75,12 +76,12 @@ class Descent:
 
 
 def descend(source, to: str | None = None) -> Descent:
-    """Return the descent of a point group, or of the symmetry of a structure, to a subgroup or to all of them.
+    """Return the descent of a point group (or its symbol), or of the symmetry of a structure, to a subgroup or to all.
 
-    >>> from vibsym.groups.pointgroup import point_group
-    >>> [each.name for each in descend(point_group("D4h"), "D2d").embeddings]
+    >>> [each.name for each in descend("D4h", "D2d").embeddings]
     ["D2d (S4, C2')", "D2d (S4, C2'')"]
     """
+    source = point_group(source) if isinstance(source, str) else source
     symmetry = source if isinstance(source, Symmetry) else None
     group = source if symmetry is None else symmetry.group
     if to is None:

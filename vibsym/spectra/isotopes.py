@@ -17,7 +17,9 @@ from vibsym.groups.descent import descend_gamma
 from vibsym.spectra.activity import Counts, count_bands
 from vibsym.spectra.fermi import Doublet, deperturbed
 from vibsym.spectra.modes import Mode
-from vibsym.structures.isotopes import Substitution
+from vibsym.structures.finder import DEFAULT_TOLERANCE
+from vibsym.structures.isotopes import Substitution, substitution
+from vibsym.structures.structure import Structure
 from vibsym.vibrations.cartesian import displacements
 from vibsym.vibrations.productrule import ProductLine, product_rule
 
@@ -85,6 +87,18 @@ class IsotopeEffect:
                   "activity": list(self.activity), "product_rule": {line.species: line.theory for line in self.rule},
                   "product_factors": {line.species: dict(line.factors) for line in self.rule}}
         return answer | ({"observed": [each.to_dict() for each in self.observed]} if self.observed else {})
+
+
+def isotopes(structure: Structure, replacements: str, lines: Sequence[Mode] = (),
+             lines_substituted: Sequence[Mode] = (), *, doublets: Sequence[Doublet] = (),
+             tolerance: float = DEFAULT_TOLERANCE, axes: str | None = None) -> IsotopeEffect:
+    """Return what replacing isotopes (`1=D,2=D`, `H=D`) does to a structure; other arguments as in `isotope_effect`.
+
+    >>> methane = Structure.from_atoms("CHHHH", [[0, 0, 0], [1, 1, 1], [1, -1, -1], [-1, 1, -1], [-1, -1, 1]])
+    >>> [(line.species, round(line.theory, 3)) for line in isotopes(methane, "H=D").rule]
+    [('A1', 0.707), ('E', 0.707), ('T2', 0.56)]
+    """
+    return isotope_effect(substitution(structure, replacements, tolerance, axes), lines, lines_substituted, doublets)
 
 
 def isotope_effect(pair: Substitution, lines: Sequence[Mode] = (), lines_substituted: Sequence[Mode] = (),
