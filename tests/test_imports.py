@@ -55,9 +55,9 @@ def test_import_vibsym_loads_nothing():
 
 
 def test_the_names_that_vibsym_offers():
-    assert vibsym.__all__ == ["Structure", "VibsymError", "character_table", "climb", "combine", "descend", "expect",
-                              "find_symmetry", "isotopes", "ladder", "point_group", "read", "read_all", "read_bands",
-                              "reduce", "screen", "write_reduction"]
+    assert vibsym.__all__ == ["Structure", "VibsymError", "assign", "character_table", "climb", "combine", "descend",
+                              "expect", "find_symmetry", "isotopes", "ladder", "point_group", "read", "read_all",
+                              "read_bands", "reduce", "screen", "write_reduction"]
     for name in vibsym.__all__:
         assert callable(getattr(vibsym, name))
     assert set(vibsym.__all__) <= set(dir(vibsym))

@@ -11,6 +11,7 @@ __version__ = "0.1.0"
 _OWNERS = {
     "Structure": "vibsym.structures.structure",
     "VibsymError": "vibsym.errors",
+    "assign": "vibsym.evidence.assignment",
     "character_table": "vibsym.groups.character_table",
     "climb": "vibsym.spectra.climb",
     "combine": "vibsym.spectra.combinations",
@@ -27,8 +28,9 @@ _OWNERS = {
     "screen": "vibsym.evidence.proposals",
     "write_reduction": "vibsym.groups.reduction",
 }
-__all__ = ["Structure", "VibsymError", "character_table", "climb", "combine", "descend", "expect", "find_symmetry",
-           "isotopes", "ladder", "point_group", "read", "read_all", "read_bands", "reduce", "screen", "write_reduction"]
+__all__ = ["Structure", "VibsymError", "assign", "character_table", "climb", "combine", "descend", "expect",
+           "find_symmetry", "isotopes", "ladder", "point_group", "read", "read_all", "read_bands", "reduce", "screen",
+           "write_reduction"]
 
 
 def __getattr__(name: str):

@@ -77,18 +77,30 @@ def command(
 
 def _molecules(path, symmetry, assignments, tolerance, as_group, axes, reading):
     """Return (symmetry, assigned modes) of every assignment; its head may name the file of an isotopologue."""
-    from pathlib import Path
-
     from vibsym.cli.assigned import check_group, symmetry_of_file
     from vibsym.evidence.assignment_file import read_assignment
 
     found = []
     for name in assignments:
         file = read_assignment(name)
-        other = Path(name).parent / file.structure if file.structure else None
-        own = symmetry
-        if other is not None and other.is_file() and Path(path).exists() and not other.samefile(path):
-            own = symmetry_of_file(str(other), tolerance, as_group, axes, reading)
+        other = _isotopologue(path, name, file.structure)
+        own = symmetry if other is None else symmetry_of_file(other, tolerance, as_group, axes, reading)
         check_group(file, own.group)
         found.append((own, file.modes(own.group)))
     return found
+
+
+def _isotopologue(path: str, assignment: str, named: str) -> str | None:
+    """Return the structure file that an assignment names, None where it is the one analysed (or no name is given)."""
+    from pathlib import Path
+
+    from vibsym.errors import VibsymError
+
+    if named in ("", "-", path) or path == "-":
+        return None
+    for other in (Path(named), Path(assignment).parent / named):
+        if other.is_file():
+            return None if Path(path).is_file() and other.samefile(path) else str(other)
+    if Path(named).name == Path(path).name:
+        return None
+    raise VibsymError(f"{assignment}: its head names the structure {named}, which is not there; correct '# structure:'")

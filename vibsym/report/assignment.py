@@ -100,12 +100,8 @@ def _axes(symmetry) -> list:
     choice = axis_words(symmetry)
     pairs = tuple(choice.words.items())
     if choice.exchange:
-        pairs += (
-            (
-                "other",
-                f"the other choice of axes (--axes) exchanges {', '.join(typeset(each).replace('<->', '↔') for each in choice.exchange)}",
-            ),
-        )
+        swaps = ", ".join(typeset(each).replace("<->", "↔") for each in choice.exchange)
+        pairs += (("other", f"the other choice of axes (--axes) exchanges {swaps}"),)
     return [Facts(pairs, "Axes")] if pairs else []
 
 
