@@ -8,7 +8,7 @@ import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
-from orbits import FAMILIES, gamma_3n, orbit_structure, posed, random_rotation
+from orbits import FAMILIES, gamma_3n, noise, orbit_structure, posed, random_rotation
 
 from vibsym.errors import VibsymError
 from vibsym.groups.pointgroup import point_group
@@ -120,6 +120,21 @@ def test_deviation_does_not_depend_on_the_pose(symbol, seed, shake):
     assert again.deviation == pytest.approx(first.deviation, abs=1e-7)
     assert again.shifts == pytest.approx(first.shifts[order], abs=1e-6)
     check_laws(again)
+
+
+@pytest.mark.parametrize("seed", [81, 283, 387, 493, 585])
+def test_groups_that_share_their_deviation_are_chosen_alike_in_every_pose(seed):
+    """A shaken square of XeF4 between the deviations of its D2h and D2d (equal to rounding) and of D4h."""
+    rng = np.random.default_rng(seed)
+    square = np.array([[0, 0, 0], [1.95, 0, 0], [0, 1.95, 0], [-1.95, 0, 0], [0, -1.95, 0]])
+    shaken = square + noise(rng, 5, float(rng.uniform(0.01, 0.2)))
+    limit = find_symmetry(Structure.from_atoms(["Xe"] + ["F"] * 4, shaken), 0.5).deviation
+    found = set()
+    for _ in range(6):
+        turned = Structure.from_atoms(["Xe"] + ["F"] * 4, shaken @ random_rotation(rng).T + rng.normal(size=3))
+        symmetry = find_symmetry(turned, limit - 1e-4)
+        found.add((symmetry.group.symbol, symmetry.shifts.round(6).tobytes()))
+    assert len(found) == 1
 
 
 def test_the_placement_is_least_squares():

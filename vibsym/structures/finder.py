@@ -12,7 +12,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from vibsym.errors import VibsymError
-from vibsym.groups.identify import identified
+from vibsym.groups.identify import identified, schoenflies
 from vibsym.groups.pointgroup import point_group
 from vibsym.structures.axis_choice import chosen_setting, free_frame, settled
 from vibsym.structures.candidates import Operations, find_operations
@@ -25,6 +25,7 @@ from vibsym.structures.symmetry import Symmetry
 
 DEFAULT_TOLERANCE = 0.02       # Å
 LARGEST_TOLERANCE = 0.5        # Å
+SAME = 1e-6                    # Å; deviations that differ by less are equal
 
 
 @dataclass(frozen=True)
@@ -135,14 +136,42 @@ def _largest_subset(centred, operations, table, tolerance):
         known[frozenset(members)] = placement
         return float(np.sqrt((placement.shifts ** 2).mean())) <= tolerance
 
-    best = None
+    largest = []
     for members in closed_subsets(table, accept=accept):
         placement = known.get(frozenset(members)) or place_subset(centred, operations, table, members)
         if placement is None or placement.deviation > tolerance:
             continue
-        if best is None or (placement.order, -placement.deviation) > (best.order, -best.deviation):
-            best = placement
-    return best
+        if not largest or placement.order >= largest[0].order:
+            same = largest and placement.order == largest[0].order
+            largest = [*largest, placement] if same else [placement]
+    return least_deviating(largest)
+
+
+def least_deviating(placements):
+    """Return the placement of the smallest deviation.
+
+    Two groups often share theirs, when one atom that both move alike decides. The sum of squared shifts, the symbol
+    and the permutations break the tie, so that the pose never does.
+    """
+    least = min(placement.deviation for placement in placements)
+    tied = [placement for placement in placements if placement.deviation < least + SAME]
+    if len(tied) == 1:
+        return tied[0]
+    return min(tied, key=lambda placement: (round(float((placement.shifts ** 2).sum()), 6), symbol_of(placement),
+                                            _codes(placement)))
+
+
+def symbol_of(placement) -> str:
+    """Return the group symbol of a placement."""
+    if isinstance(placement, LinearPlacement):
+        return placement.symbol
+    return schoenflies(placement.matrices, placement.signs)
+
+
+def _codes(placement) -> list:
+    if isinstance(placement, LinearPlacement):
+        return []
+    return sorted((row.tolist(), int(sign)) for row, sign in zip(placement.permutations, placement.signs))
 
 
 def symmetry_of(centred: Centred, found, tolerance: float, axes: str | None = None, bonds=None) -> Symmetry:

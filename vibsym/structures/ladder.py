@@ -15,7 +15,6 @@ import numpy as np
 
 from vibsym.errors import VibsymError
 from vibsym.groups.distinct import first_of_each
-from vibsym.groups.identify import schoenflies
 from vibsym.groups.pointgroup import point_group
 from vibsym.structures.candidates import Operations, codes_of, find_operations
 from vibsym.structures.finder import (
@@ -23,9 +22,11 @@ from vibsym.structures.finder import (
     Centred,
     centre,
     largest_group,
+    least_deviating,
     legal_tolerance,
     line_within,
     place_subset,
+    symbol_of,
     symmetry_of,
 )
 from vibsym.structures.linear import LinearPlacement, linear_placements
@@ -103,7 +104,7 @@ def as_group(structure, symbol: str, tolerance: float = DEFAULT_TOLERANCE, axes:
     found, higher = _climb(centred, tolerance)
     fitting = [p for p in (found, *higher) if symbol_of(p) == wanted]
     if fitting:
-        best = min(fitting, key=lambda p: p.deviation)
+        best = least_deviating(fitting)
         symmetry = symmetry_of(centred, best, tolerance, axes, bonds)
         return replace(symmetry, tolerance=_tolerance_of(symmetry.deviation, tolerance, centred.most))
     rungs = ", ".join(f"{symbol_of(p)} ({within(p.deviation)} Å)" for p in _nested(found, higher))
@@ -115,13 +116,6 @@ def _tolerance_of(deviation: float, tolerance: float, most: float) -> float:
     """Return the tolerance at which a rung is reached: the one given, or its deviation rounded up to the next 0.01 Å.
     """
     return max(tolerance, min(most, float(np.ceil(deviation * 100 - 1e-9) / 100)), deviation)
-
-
-def symbol_of(placement) -> str:
-    """Return the group symbol of a placement."""
-    if isinstance(placement, LinearPlacement):
-        return placement.symbol
-    return schoenflies(placement.matrices, placement.signs)
 
 
 def largest_tolerance(centred: Centred) -> float:
@@ -213,7 +207,7 @@ def _nested(found, higher) -> list:
         if above is not None:
             level = [p for p in level if _holds(above, p)]
         if level:
-            above = min(level, key=lambda p: p.deviation)
+            above = least_deviating(level)
             ceiling = above.deviation
             rungs.append(above)
     return [found, *reversed(rungs)]
