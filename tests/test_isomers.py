@@ -191,6 +191,23 @@ def test_index_and_handedness_name_every_isomer_of_known_monodentate_ligands(sym
             assert symbol == "SPY-4" or all(isomer.descriptors for isomer in found if isomer.chiral), ligands
 
 
+def test_the_worked_example_of_the_octahedral_index():
+    """OC-6-43: carbonyl (4) trans to triphenylarsane (1), acetonitrile (3) trans to nitrosyl (2) (IR-9.3.3.3, from
+    memory)."""
+    found = isomers("OC-6", "Cr", ["AsPh3", "NO", "MeCN=2", "CO=2"]).first()
+    assert next(each.index for each in found if "AsPh3–CO, NO–MeCN" in each.name) == "OC-6-43"
+
+
+def test_a_named_donor_makes_a_point_of_a_letter_that_is_an_element():
+    """MA4B2 with B a phosphane, not boron; where B has priority trans is OC-6-12, where A has it OC-6-11."""
+    for donors, index in ((["A=N", "B=P"], "OC-6-12"), (["A=P", "B=N"], "OC-6-11")):
+        found = isomers("OC-6", "M", ["A=4", "B=2"], donors)
+        assert [ligand.words for ligand in found.ligands] == [f"named point, donor {each[2]}" for each in donors]
+        assert {each.name: each.index for each in found.first()} == {"cis": "OC-6-22", "trans": index}
+    assert isomers("OC-6", "M", ["CO=4", "PPh3=2"], ["PPh3=P"])[1].index == "OC-6-12"
+    assert isomers("OC-6", "M", ["CO=4", "Cl=2"], ["Cl=Cl"]).ligands[1].form == "atom"
+
+
 def test_too_many_unknown_donors_give_no_ranking():
     sorts = read_ligands([f"L{k}=1" for k in range(6)])
     found = orbits(shape("OC-6"), sorts)
@@ -339,6 +356,7 @@ def test_default_oscillators():
     ("OC-6 --centre Mo --ligand CO=6 --limit 0", "--limit 0"),
     ("OC-6 --centre Mo --ligand a(N,N,N,N)=1 --ligand CO=2", "chelates have two or three"),
     ("OC-6 --centre Mo", "no ligands"),
+    ("OC-6 --centre Mo --ligand CN=6 --donor CN=N", "CN is known to bind through C"),
     ("OC-6 --centre Mo --ligand CO=6 --mixture", "--mixture needs observed bands"),
     ("OC-6 --centre Mo --ligand CO=6 --between 1800 2100", "--between needs observed bands"),
 ])

@@ -1,11 +1,11 @@
 """Ligands as a chemist types them: `CO=4`, `Cl=2`, `L=2`, `en(N,N)=3`, with what the later steps need to know of each.
 
-A ligand is an atom (its symbol is that of an element), a linear diatomic (CO, CN, NO, N2, ..., donor first) or a
-named point: a ligand of which only the place counts.  Those in `tables/ligands.csv` have a known donor; another point
-has one where the user names it (`--donor L=P`).  A chelate lists its donors: in parentheses a chain, whose
-consecutive donors stand on neighbouring sites (`dien(N,N',N)`), in square brackets a ring or tripod, of which every
-two do (`tacn[N,N,N]`). Donors of a chelate with the same name are alike, but the middle of a chain of three never
-equals its ends.
+A ligand is an atom (its symbol is that of an element, and no other donor is named for it), a linear diatomic (CO, CN,
+NO, N2, ..., donor first) or a named point: a ligand of which only the place counts.  Those in `tables/ligands.csv` have
+a known donor; another point has one where the user names it (`--donor L=P`).  A chelate lists its donors: in
+parentheses a chain, whose consecutive donors stand on neighbouring sites (`dien(N,N',N)`), in square brackets a ring or
+tripod, of which every two do (`tacn[N,N,N]`). Donors of a chelate with the same name are alike, but the middle of a
+chain of three never equals its ends.
 """
 
 import re
@@ -135,13 +135,24 @@ def _read_ligand(text: str, named: Mapping[str, str], used: set[str]) -> Ligand:
         raise VibsymError(f"ligand '{text}' is not NAME=COUNT, as CO=4; a chelate lists its donors, as 'en(N,N)=3'")
     row = known_ligands().get(name)
     if row:
+        _agree(name, row["donors"], named, used)
         return _known(name, count, row)
-    if name in elements() or name in HYDROGEN_ISOTOPES:
-        symbol = "H" if name in HYDROGEN_ISOTOPES else name
+    symbol = "H" if name in HYDROGEN_ISOTOPES else name
+    if symbol in elements() and named.get(name, symbol) == symbol:
+        used.update({name} & set(named))
         return Ligand(name, count, (Donor(name, symbol, ()),), (0,), "single")
-    if name in named:
+    if name in named:               # a letter such as B is then a point, not boron
         used.add(name)
     return Ligand(name, count, (Donor(name, named.get(name), None),), (0,), "single")
+
+
+def _agree(name: str, donors: str, named: Mapping[str, str], used: set[str]) -> None:
+    """Accept a donor that only repeats what is known of a ligand; another one is an error."""
+    if name in named and len(donors.split()) == 1:
+        if named[name] != donors:
+            raise VibsymError(f"--donor {name}={named[name]}: {name} is known to bind through {donors}; give a ligand "
+                              "that binds otherwise a name of its own")
+        used.add(name)
 
 
 def _count(text: str, digits: str) -> int:
