@@ -150,3 +150,30 @@ def test_dummy_atoms_are_refused_by_name():
     structure = Structure.from_atoms(["C", "X"], [[0, 0, 0], [0, 0, 1.5]])
     with pytest.raises(VibsymError, match="dummy atom"):
         analyse(find_symmetry(structure))
+
+
+def test_isotopologues_named_in_the_head(tmp_path):
+    """`--refine` twice: each assignment names its structure file; one that is not there is an error."""
+    import json
+    import shutil
+
+    from click.testing import CliRunner
+
+    from vibsym.cli.main import cli
+
+    for name in ("methane", "methane-d4"):
+        shutil.copy(REFERENCE / "shimanouchi" / f"{name}.xyz", tmp_path)
+    rows = {
+        "methane": "ν1,A1,2917\nassigned,ν2,E,1534\nassigned,ν4,T2,1306",
+        "methane-d4": "ν1,A1,2109\nassigned,ν2,E,1092",
+    }
+    for name, text in rows.items():
+        head = f"# structure: {name}.xyz\n# group: Td\nstatus,mode,species,raman_line\nassigned,"
+        (tmp_path / f"{name}.csv").write_text(head + text + "\n", encoding="utf-8")
+    command = ["normal", str(tmp_path / "methane.xyz"), "--format", "json"]
+    files = [word for name in rows for word in ("--refine", str(tmp_path / f"{name}.csv"))]
+    residuals = json.loads(CliRunner().invoke(cli, command + files).output)["refinement"]["residuals"]
+    assert [row["structure"] for row in residuals] == ["CH4"] * 3 + ["CD4"] * 2
+    (tmp_path / "methane-d4.xyz").unlink()
+    lost = CliRunner().invoke(cli, command + files)
+    assert lost.exit_code == 1 and "methane-d4.xyz, which is not there" in lost.output
