@@ -25,6 +25,7 @@ from vibsym.vibrations.estimates import mode_class
 from vibsym.vibrations.forcefield import ForceField, standard_field
 from vibsym.vibrations.internal import internal_coordinates
 from vibsym.vibrations.normal_modes import normal_modes
+from vibsym.vibrations.surroundings import Surroundings
 
 NEGLIGIBLE = 0.005  # of ln(factor) or of a share
 FEWEST = 12  # left-out modes a class needs for a spread of its own
@@ -78,11 +79,12 @@ def report(arguments: list[str]) -> None:
 def leave_out(made: Calibration, p: np.ndarray) -> tuple[dict[int, np.ndarray], dict[int, list[str]]]:
     """Return ln(calculated/observed) and the class of every mode, by block, each from a fit without its family."""
     errors, classes = {}, {}
+    _, lonely = stretches_of(made)
     for family, q in left_out(made, p):
         errors |= made.errors(q, family)
         field = field_of(made, q)
         for molecule in family:
-            classes |= _classes(made, molecule, field)
+            classes |= _classes(made, molecule, field, lonely)
     return errors, classes
 
 
@@ -97,21 +99,27 @@ def parameters_of(made: Calibration, field: ForceField) -> np.ndarray:
     return np.array([starting_value(name, field, 0.0) for name in made.problem.names])
 
 
+def stretches_of(made: Calibration) -> tuple[dict[int, set[str]], set[str]]:
+    """Return the stretch factors of every molecule, and those that only one family has."""
+    used: dict[int, set[str]] = {}
+    families: dict[str, set[str]] = {}
+    for block in made.problem.blocks:
+        present = np.flatnonzero((made.problem.powers[block.types] != 0).any(axis=0)).tolist()
+        names = {made.problem.names[k] for k in present if made.problem.names[k].startswith("stretch ")}
+        used.setdefault(block.molecule, set()).update(names)
+        for name in names:
+            families.setdefault(name, set()).add(made.samples[block.molecule].family)
+    return used, {name for name, owners in families.items() if len(owners) == 1}
+
+
 def split_by_fallback(made: Calibration, errors: dict) -> tuple[dict, dict]:
     """Part the errors: molecules all of whose bond types occur in other families too, and the others."""
-    users: dict[int, set[str]] = {}
-    stretches = [number for number, name in enumerate(made.problem.names) if name.startswith("stretch ")]
-    per_molecule: dict[int, set[int]] = {}
-    for block in made.problem.blocks:
-        used = set(np.flatnonzero((made.problem.powers[block.types] != 0).any(axis=0)).tolist()).intersection(stretches)
-        per_molecule.setdefault(block.molecule, set()).update(used)
-        for number in used:
-            users.setdefault(number, set()).add(made.samples[block.molecule].family)
-    alone = {molecule for molecule, used in per_molecule.items() if any(len(users[number]) == 1 for number in used)}
-    return (
-        {k: v for k, v in errors.items() if made.problem.blocks[k].molecule not in alone},
-        {k: v for k, v in errors.items() if made.problem.blocks[k].molecule in alone},
-    )
+    used, lonely = stretches_of(made)
+    known, fallback = {}, {}
+    for number, values in errors.items():
+        alone = used[made.problem.blocks[number].molecule] & lonely
+        (fallback if alone else known)[number] = values
+    return known, fallback
 
 
 def table_text(made: Calibration, p: np.ndarray) -> str:
@@ -179,17 +187,22 @@ def error_table(made: Calibration, errors: dict, classes: dict) -> str:
     return head + _csv(("class", "spread", "shift", "modes"), rows)
 
 
-def _classes(made: Calibration, molecule: int, field: ForceField) -> dict[int, list[str]]:
+def _classes(made: Calibration, molecule: int, field: ForceField, lonely: set[str]) -> dict[int, list[str]]:
+    """Return the classes of the modes of a molecule left out; a bond that only it has counts as a fall-back."""
     symmetry = made.samples[molecule].symmetry
-    sets = internal_coordinates(symmetry)
-    structure = symmetry.structure
-    lacking = {each["set"] for each in field.fallback(structure.symbols, symmetry.positions, sets)}
-    modes = normal_modes(symmetry, sets, field.matrix(structure.symbols, symmetry.positions, sets))
+    sets, symbols = internal_coordinates(symmetry), symmetry.structure.symbols
+    around = Surroundings(symbols, symmetry.positions, sets)
+    lacking = {
+        each.name
+        for each in sets
+        if each.kind == "stretch"
+        and any(field.bonds.entry(around, *bond).name in lonely for bond in each.atoms.tolist())
+    }
+    modes = normal_modes(symmetry, sets, field.matrix(symbols, symmetry.positions, sets))
     found = {}
     for number, block in enumerate(made.problem.blocks):
         if block.molecule == molecule and number in made.observed:
-            own = [mode for mode in modes if mode.species == block.label]
-            found[number] = [mode_class(mode, lacking) for mode in own]
+            found[number] = [mode_class(mode, lacking) for mode in modes if mode.species == block.label]
     return found
 
 
