@@ -93,6 +93,20 @@ def test_which_isomer_is_in_the_flask():
     assert [each["rank"] for each in whole["candidates"]] == [1, 1]
 
 
+def test_a_whole_spectrum_is_cut_to_the_carbonyls_of_a_metal_only(tmp_path):
+    lines = Path(REGION[1]).read_text() + "2930,IR,s,,,\n1437,IR,s,,,\n420,IR,m,,,\n"
+    (tmp_path / "whole.csv").write_text(lines)
+    for more in (("--local",), ()):
+        cut, whole = (json.loads(run(*FLASK, "--bands", bands, *REGION[2:], *more).stdout)
+                      for bands in (REGION[1], str(tmp_path / "whole.csv")))
+        assert cut["candidates"] == whole["candidates"] and "3 lines outside" in whole["notes"][0]
+    (tmp_path / "ether.xyz").write_text("9\n\nC 1.17 -.19 0\nO 0 .59 0\nC -1.17 -.19 0\nH 2.02 .48 0\nH -2.02 .48 0\n"
+                                        "H 1.23 -.83 .89\nH 1.23 -.83 -.89\nH -1.23 -.83 .89\nH -1.23 -.83 -.89\n")
+    (tmp_path / "ether.csv").write_text("wavenumber,spectrum\n1102,IR\n928,IR\n1900,IR\n")
+    answer = json.loads(run(str(tmp_path / "ether.xyz"), "--bands", str(tmp_path / "ether.csv"), *REGION[2:]).stdout)
+    assert answer["bands"]["infrared"] == 3
+
+
 def test_a_named_point_lets_weak_bands_through(tmp_path):
     for name, axis in (("cis", "1 0 0"), ("trans", "0 0 -1")):
         x, y, z = (float(each) for each in axis.split())
@@ -133,3 +147,11 @@ def test_isomers_with_bands_in_one_command():
     assert len(mixed["mixtures"][0]["structures"]) == 2 and "mixtures" not in answer
     short = CliRunner().invoke(cli, [*arguments, "--limit", "1"]).stdout
     assert "2 isomers" in short and "Proofs of the other 1" in short
+
+
+def test_a_nitro_group_is_no_diatomic_ligand(tmp_path):
+    (tmp_path / "nitro.xyz").write_text("4\n\nCu 0 0 0\nN 0 0 1.95\nO 0 1.07 2.55\nO 0 -1.07 2.55\n")
+    (tmp_path / "nitro.csv").write_text("wavenumber,spectrum\n1450,IR\n1325,IR\n")
+    answer = json.loads(run(str(tmp_path / "nitro.xyz"), "--bands", str(tmp_path / "nitro.csv"), "--oscillators", "N-O",
+                            "--format", "json").stdout)
+    assert answer["bands"]["infrared"] == 2 and answer["notes"] == []

@@ -210,6 +210,20 @@ def test_oscillators_of_one_region_are_missing_in_either_spectrum():
     assert [len(each.unseen) for each in result.candidates] == [0, 4]
 
 
+def test_carbonyls_are_compared_in_their_region():
+    """A whole spectrum given with oscillators that lie apart from all others: only their lines count."""
+    found = isomers_of("CO=4", "Cl=2")
+    region = "2023,IR,m\n1935,IR,vs\n1919,IR,s\n1880,IR,s\n"
+    result = screened(found, "2930,IR,s\n" + region + "1437,IR,s\n520,IR,m\n540,Raman,m\n310,Raman,s\n")
+    assert [(each.prediction.name, each.score) for each in result.candidates] == [("cis", 0.0), ("trans", 3.0)]
+    assert result.notes[0].startswith("5 lines outside 1550 to 2400 cm-1") and "--between" in result.notes[0]
+    assert result.observed.spectra == ("IR",)            # the Raman spectrum ends below the region
+    assert screened(found, region).notes == ()
+    metal = {entry.isomer.name: entry.prediction() for entry in list_isomers("OC-6", "Pt", ["Cl=6"]).entries}
+    whole = screened(metal, "343,IR,vs\n150,IR,m\n")
+    assert len(whole.observed.lines) == 2 and "bends and other modes in the list stay unexplained" in whole.notes[0]
+
+
 def test_json_is_the_contract():
     observed = parse_bands(HEAD + "940,IR,vs\n614,IR,s\n772,Raman,vs,p\n642,Raman,w\n525,Raman,w\n")
     answer = json.loads(render([screen([octahedron()], observed)], view, "json"))

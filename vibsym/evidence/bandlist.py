@@ -141,6 +141,23 @@ def within(observed: BandList, between: tuple[float, float] | None) -> BandList:
     return replace(observed, lines=lines, between=(low, high))
 
 
+def in_region(observed: BandList, low: float, high: float) -> BandList:
+    """Return the lines of the region where all bands of a set of oscillators lie; the list itself if none is there.
+
+    A spectrum whose lines all lie on one side of the region was not observed in it.
+    """
+    kept = tuple(line for line in observed.lines if low <= line.wavenumber <= high)
+    if observed.between or not kept or len(kept) == len(observed.lines):
+        return observed
+    spans = {name: BandList._span([line for line in observed.lines if line.spectrum == name])
+             for name in observed.spectra}
+    left = len(observed.lines) - len(kept)
+    note = (f"{left} {'line' if left == 1 else 'lines'} outside {low:g} to {high:g} cm-1, where these oscillators lie, "
+            f"{'is' if left == 1 else 'are'} left out; --between takes another region")
+    return replace(observed, lines=kept, notes=(*observed.notes, note),
+                   spectra=tuple(name for name, (start, end) in spans.items() if end >= low and start <= high))
+
+
 def parse_bands(text: str, source: str = "band list", spectrum: str | None = None, *,
                 light: str = "plane") -> BandList:
     """Return the lines written in a text; `spectrum` is the one of every row without a spectrum column.

@@ -4,13 +4,17 @@ In the local group a weak forbidden band may leak (a) where the molecule's own, 
 surroundings, if a polyatomic ligand was taken for a point.
 """
 
+import numpy as np
+
 from vibsym.errors import VibsymError
 from vibsym.evidence.proposals import Proposal, bands_within, name_of
-from vibsym.spectra.oscillators import LocalSymmetry, Oscillators, oscillators
+from vibsym.spectra.bond_ranges import range_of
+from vibsym.spectra.oscillators import LocalSymmetry, Oscillators, find_oscillators, oscillators
 from vibsym.spectra.prediction import SURROUNDINGS, TRUE_GROUP, Prediction, SpeciesBands
 from vibsym.structures.equivalent_bonds import symmetric_bonds
 from vibsym.structures.finder import find_symmetry
 from vibsym.structures.ladder import as_group, ladder
+from vibsym.structures.periodic import is_metal
 from vibsym.structures.structure import Structure
 from vibsym.structures.symmetry import Symmetry, within
 
@@ -43,11 +47,12 @@ def _stretches(structure: Structure, symmetry: Symmetry, proposal: Proposal) -> 
 def _of_molecule(structure: Structure, symmetry: Symmetry, true: Symmetry | None, proposal: Proposal) -> Prediction:
     """The oscillators in the group of the molecule; `true` is its own group if `symmetry` is a higher rung."""
     found = _stretches(structure, symmetry, proposal).bands
+    span = _span(structure, symmetry, proposal)
     rung = f" as {symmetry.group.symbol} ({within(symmetry.deviation)} Å)" if true is not None else ""
     points = ", ".join(_named_points(structure))
     return Prediction(name_of(structure) + rung, structure.to_dict(), symmetry.to_dict(),
                       bands_within(found.gamma, symmetry, true, bool(points)), region=found.name,
-                      true_group=true.group.symbol if true is not None else "", surroundings=points)
+                      true_group=true.group.symbol if true is not None else "", surroundings=points, span=span)
 
 
 def _of_surroundings(structure: Structure, symmetry: Symmetry, proposal: Proposal) -> Prediction:
@@ -64,7 +69,26 @@ def _of_surroundings(structure: Structure, symmetry: Symmetry, proposal: Proposa
                                   () if species.infrared else ways[0], () if species.raman else ways[1]))
     return Prediction(name_of(structure), structure.to_dict(), symmetry.to_dict(), tuple(bands),
                       region=f"{local.bands.name}, local group", true_group=symmetry.group.symbol, surroundings=points,
-                      local_group=local.symmetry.to_dict())
+                      local_group=local.symmetry.to_dict(), span=_span(structure, symmetry, proposal))
+
+
+def _span(structure: Structure, symmetry: Symmetry, proposal: Proposal) -> tuple[float, float] | None:
+    """Return the range of the oscillators if all are diatomic ligands of metals, terminal or bridging; a nitro group or
+    an acyl is none."""
+    bonds = symmetric_bonds(symmetry)
+    _, pairs, _ = find_oscillators(structure, bonds, proposal.oscillators)
+    degree = np.bincount(bonds.ravel(), minlength=len(structure))
+    metal = np.array([is_metal(number) for number in structure.numbers.tolist()])
+    metals = np.zeros(len(structure), dtype=int)
+    for column in (0, 1):
+        np.add.at(metals, bonds[metal[bonds[:, 1 - column]], column], 1)
+    inner = np.where(degree[pairs[:, 0]] >= degree[pairs[:, 1]], pairs[:, 0], pairs[:, 1])
+    outer = pairs.sum(axis=1) - inner
+    diatomic = (metals[inner] > 0) & (degree[inner] == metals[inner] + 1) & (degree[outer] == 1)
+    if not diatomic.all() or metal[pairs].any():
+        return None
+    spans = {range_of(structure.symbols[i], structure.symbols[j]) for i, j in pairs.tolist()}
+    return spans.pop() if len(spans) == 1 else None
 
 
 def _points(structure: Structure, local: LocalSymmetry) -> str:

@@ -12,7 +12,7 @@ from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 
 from vibsym.errors import VibsymError
-from vibsym.evidence.bandlist import BandList
+from vibsym.evidence.bandlist import BandList, in_region
 from vibsym.evidence.coincidence import WINDOW, Coincidences, pair_bands
 from vibsym.evidence.excuses import Excuse, excuses_of
 from vibsym.evidence.explanation import Explanation, explain
@@ -145,6 +145,9 @@ def screen_predictions(predictions: Sequence[Prediction], observed: BandList, op
     singles = list(predictions)
     if not singles:
         raise VibsymError("no structure to screen")
+    spans = {each.span for each in singles}
+    if len(spans) == 1 and (span := spans.pop()):
+        observed = in_region(observed, *span)
     seen = pair_bands(observed.of("IR"), observed.of("Raman"), options.window)
     asked = singles + (_mixtures(singles) if options.mixture else [])
     candidates = []
@@ -225,5 +228,9 @@ def _notes(observed: BandList, predictions: list[Prediction]) -> tuple[str, ...]
         notes.append("The lines belong to one region, the predictions to the whole molecule: none is counted as "
                      "unseen, and fundamentals of other regions may hide an excess of lines; --oscillators compares "
                      "one region.")
+    if observed.between is None and observed.whole_range and any(each.region for each in predictions):
+        regions = ", ".join(dict.fromkeys(each.region for each in predictions if each.region))
+        notes.append(f"The lines span more than one region, the predictions are those of {regions}: bends and other "
+                     "modes in the list stay unexplained; --between takes the region of the stretches.")
     notes += [note for each in predictions for note in each.notes]
     return tuple(dict.fromkeys(notes))

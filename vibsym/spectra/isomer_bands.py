@@ -15,6 +15,7 @@ from vibsym.errors import VibsymError
 from vibsym.groups.bases import Basis
 from vibsym.groups.reduction import reduce
 from vibsym.spectra.activity import Counts, count_bands
+from vibsym.spectra.bond_ranges import range_of
 from vibsym.spectra.prediction import Prediction, bands_of_gamma
 from vibsym.structures.isomers import Isomer, Isomers, isomers
 
@@ -61,7 +62,15 @@ class IsomerBands:
         points = ", ".join(ligand.name for ligand in isomer.among.ligands if ligand.form == "point")
         return Prediction(isomer.name, isomer.structure.to_dict(), isomer.point_group,
                           bands_of_gamma(self.gamma, isomer.group, point_like=self.point_like),
-                          region=self.oscillators.name, surroundings=points)
+                          region=self.oscillators.name, surroundings=points, span=self._span)
+
+    @property
+    def _span(self) -> tuple[float, float] | None:
+        """The range of the oscillators if they are those of linear ligands."""
+        among = self.isomer.among
+        carriers = [among.ligands[among.orbits.colours[colour].ligand] for colour in self.oscillators.colours]
+        bond = self.oscillators.name.removeprefix("stretch ").split("-")
+        return range_of(*bond) if all(each.outer and each.outer in bond for each in carriers) else None
 
     def to_dict(self) -> dict:
         """Return the entry of the JSON list `isomers`."""

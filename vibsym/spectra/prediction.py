@@ -53,6 +53,7 @@ class Prediction:
     notes: tuple[str, ...] = ()
     parts: "tuple[Prediction, ...]" = ()
     local_group: dict | None = field(default=None, hash=False)
+    span: tuple[float, float] | None = None      # cm-1: where all bands of the region lie, if that is known
 
     @property
     def group(self) -> str:
