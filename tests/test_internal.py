@@ -151,6 +151,20 @@ def test_numbering_and_orientation_change_nothing(name):
     assert regions(other).to_dict() == regions(cases.symmetry(name)).to_dict()
 
 
+@pytest.mark.parametrize("group, ligand", [("C4h", (0.08, 0.03, 3.2)), ("D4h", (3.0, 0.08, 0.9))])
+def test_neighbours_in_nearly_one_direction_have_no_order_round_the_centre(group, ligand):
+    """A planar centre with neighbours a few degrees apart: no wag, since no order of them suits every operation."""
+    inner = cases.images(group, (0, 0, 2.0) if group == "C4h" else (2.0, 0, 0))
+    outer = cases.images(group, ligand)
+    nearest = np.linalg.norm(outer[:, None] - inner[None], axis=2).argmin(axis=1)
+    bonds = [*((0, 1 + k) for k in range(len(inner))), *((1 + k, 1 + len(inner) + j) for j, k in enumerate(nearest))]
+    structure = Structure.from_atoms(["U"] + ["O"] * len(inner) + ["F"] * len(outer),
+                                     np.vstack([np.zeros((1, 3)), inner, outer]), bonds=bonds)
+    symmetry = find_symmetry(structure, 0.001)
+    for each in internal_coordinates(symmetry):
+        assert coordinate_basis(symmetry, each).size == len(each) and each.name != "wag OF4U"
+
+
 def test_order_of_kinds_and_ids():
     sets = internal_coordinates(cases.symmetry("C3H4"))
     assert [each.kind for each in sets] == sorted((each.kind for each in sets), key=KINDS.index)

@@ -77,6 +77,13 @@ def test_reasons():
     assert reasons("C2H4") == {"the 3 angles at C1 and at its equivalent: their sum is constant"}
     (ring,) = reasons("S8")
     assert ring.startswith("the ring of S1-S2-S3-S4-S5-S6-S7-S8 stays closed")
+    # the angles in the pentagon add up to 360 degrees, those of two steps (144 degrees) only weighted with them
+    assert reasons("XeF5-, D5h") == {
+        "the 10 angles at Xe1: angles that make a full circle in a plane add up to 360° (circles: 1 of 5); weighted "
+        "sums of the others are constant too", "the 5 wags at Xe1: weighted sums of them are constant"}
+    # the three angles at an atom of P4 are independent; those of each face add up to 180 degrees
+    assert reasons("P4") == {"the ring of P1-P2-P3 (and 3 equivalent) stays closed; the sum of its angles is constant"}
+    assert reasons("CH3Cl") == {"the 6 angles at C1: a weighted sum of them is constant"}
 
 
 def test_sum_of_the_tetrahedral_angles():

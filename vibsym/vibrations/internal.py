@@ -32,6 +32,7 @@ ROUNDING = 1e-9                # exactly 165 degrees (a regular ring of 24) must
 STRAIGHT = np.cos(np.radians(175.0)) - ROUNDING      # cosine; a smaller one is a straight angle
 NEARLY_STRAIGHT = np.cos(np.radians(165.0)) - ROUNDING     # ... of a chain: M-C-O, C-C-N as crystals have them
 PLANAR = 0.15                             # smallest singular value of the unit bond vectors (5 degrees for three)
+NARROW = np.radians(10.0)                 # neighbours of a planar centre that are nearer have no order round it
 LETTERS = dict(zip(KINDS, "rlawt", strict=True))
 
 
@@ -209,7 +210,10 @@ class _Frame:
                 continue
             name = wag_name(self.labels[centre], [self.labels[atom] for atom in around])
             angles = np.arctan2(vectors @ axes[1], vectors @ axes[0])
-            circle = [around[k] for k in np.argsort(angles)]
+            order = np.argsort(angles)
+            if len(around) > 3 and np.diff(angles[order], append=angles[order[0]] + 2 * np.pi).min() < NARROW:
+                continue                              # no order round the centre that every operation keeps
+            circle = [around[k] for k in order]
             for atoms, parts in _wags_round(centre, circle):
                 yield name, atoms, parts
 

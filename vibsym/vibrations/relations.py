@@ -9,6 +9,7 @@ Cross, Molecular Vibrations, 1955, section 6-3).
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from itertools import combinations
 
 import numpy as np
 
@@ -22,6 +23,9 @@ from vibsym.vibrations.redundancy import RANK, species_frames
 from vibsym.vibrations.representation import coordinate_basis
 
 SMALL = 1e-9
+CENTRED = {"bend": 1, "wag": 0}           # where the atoms of a coordinate name the centre
+CONSTANT = 1e-6                            # per Å: a sum of angles that changes less is constant
+FLAT = 1e-6                               # atoms nearer to a plane through the centre (unit vectors) lie in it
 
 
 @dataclass(frozen=True)
@@ -44,7 +48,9 @@ def relations(symmetry: Symmetry, sets: Sequence[CoordinateSet]) -> tuple[Relati
         return ()
     rows = _Rows(symmetry, sets)
     found = []
-    for reason, orbits in (*_centres(rows), *_rings(rows), ("all chosen coordinates together", None)):
+    for reason, local in _centres(rows):
+        found += rows.new_relations(reason, None, local)
+    for reason, orbits in (*_rings(rows), ("all chosen coordinates together", None)):
         found += rows.new_relations(reason, orbits)
     order = {label: k for k, label in enumerate(symmetry.group.labels)}
     return tuple(sorted(found, key=lambda relation: order[relation.species]))
@@ -78,8 +84,12 @@ class _Rows:
                 full[..., columns] = vectors
                 self.vectors.setdefault(label, []).append((number, full))
 
-    def new_relations(self, reason: str, orbits: "set[int] | None") -> list[Relation]:
-        """Return the relations among the coordinates of some orbits (None: all) that are not known yet."""
+    def new_relations(self, reason: str, orbits: "set[int] | None", local: "np.ndarray | None" = None
+                      ) -> list[Relation]:
+        """Return the relations among the coordinates of some orbits (None: all) that are not known yet.
+
+        `local` are orthonormal relations (n, m) that the operations carry into each other: only what they span counts.
+        """
         labels, found = self.symmetry.group.image_labels, []
         for label, parts in self.vectors.items():
             used = [full for number, full in parts if orbits is None or number in orbits]
@@ -88,7 +98,11 @@ class _Rows:
             stacked = np.concatenate(used)
             frame, norm = self.frames.get(label, (np.zeros((self.b.shape[1], 0)), 1))
             rows = stacked.reshape(-1, len(self.ids)) if norm == 2 else stacked[:, 0]
-            null = _left_null_space(rows @ self.b @ frame, self.floor) @ rows
+            if local is None:
+                null = _left_null_space(rows @ self.b @ frame, self.floor) @ rows
+            else:                                          # a component lies within them or across: cosines 1 or 0
+                vectors, cosines, _ = np.linalg.svd(rows @ local.T, full_matrices=False)
+                null = vectors[:, cosines > 0.5].T @ rows
             known = self.known.get(label, np.zeros((0, len(self.ids))))
             null = null - (null @ known.T) @ known
             new = _independent(null)
@@ -120,65 +134,80 @@ def _independent(vectors: np.ndarray) -> np.ndarray:
 
 
 def _centres(rows: _Rows):
-    """Yield (reason, orbits) for each kind of centre whose angles can be redundant by themselves."""
+    """Yield (reason, relations) for each kind of centre: those among its angles, then those of its wags."""
     first_of = rows.symmetry.permutations.min(axis=0)          # an orbit of atoms is named by its first
-    at: dict[int, set[int]] = {}
-    for number, (each, orbit) in enumerate(rows.orbits):
-        if each.kind in ("bend", "wag"):
-            centre = each.atoms[orbit[0]][1 if each.kind == "bend" else 0]
-            at.setdefault(int(first_of[centre]), set()).add(number)
-    for centre, orbits in sorted(at.items()):
-        count = int((first_of == centre).sum())
-        yield _angles_at(rows, centre, count, orbits), orbits
+    centre_of, bends, wags, first = np.full(len(rows.ids), -1), [], [], 0
+    for each in rows.sets:
+        if each.kind in CENTRED:
+            places = np.arange(first, first + len(each))
+            centre_of[places] = each.atoms[:, CENTRED[each.kind]]
+            (bends if each.kind == "bend" else wags).append(places)
+        first += len(each) * each.components
+    bends, wags = (np.concatenate(found) if found else np.zeros(0, dtype=int) for found in (bends, wags))
+    for centre in np.unique(first_of[centre_of[centre_of >= 0]]).tolist():
+        atoms = np.flatnonzero(first_of == centre)
+        for kind, chosen in (("angles", bends), ("wags", wags)):
+            local = [_local_relations(rows, chosen[centre_of[chosen] == atom]) for atom in atoms.tolist()]
+            if len(local[0]):
+                name = _centre_name(rows, centre, len(atoms))
+                own = chosen[centre_of[chosen] == centre]
+                reason = (_angles_at(rows, centre, own, len(local[0]), name) if kind == "angles" else
+                          f"the {len(own)} wags at {name}: weighted sums of them are constant")
+                yield reason, np.concatenate(local)
 
 
-def _angles_at(rows: _Rows, centre: int, count: int, orbits: set[int]) -> str:
-    """Say which sums of the angles at one centre, of `count` equivalent ones, are constant."""
+def _local_relations(rows: _Rows, places: np.ndarray) -> np.ndarray:
+    """Return orthonormal combinations (n, m) of the coordinates at some places that vanish."""
+    null = _left_null_space(rows.b[places], rows.floor)
+    full = np.zeros((len(null), len(rows.ids)))
+    full[:, places] = null
+    return full
+
+
+def _centre_name(rows: _Rows, centre: int, count: int) -> str:
     name = f"{rows.symmetry.structure.labels[centre]}{centre + 1}"
     if count > 1:
         name += f" and at each of {count - 1} equivalent" if count > 2 else " and at its equivalent"
-    groups, start = [], {}
-    place = 0
-    for each in rows.sets:
-        start[each.name] = place
-        place += len(each) * each.components
-    for number in sorted(orbits):
-        each, orbit = rows.orbits[number]
-        if each.kind == "bend":
-            groups.append(start[each.name] + orbit[each.atoms[orbit][:, 1] == centre])
-    angles = np.concatenate(groups) if groups else np.zeros(0, dtype=int)
-    if not len(angles):
-        return f"wags at {name}"
+    return name
+
+
+def _angles_at(rows: _Rows, centre: int, angles: np.ndarray, null: int, name: str) -> str:
+    """Say which sums of the angles at a centre are constant; `null` of them are independent."""
     number_of = f"the {len(angles)} angles at {name}"
-    if np.abs(rows.b[angles].sum(axis=0)).max() < 1e-6 and len(_left_null_space(rows.b[angles], rows.floor)) == 1:
+    if null == 1 and np.abs(rows.b[angles].sum(axis=0)).max() < CONSTANT:
         return f"{number_of}: their sum is constant"
-    constant = [len(group) for group in groups if np.abs(rows.b[group].sum(axis=0)).max() < 1e-6]
     planes = _circles(rows, centre, angles)
     if planes:
         sizes = ", ".join(f"{planes.count(size)} of {size}" for size in sorted(set(planes)))
-        return f"{number_of}: angles that make a full circle in a plane add up to 360° (circles: {sizes})"
-    if constant:
-        return f"{number_of}: constant sums of {' and of '.join(map(str, constant))} equivalent angles"
-    return f"{number_of}: weighted sums of them are constant"
+        also = "; weighted sums of the others are constant too" if null > len(planes) else ""
+        return f"{number_of}: angles that make a full circle in a plane add up to 360° (circles: {sizes}){also}"
+    return f"{number_of}: " + ("a weighted sum of them is constant" if null == 1 else
+                               "weighted sums of them are constant")
 
 
 def _circles(rows: _Rows, centre: int, angles: np.ndarray) -> list[int]:
-    """Return the sizes of the sets of angles in one plane that go round a centre."""
-    positions = rows.symmetry.positions
+    """Return how many angles each plane through a centre holds that follow each other once round it."""
     ends = [each.atoms[:, [0, 2]] if each.kind == "bend" else np.repeat(each.atoms[:, :2], each.components, axis=0)
             for each in rows.sets]
-    atoms = np.concatenate(ends)[angles]
-    first, last = (positions[atoms[:, k]] - positions[centre] for k in (0, 1))
-    normals = np.cross(first, last)
-    normals /= np.linalg.norm(normals, axis=1)[:, None]
-    alike = np.abs(normals @ normals.T) > 1 - 1e-6
-    sizes, seen = [], np.zeros(len(angles), dtype=bool)
-    for k in range(len(angles)):
-        plane = np.flatnonzero(alike[k])
-        if not seen[k] and len(plane) >= 3 and np.abs(rows.b[angles[plane]].sum(axis=0)).max() < 1e-6:
-            sizes.append(len(plane))
-        seen[plane] = True
-    return sizes
+    known = {frozenset(pair) for pair in np.concatenate(ends)[angles].tolist()}
+    around = sorted(frozenset().union(*known))
+    units = rows.symmetry.positions[around] - rows.symmetry.positions[centre]
+    units /= np.linalg.norm(units, axis=1)[:, None]
+    found = {}
+    for i, j in combinations(range(len(around)), 2):
+        normal = np.cross(units[i], units[j])
+        if np.linalg.norm(normal) < SMALL:
+            continue
+        normal /= np.linalg.norm(normal)
+        plane = np.flatnonzero(np.abs(units @ normal) < FLAT)
+        if len(plane) < 3 or tuple(plane) in found:
+            continue
+        turn = np.arctan2(units[plane] @ np.cross(normal, units[i]), units[plane] @ units[i])
+        circle = [around[k] for k in plane[np.argsort(turn)]]
+        steps = np.diff(np.sort(turn), append=turn.min() + 2 * np.pi)
+        closed = all(frozenset(pair) in known for pair in zip(circle, circle[1:] + circle[:1], strict=True))
+        found[tuple(plane)] = len(circle) if closed and steps.max() < np.pi - FLAT else 0
+    return [size for size in found.values() if size]
 
 
 def _rings(rows: _Rows):
@@ -195,8 +224,21 @@ def _rings(rows: _Rows):
                   if each.kind in ("stretch", "bend", "torsion")
                   and any(image.issuperset(each.atoms[orbit[0]].tolist()) for image in images)}
         beside = {number for number, (each, orbit) in enumerate(rows.orbits)
-                  if each.kind == "bend" and any(each.atoms[orbit[0]][1] in image for image in images)}
+                  if each.kind in CENTRED and any(each.atoms[orbit[0]][CENTRED[each.kind]] in image
+                                                  for image in images)}
         names = "-".join(f"{symmetry.structure.labels[atom]}{atom + 1}" for atom in sorted(ring))
         also = f" (and {len(images) - 1} equivalent)" if len(images) > 1 else ""
-        yield f"the ring of {names}{also} stays closed", inside
-        yield f"the ring of {names}{also} stays closed, with the angles at its atoms", inside | beside
+        closed = f"the ring of {names}{also} stays closed"
+        yield closed + ("; the sum of its angles is constant" if _constant_sum(rows, ring) else ""), inside
+        yield f"{closed}, with the angles and wags at its atoms", inside | beside
+
+
+def _constant_sum(rows: _Rows, ring: frozenset[int]) -> bool:
+    """Tell whether the angles inside a ring are chosen and add up to a constant: it is planar."""
+    total, number, first = np.zeros(rows.b.shape[1]), 0, 0
+    for each in rows.sets:
+        if each.kind == "bend":
+            inside = np.isin(each.atoms, list(ring)).all(axis=1)
+            total, number = total + rows.b[first:first + len(each)][inside].sum(axis=0), number + int(inside.sum())
+        first += len(each) * each.components
+    return number == len(ring) and np.abs(total).max() < CONSTANT
