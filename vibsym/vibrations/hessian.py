@@ -121,7 +121,7 @@ def _symmetric(hessian: np.ndarray, notes: list[str]) -> np.ndarray:
             f"the Hessian is not symmetric: element {i + 1},{j + 1} is {hessian[i, j]:g}, element {j + 1},{i + 1} is "
             f"{hessian[j, i]:g}; they may differ by {SYMMETRIC:g} of the largest element ({largest:g})"
         )
-    if gap.max() > 0:
+    if gap.max() > 1e-9 * largest:
         notes.append(
             f"the Hessian was made symmetric (largest difference {gap.max() / largest:.1e} of the largest element)"
         )
