@@ -11,8 +11,10 @@ from pathlib import Path
 import pytest
 
 from vibsym.evidence.bandlist import parse_bands, within
+from vibsym.evidence.proposals import screen
 from vibsym.evidence.screening import screen_predictions
 from vibsym.spectra.isomer_bands import list_isomers
+from vibsym.structures.isomers import isomers
 
 TABLE = Path(__file__).parent / "reference" / "carbonyls.csv"
 ROWS = {row["formula"]: row for row in csv.DictReader(TABLE.read_text(encoding="utf-8").splitlines())}
@@ -56,14 +58,14 @@ LEFT_OUT = {"[SiF6]2-": {483.0}}
 LINE = re.compile(r"(?<![\d(])(\d{3,4}(?:\.\d)?)\s*(vs|vw|sh|s|m|w)?\b(\s*\([^)]*\))?")
 
 
-def observed(formula: str):
-    """Return the band list of a row; a polarised line says `p` in its bracket."""
+def observed(formula: str, whole: bool = False):
+    """Return the band list of a row, in the region of its stretches or as a whole; a polarised line says `p`."""
     text = "wavenumber,spectrum,strength,polarisation\n"
     for column, spectrum in (("observed_ir", "IR"), ("observed_raman", "Raman")):
         for place, strength, bracket in LINE.findall(ROWS[formula][column]):
-            if float(place) not in LEFT_OUT.get(formula, ()):
+            if whole or float(place) not in LEFT_OUT.get(formula, ()):
                 text += f"{place},{spectrum},{strength},{'p' if ', p)' in bracket else ''}\n"
-    return within(parse_bands(text, formula), STRETCHES.get(formula))
+    return within(parse_bands(text, formula), None if whole else STRETCHES.get(formula))
 
 
 def test_the_lists_are_read_as_they_stand():
@@ -96,6 +98,20 @@ def test_the_true_shape_comes_first_unless_bands_coincide_by_accident(formula, s
     result = screen_predictions(list(predictions.values()), observed(formula))
     assert {symbol: result.candidate_of(each).rank for symbol, each in predictions.items()} == shapes
     assert result.candidate_of(predictions[ROWS[formula]["polyhedral_symbol"]]).verdict != "excluded"
+
+
+RIVALS = {"T-4": ("T-4", "SP-4"), "SP-4": ("SP-4", "T-4"), "TBPY-5": ("TBPY-5", "SPY-5"), "OC-6": ("OC-6", "TPR-6"),
+          "TP-3": ("TP-3", "TPY-3", "TS-3")}
+
+
+@pytest.mark.parametrize("formula", list(STRETCHES))
+def test_bends_and_stretches_tell_the_shape_of_the_whole_molecule(formula):
+    """The full list with its bends against all fundamentals of the rival shapes."""
+    symbol, centre, ligands, _ = TRUE[formula]
+    shapes = [isomers(each, centre, ligands)[0].structure for each in RIVALS[symbol]]
+    found = screen(shapes, observed(formula, whole=True)).candidates
+    true = next(each for each in found if each.prediction.structure["source"] == symbol)
+    assert true.rank == 1 and true.verdict != "excluded", [(each.prediction.name, each.score) for each in found]
 
 
 def test_ion_pairing_marked_together_leaves_the_tetrahedron_free_of_excuses():
