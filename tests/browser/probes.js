@@ -30,7 +30,7 @@ window.probes = {
     return found;
   },
   overlapping: () => {
-    const leaves = texts().filter(element => !element.querySelector("*") || element.tagName === "text");
+    const leaves = texts().filter(element => !element.matches("sub, sup, tspan") && (element.tagName === "text" || ![...element.children].some(child => !child.matches("sub, sup, br"))));
     const boxes = leaves.map(element => {
       const range = document.createRange();
       range.selectNodeContents(element);

@@ -58,7 +58,8 @@ def collect(structures: Sequence, observed: BandList | None = None, proposal: Pr
 
 def _sheet(structure, observed, proposal: Proposal, options: ScreenOptions) -> Sheet:
     found = expect(structure, proposal.tolerance, as_group=proposal.as_group, axes=proposal.axes,
-                   oscillators=proposal.oscillators, local=proposal.local, local_tolerance=proposal.local_tolerance)
+                   oscillators=proposal.oscillators, local=proposal.local, local_tolerance=proposal.local_tolerance,
+                   distinguish=proposal.distinguish)
     sheet = Sheet(found, scene_of(found.symmetry))
     if len(found.structure) == 1:
         return sheet

@@ -9,6 +9,7 @@ from html import escape
 
 import numpy as np
 
+from vibsym.report.labels import set_svg
 from vibsym.report.scene import Motion, Scene, tint_of
 
 ARROW = 0.85                   # Å, of the largest displacement in a drawing
@@ -74,18 +75,27 @@ class _Frame:
         elif motion is not None:
             ends.append(flat[:, :2] + 1.25 * self.arrow * (motion.vectors @ scene.view.T)[:, :2])
         if elements:
-            ends.append(1.2 * scene.reach * np.array([[1, 1], [-1, -1]]))
+            ends.append(1.15 * scene.reach * np.array([[1, 1], [-1, -1]]))
         points = np.concatenate(ends)
         low, high = points.min(axis=0), points.max(axis=0)
         span = np.maximum(high - low, 1.0)
-        margin = 14 if elements else 8
-        self.scale = float(min((width - 2 * margin) / span[0], (height - 2 * margin) / span[1], 0.21 * width))
+        margin = 22 if elements else 8                         # the symbol of an axis stands beyond its end
+        most = (0.3 if room else 0.21) * width                 # px for 1 Å: small molecules do not fill the paper
+        self.scale = float(min((width - 2 * margin) / span[0], (height - 2 * margin) / span[1], most))
         self.middle = (low + high) / 2
         self.centre = np.array([width / 2, height / 2])
 
     def at(self, point) -> tuple[float, float]:
         x, y = (np.asarray(point)[:2] - self.middle) * self.scale
         return float(self.centre[0] + x), float(self.centre[1] - y)
+
+    def beyond(self, point, gap: float = 12.0) -> tuple[float, float]:
+        """Return the place `gap` px farther out than a point, for its label; beside it where it points at the eye."""
+        x, y = self.at(point)
+        out = np.asarray(point)[:2] * self.scale
+        size = float(np.linalg.norm(out))
+        u, v = out / size if size > 6 else (0.8, 0.6)
+        return x + gap * float(u), y - gap * float(v)
 
 
 def _skeleton(scene: Scene, flat: np.ndarray, box: _Frame) -> list[str]:
@@ -211,11 +221,11 @@ def _axes(box: _Frame, scene: Scene) -> list[str]:
             (x, y), (u, v) = box.at(-end), box.at(end)
             texts.append(f'<line class="sheet" stroke-width="1.3" stroke-dasharray="9 3 2 3" x1="{x:.1f}" y1="{y:.1f}" '
                          f'x2="{u:.1f}" y2="{v:.1f}"/>')
-        end = 1.2 * scene.reach * (np.asarray(each.vectors[0]) @ scene.view.T)
-        x, y = box.at(end)
+        x, y = box.beyond(1.12 * scene.reach * (np.asarray(each.vectors[0]) @ scene.view.T))
         texts.append(f'<text class="sheet" stroke="none" font-size="13" font-style="italic" x="{x:.1f}" '
-                     f'y="{y + 4:.1f}" text-anchor="middle">{escape(typeset(each.symbol))}</text>')
+                     f'y="{y + 4:.1f}" text-anchor="middle">{set_svg(typeset(each.symbol), 13)}</text>')
     if any(each.kind == "centre" for each in scene.elements):
         x, y = box.at(np.zeros(3))
-        texts.append(f'<circle class="sheet" style="fill:none" stroke-width="1.2" cx="{x:.1f}" cy="{y:.1f}" r="3.5"/>')
+        texts.append(f'<circle class="sheet" style="fill:none" stroke-width="1.2" cx="{x:.1f}" cy="{y:.1f}" '
+                     f'r="{scene.ring * box.scale or 3.5:.1f}"/>')
     return texts

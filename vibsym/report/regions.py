@@ -56,6 +56,9 @@ def _local_parts(local: LocalSymmetry) -> list:
     points = ["+".join(f"{labels[atom]}{atom + 1}" for atom in origin) for origin in reduced.origins if len(origin) > 1]
     if points:
         kept += "; as one point: " + ", ".join(points)
+    if reduced.held:
+        kept += "; told apart, bonded to a metal left out: " + " ".join(f"{labels[atom]}{atom + 1}"
+                                                                        for atom in reduced.held)
     left = len(labels) - len(reduced.atoms)
     rungs = ", ".join(f"{typeset(rung.symbol)} within {within(rung.deviation)} Å"
                       for rung in local.ladder.rungs)

@@ -46,13 +46,20 @@ class Scene:
 
     @property
     def reach(self) -> float:
-        """Radius of a ball round the origin that holds the atoms, Å."""
-        return float((np.linalg.norm(self.positions, axis=1) + self.radii).max())
+        """Radius of a ball round the origin that holds the atoms, Å; at least 1, so that one atom stays a disc."""
+        return float(max((np.linalg.norm(self.positions, axis=1) + self.radii).max(), 1.0))
+
+    @property
+    def ring(self) -> float:
+        """Radius in Å of the ring that marks a centre of inversion round the atom there; 0 where no atom is there."""
+        there = np.linalg.norm(self.positions, axis=1) < 0.05
+        return float(1.25 * self.radii[there].max()) if there.any() else 0.0
 
     def to_dict(self, motions: Sequence[Motion] = ()) -> dict:
         """Return what the page's script draws, rounded to 0.001."""
         return {"labels": list(self.labels), "positions": _rounded(self.positions), "radii": _rounded(self.radii),
                 "bonds": self.bonds.tolist(), "view": _rounded(self.view), "reach": round(self.reach, 3),
+                "ring": round(self.ring, 3),
                 "tints": [tint_of(label) for label in self.labels],
                 "elements": [each.to_dict() | {"symbol": typeset(each.symbol)} for each in self.elements],
                 "motions": {each.key: _rounded(each.vectors) for each in motions}}

@@ -6,17 +6,17 @@ question mark.  Estimates are triangles that point to their spectrum.
 """
 
 from collections.abc import Sequence
-from html import escape
 from typing import NamedTuple
 
 import numpy as np
 
 from vibsym.groups.symbols import typeset
 from vibsym.report.drawing import STYLE, svg
+from vibsym.report.labels import set_svg
 
 HEIGHTS = {"vvs": 1.0, "vs": 1.0, "s": 0.82, "ms": 0.7, "m": 0.6, "mw": 0.5, "w": 0.38, "vw": 0.24, "vvw": 0.18}
 UNKNOWN = 0.6
-LABEL = 12.5                   # px between labels
+LABEL = 14.5                   # px between labels
 STICKS_STYLE = (STYLE + ".ir{stroke:#a33b12;fill:#a33b12}.raman{stroke:#1f5f8b;fill:#1f5f8b}.axis{stroke:#1c2430}"
                 ".faint{stroke:#8a8f98}.curve{fill:none;stroke:#5b6470}")
 
@@ -62,7 +62,8 @@ def sticks_svg(sticks: Sequence[Stick], width: float = 760, title: str = "", alo
     if not sticks:
         return ""
     arm, room = 92.0 if any(each.observed for each in sticks) else 22.0, 84.0
-    above, below = (arm + room if any(each.spectrum == name for each in sticks) else 24.0 for name in ("IR", "Raman"))
+    far = arm + (14 if any(each.leftover for each in sticks) else 0)       # where labels begin, beyond question marks
+    above, below = (far + room if any(each.spectrum == name for each in sticks) else 24.0 for name in ("IR", "Raman"))
     middle, height = above + 23, above + below + 46
     scale = Scale([each.wavenumber for each in sticks], 62, width - 12)
     body = _axis(scale, middle, width)
@@ -75,7 +76,7 @@ def sticks_svg(sticks: Sequence[Stick], width: float = 760, title: str = "", alo
         body += [_estimate(scale, each, base, sign) for each in own if not each.observed]
         observed = [each for each in own if each.observed]
         body += [_stick(scale, each, base, sign, arm) for each in observed]
-        body += _labels(scale, observed or own, base, sign, arm, prefix if links else None)
+        body += _labels(scale, observed or own, base, sign, (arm, far), prefix if links else None)
     return svg(width, height, body, title, alone, STICKS_STYLE)
 
 
@@ -125,19 +126,21 @@ def _estimate(scale: Scale, each: Stick, base: float, sign: int) -> str:
             f'{base + sign * 8:.1f}L{x + 4:.1f} {base:.1f}Z"/>')
 
 
-def _labels(scale: Scale, sticks: Sequence[Stick], base: float, sign: int, arm: float, prefix: str | None) -> list[str]:
+def _labels(scale: Scale, sticks: Sequence[Stick], base: float, sign: int, ends: tuple[float, float],
+            prefix: str | None) -> list[str]:
     """Labels stand upright beyond the tips, moved apart where they would touch; without room weaker ones go."""
-    y = base + sign * (arm + 4)
+    arm, far = ends
+    y = base + sign * (far + 4)
     most = int((scale.right - scale.left) // LABEL)
     kept = sorted(sorted(sticks, key=lambda each: -height_of(each.strength))[:most], key=lambda each: -each.wavenumber)
     places = spread([scale.x(each.wavenumber) for each in kept], LABEL, scale.left + 4, scale.right - 4)
     texts = []
     for each, x in zip(kept, places):
         own = scale.x(each.wavenumber)
-        tip = base + sign * (arm * height_of(each.strength) + 5 if each.observed else 10)
+        tip = base + sign * (arm * height_of(each.strength) + (20 if each.leftover else 5) if each.observed else 10)
         words = f"{each.wavenumber:.0f}" + (f" {typeset(each.mode)} {typeset(each.species)}" if each.mode else "")
         text = (f'<text class="ink" font-size="11" transform="translate({x + 4:.1f} {y + sign * 4:.1f}) rotate(-90)" '
-                f'text-anchor="{"start" if sign < 0 else "end"}">{escape(words)}</text>')
+                f'text-anchor="{"start" if sign < 0 else "end"}">{set_svg(words, 11)}</text>')
         if prefix is not None and each.mode:
             text = f'<a href="#{prefix}{anchor(each.mode)}">{text}</a>'
         texts.append(f'<path class="faint" style="fill:none" stroke-width="0.7" d="M{own:.1f} {tip:.1f}L{own:.1f} '

@@ -4,6 +4,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import cache
 
+from vibsym.errors import VibsymError
 from vibsym.structures.symmetry import Symmetry
 from vibsym.tables import read_table
 from vibsym.vibrations.forcefield import ForceField, standard_field
@@ -42,6 +43,9 @@ def estimate(symmetry: Symmetry, field: ForceField | None = None, bonds=None) ->
     """Return the modes of a structure by the valence force field (the standard one by default)."""
     field = standard_field() if field is None else field
     sets = internal_coordinates(symmetry, bonds)
+    if not sets and len(symmetry.positions) > 1:
+        raise VibsymError(f"{symmetry.structure.source or symmetry.structure.formula}: no bonds, so the force field "
+                          "says nothing; name bonds with --bond I-J")
     symbols, positions = symmetry.structure.symbols, symmetry.positions
     F = field.matrix(symbols, positions, sets)
     return Estimates(symmetry, normal_modes(symmetry, sets, F), field.fallback(symbols, positions, sets), sets)

@@ -19,6 +19,7 @@
       this.figure = figure;
       this.scene = JSON.parse(figure.querySelector("script[type='application/json']").textContent);
       this.view = this.scene.view;
+      this.ring = this.scene.ring;                       // Å, round the atom at the centre of inversion
       this.shown = new Set();
       this.motion = null;
       this.turning = !still.matches;
@@ -154,12 +155,12 @@
       pen.clearRect(0, 0, width, height);
       const marked = this.shown.size > 0;
       const swing = 0.2 * Math.min(2.2, scene.reach), arrow = 0.85 * Math.min(1, 0.35 * Math.max(scene.reach, 1));
-      const reach = scene.reach * (marked ? 1.22 : 1.02) + (this.motion && !marked ? 0.6 * arrow : 0);
+      const reach = scene.reach * (marked ? 1.27 : 1.02) + (this.motion && !marked ? 0.6 * arrow : 0);
       const scale = Math.min(width, height) / 2 / reach;
       const moves = this.motion ? scene.motions[this.motion] : null;
       const flat = scene.positions.map((point, k) => times(this.view, moves ? point.map((v, a) => v + phase * swing * moves[k][a]) : point));
       const at = point => { const near = 1 / (1 - point[2] / (9 * scene.reach)); return [width / 2 + point[0] * scale * near, height / 2 - point[1] * scale * near]; };
-      if (marked) this.drawElements(at, true);
+      if (marked) this.drawElements(at, true, scale);
       const items = scene.bonds.map(([i, j]) => [(flat[i][2] + flat[j][2]) / 2 - 0.05, () => this.drawBond(flat, i, j, at, scale)]);
       flat.forEach((point, k) => items.push([point[2], () => this.drawAtom(k, at(point), scene.radii[k] * scale)]));
       items.sort((a, b) => a[0] - b[0]).forEach(item => item[1]());
@@ -168,7 +169,7 @@
         this.drawArrow(point, times(this.view, moves[k]), scene.radii[k], at, scale, arrow);
         pen.globalAlpha = 1;
       });
-      if (marked) this.drawElements(at, false);
+      if (marked) this.drawElements(at, false, scale);
       this.drawFrame();
       this.drawn = (this.drawn || 0) + 1;
       this.canvas.dataset.drawn = this.drawn;
@@ -226,25 +227,38 @@
       pen.closePath(); pen.fill();
     }
 
-    drawElements(at, behind) {
+    drawElements(at, behind, scale) {
       const { pen, scene } = this, reach = scene.reach, labelled = [];
       scene.elements.forEach((each, number) => {
         if (!this.shown.has(number)) return;
-        if (each.kind === "centre") { if (!behind) { pen.strokeStyle = this.glass; pen.lineWidth = 1.6; pen.beginPath(); pen.arc(...at([0, 0, 0]), 4.5, 0, 2 * Math.PI); pen.stroke(); } return; }
+        if (each.kind === "centre") { if (!behind) { pen.strokeStyle = this.glass; pen.lineWidth = 1.6; pen.beginPath(); pen.arc(...at([0, 0, 0]), this.ring * scale || 4.5, 0, 2 * Math.PI); pen.stroke(); } return; }
         each.vectors.forEach((vector, k) => {
           const v = times(this.view, vector);
           if (each.kind === "plane") { if (behind) this.drawPlane(v, at, reach); return; }
           const end = v.map(c => 1.1 * reach * c);
           if (behind) this.line(at(end.map(c => -c)), at(end), 1.4, this.glass, each.kind === "improper" ? [3, 4] : [10, 3, 2, 3]);
           else if (k < 3) {
-            let [x, y] = at(v.map(c => 1.17 * reach * c));
+            const [x0, y0] = at([0, 0, 0]), [ex, ey] = at(end), out = Math.hypot(ex - x0, ey - y0);
+            let [x, y] = out > 6 ? [ex + 12 * (ex - x0) / out, ey + 12 * (ey - y0) / out] : [ex + 10, ey - 8];
             while (labelled.some(other => Math.abs(other[0] - x) < 22 && Math.abs(other[1] - y) < 14)) x += 23;
             labelled.push([x, y]);
             pen.fillStyle = this.glass; pen.font = "italic 13px " + this.font; pen.textAlign = "center"; pen.textBaseline = "middle";
-            pen.fillText(each.symbol, x, y);
+            this.write(each.symbol, x, y, 13);
           }
         });
       });
+    }
+
+    /* A symbol with its index lowered: C, then 2 smaller. */
+    write(symbol, x, y, size) {
+      const { pen } = this, [, head, tail] = symbol.match(/^(.)(.*)$/u), plain = tail.replace(/[₀-₉]/g, c => String.fromCharCode(c.charCodeAt(0) - 0x2050));
+      pen.textAlign = "left";
+      const wide = pen.measureText(head).width;
+      pen.font = "italic " + 0.72 * size + "px " + this.font;
+      const left = x - (wide + pen.measureText(plain).width) / 2;
+      pen.fillText(plain, left + wide, y + 0.25 * size);
+      pen.font = "italic " + size + "px " + this.font;
+      pen.fillText(head, left, y);
     }
 
     drawPlane(normal, at, reach) {
@@ -264,7 +278,8 @@
         const axis = this.view.map(row => row[k]), end = [corner[0] + 20 * axis[0], corner[1] - 20 * axis[1]];
         this.line(corner, end, 1.2, this.ink);
         pen.fillStyle = this.ink; pen.font = "italic 12px " + this.font; pen.textAlign = "center"; pen.textBaseline = "middle";
-        pen.fillText(name, corner[0] + 28 * axis[0], corner[1] - 28 * axis[1]);
+        const seen = Math.hypot(axis[0], axis[1]) > 0.25;          // one that points at the eye has its name beside the corner
+        pen.fillText(name, corner[0] + (seen ? 28 * axis[0] : -11), corner[1] - (seen ? 28 * axis[1] : -11));
       });
     }
   }

@@ -4,6 +4,7 @@ Each section is made from the same parts (`report/document.py`) as the page on t
 result lies in the file (script elements of type application/json, ids `result-...`), so numbers cannot disagree.
 """
 
+import re
 from html import escape
 from pathlib import Path
 
@@ -12,6 +13,7 @@ from vibsym.groups.symbols import typeset
 from vibsym.report.collection import Report, Sheet
 from vibsym.report.html.sections import SECTIONS, motions_of, shared_sections
 from vibsym.report.html.structure_view import as_data, plate, skeleton_store
+from vibsym.report.labels import set_group, set_labels
 from vibsym.report.triple import holds_tritium, with_letter
 
 # Nothing may be loaded from anywhere; style and script are those of the file itself.
@@ -46,7 +48,12 @@ def report_page(report: Report, triple: str = "T") -> str:
 def _lettered(text: str, report: Report, triple: str) -> str:
     if triple == "T" or any(holds_tritium(sheet.expectation) for sheet in report.sheets):
         return text
-    return with_letter(text, triple)
+    return with_letter(re.sub("T(?=<(?:sub|tspan[^<>]*)>[12][gu]?</)", triple, text), triple)
+
+
+def _file_name(sheet: Sheet) -> str:
+    """The name of the file without its folder, which is nobody's business but the maker's (the JSON has the path)."""
+    return sheet.expectation.structure.source.replace("\\", "/").rpartition("/")[2]
 
 
 def _beside(name: str) -> str:
@@ -55,11 +62,11 @@ def _beside(name: str) -> str:
 
 def _cover(report: Report, names: str) -> str:
     """The head of a page on several structures, with what concerns them all."""
-    rows = "".join(f'<li><a href="#sheet-{number}">{escape(typeset(sheet.expectation.structure.formula))}</a>, '
-                   f"{escape(sheet.expectation.structure.source)}</li>" for number, sheet in enumerate(report.sheets))
+    rows = "".join(f'<li><a href="#sheet-{number}">{set_labels(typeset(sheet.expectation.structure.formula))}</a>, '
+                   f"{escape(_file_name(sheet))}</li>" for number, sheet in enumerate(report.sheets))
     sections = "".join(_section(number, title, f"all-{key}", text)
                        for number, (key, title, text) in enumerate(shared_sections(report), 1))
-    return (f'<header class="top"><h1>{escape(names)}</h1><p class="source">{len(report.sheets)} '
+    return (f'<header class="top"><h1>{set_labels(names)}</h1><p class="source">{len(report.sheets)} '
             f'structures</p></header>'
             f'<ul class="contents">{rows}</ul>{sections}')
 
@@ -80,9 +87,9 @@ def _article(report: Report, sheet: Sheet, number: int) -> str:
     told = f'<p class="comment">{escape(comment)}</p>' if comment else ""
     atoms = len(found.structure)
     figure = plate(sheet.scene, motions_of(sheet), formula, group, found.axes.words)
-    return (f'<article id="sheet-{number}"><header class="top"><{tag}>{escape(formula)}</{tag}>'
-            f'<span class="stamp" title="point group">{escape(group)}</span><p class="source">'
-            f'{escape(found.structure.source)}, {atoms} atom{"s" if atoms != 1 else ""}</p></header>'
+    return (f'<article id="sheet-{number}"><header class="top"><{tag}>{set_labels(formula)}</{tag}>'
+            f'<span class="stamp" title="point group">{set_group(group)}</span><p class="source">'
+            f'{escape(_file_name(sheet))}, {atoms} atom{"s" if atoms != 1 else ""}</p></header>'
             f'<nav aria-label="Sections of {escape(formula)}"><ul class="contents">{contents}</ul></nav>{told}'
             f'{skeleton_store(sheet.scene, f"skeleton-{number}")}<div class="spread"><div '
             f'class="plate-column">{figure}</div>'

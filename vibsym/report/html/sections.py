@@ -59,7 +59,10 @@ def _expect(report: Report, sheet: Sheet, prefix: str) -> str:
         return set_html(before) + set_html(after)
     before = [part for part in before if not getattr(part, "strong", False)]      # the tally says it
     vibrations = count_text(sheet.expectation.vibrations, "vibration")
-    return f'<ul class="tally"><li><span>{vibrations} in</span></li>{tally}</ul>' + set_html(before) + set_html(after)
+    degenerate = counts["fundamentals"] < sheet.expectation.vibrations
+    sets = "; those of a degenerate set make one fundamental" if degenerate else ""
+    return (f'<ul class="tally">{tally}</ul><p class="key">{vibrations} in all{sets}.</p>'
+            + set_html(before) + set_html(after))
 
 
 def _regions(report: Report, sheet: Sheet, prefix: str) -> str:

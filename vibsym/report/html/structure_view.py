@@ -1,14 +1,17 @@
 """The structure on the page: the figure that turns, and the motions as cards, each with its drawing."""
 
 import json
+import re
 from html import escape
 
 from vibsym.groups.symbols import typeset
 from vibsym.report.drawing import motion_svg, skeleton_symbol, structure_svg
+from vibsym.report.labels import set_labels
 from vibsym.report.scene import Motion, Scene
 from vibsym.report.sticks import anchor
 
 CARD = (200.0, 150.0)
+_ELEMENT = re.compile(r"\b[CS]\d+(?='{0,2} ax[ei]s)'{0,2}")    # "C2 axis" among the words for an axis
 MOST_ELEMENTS = 12             # switches; more kinds of elements than any point group of print has
 
 
@@ -20,11 +23,13 @@ def plate(scene: Scene, motions, name: str, group: str, axes: dict[str, str]) ->
     elements = (f'<fieldset class="controls"><legend>Elements of '
                 f'symmetry</legend>{switches}</fieldset>' if switches else "")
     faces = "".join(f'<button type="button" data-face="{axis}">along {axis}</button>' for axis in "xyz")
-    words = "".join(f"<dt>{escape(axis)}</dt><dd>{escape(text)}</dd>" for axis, text in axes.items())
+    told = {axis: _ELEMENT.sub(lambda found: typeset(found[0]), text) for axis, text in axes.items()}
+    words = "".join(f"<dt>{escape(axis)}</dt><dd>{set_labels(text)}</dd>" for axis, text in told.items())
+    caption = f'<figcaption><p class="caption-head">Where the axes point</p><dl>{words}</dl></figcaption>'
     return (f'<figure class="plate"><div class="stage" data-label="{escape(label)}">{still}</div>'
             f'<div class="controls"><button type="button" data-turn aria-pressed="false">Turn</button>{faces}'
             f'<button type="button" data-rest hidden>Rest</button></div><p class="status" role="status"></p>{elements}'
-            + (f'<figcaption><h3>Where the axes point</h3><dl>{words}</dl></figcaption>' if words else "")
+            + (caption if words else "")
             + f'<script type="application/json">{as_data(scene.to_dict(motions))}</script></figure>')
 
 
@@ -50,10 +55,10 @@ def _card(scene: Scene, motion: Motion, skeleton: str, prefix: str, text: str) -
     place = "" if motion.wavenumber is None else f"<span>{motion.wavenumber:.0f} cm⁻¹</span>"
     title = f"{motion.label}: arrows show where the atoms move"
     what = "; ".join(filter(None, (text, motion.description)))
-    return (f'<li class="motion" id="{prefix}{anchor(motion.key)}"><h4>{escape(motion.label)}</h4>'
+    return (f'<li class="motion" id="{prefix}{anchor(motion.key)}"><h3>{set_labels(motion.label)}</h3>'
             f'<p class="band">{place}{activity_words(motion)}</p>'
             + motion_svg(scene, motion, skeleton, *CARD, title)
-            + f'<p class="what">{escape(what)}</p><button type="button" class="needs-script" '
+            + f'<p class="what">{set_labels(what)}</p><button type="button" class="needs-script" '
               f'data-motion="{escape(motion.key)}" data-label="{escape(motion.label)}" aria-pressed="false">'
               f'Move<span class="hidden-words"> {escape(motion.label)}</span></button></li>')
 
@@ -73,4 +78,4 @@ def _switch(number: int, each) -> str:
     first = " checked" if number == 0 else ""
     word = {"axis": "axis", "improper": "improper axis", "plane": "mirror plane", "centre": "centre"}[each.kind]
     return (f'<label class="switch" title="{word}"><input type="checkbox" data-element="{number}"{first}>'
-            f'{several}{escape(typeset(each.symbol))}</label>')
+            f'<span>{several}{set_labels(typeset(each.symbol))}</span></label>')

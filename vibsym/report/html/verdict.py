@@ -4,6 +4,7 @@ from html import escape
 
 from vibsym.evidence.screening import EXCLUDED, FITS, STRAINED
 from vibsym.groups.symbols import typeset
+from vibsym.report.labels import set_group, set_labels
 from vibsym.report.screening import lines_text
 from vibsym.report.wording import count_text
 
@@ -29,17 +30,17 @@ def verdicts(screening) -> str:
 
 def _card(candidate) -> str:
     prediction = candidate.prediction
-    groups = " + ".join(typeset(part.group) for part in (prediction.parts or (prediction,)))
-    head = f"{prediction.name}, {groups}: {_WORDS[candidate.verdict]}"
+    groups = " + ".join(set_group(typeset(part.group)) for part in (prediction.parts or (prediction,)))
+    head = f"{escape(prediction.name)}, {groups}: {_WORDS[candidate.verdict]}"
     region = f"{prediction.region}: " if prediction.region else ""
     counts = prediction.counts
     predicted = (f"{region}predicted infrared {counts['infrared']}, Raman {counts['raman']}, both "
                  f"{counts['coincident']}, polarised {counts['polarised']}")
     score = (f"score {candidate.score:.2f}, excuses {candidate.weight:g}, "
              f"{count_text(len(candidate.unseen), 'band')} not seen")
-    items = "".join(f"<li>{escape(text)}</li>" for text in _excuses(candidate)) or "<li>nothing has to be excused</li>"
+    items = "".join(f"<li>{set_labels(text)}</li>" for text in _excuses(candidate) or ["nothing has to be excused"])
     return (f'<li class="verdict" data-verdict="{candidate.verdict}"><svg viewBox="0 0 40 40" aria-hidden="true">'
-            f'{_SIGNS[candidate.verdict]}</svg><div><h3>{escape(head)}</h3><p class="key">{escape(predicted)}; '
+            f'{_SIGNS[candidate.verdict]}</svg><div><h3>{head}</h3><p class="key">{escape(predicted)}; '
             f"{escape(score)}</p><ul>{items}</ul></div></li>")
 
 

@@ -1,0 +1,76 @@
+"""Labels as books print them: the letters of a group or a species belong to its subscript (D₃h, T₁u, Σg⁺, Γvib).
+
+Unicode has no such letters for every case, so the page sets them with `sub` and `sup` and drawings with shifted pieces;
+copied from the page they are plain labels (D3h, T1u) again, which every command reads.  Symbols of elements stay as
+they are: `Ag`, `Au`, `Hg`, `Cs` and `Th` are taken for labels only where the whole text is one.
+"""
+
+import re
+from html import escape
+
+_DIGITS = str.maketrans("₀₁₂₃₄₅₆₇₈₉", "0123456789")
+_UPPER = str.maketrans("⁺⁻", "+−")
+_NUMBERED = re.compile(r"(?<=[A-Za-zν∞)])([₀-₉]+)([guvdh]{1,2}(?![A-Za-z]))?")
+_ENDLESS = re.compile(r"([CD])∞([vh]?)(?![A-Za-z])")
+_GREEK = re.compile(r"([ΣΠΔΦ])([gu]?)([⁺⁻]?)(?![A-Za-z])")
+_GAMMA = re.compile(r"Γ(3N|vib|translation|rotation)(?![A-Za-z])")
+_SIGMA = re.compile(r"σ([vdh])(?![A-Za-z])")
+_SPECIES = re.compile(r"(\d*)([ABETGHSPD])([gu])")
+_GROUP = re.compile(r"([CTOIK])([sidh])")
+_TERM = r"\d*[ABETGHISPDFΣΠΔΦ][₀-₉]*[gu]?[⁺⁻]?[′″]*"
+_NAMED_GROUP = re.compile(r"(?<=oint group )([CTOIK])([sidh])(?![A-Za-z])")
+_REDUCTION = re.compile(rf"(?:ν[₀-₉]+ )?{_TERM}(?: \+ {_TERM})*")
+
+
+def set_labels(text: str) -> str:
+    """Return a text as HTML: escaped, its labels with subscripts and superscripts.
+
+    >>> set_labels("2A₁g + T₁u in D₃h"), set_labels("3Ag + Hg"), set_labels("Ag and C<sub>")
+    ('2A<sub>1g</sub> + T<sub>1u</sub> in D<sub>3h</sub>', '3A<sub>g</sub> + H<sub>g</sub>', 'Ag and C&lt;sub&gt;')
+    """
+    whole = _REDUCTION.fullmatch(text) is not None
+    text = escape(text)
+    if whole:
+        text = _SPECIES.sub(r"\1\2<sub>\3</sub>", text)
+    text = _NAMED_GROUP.sub(r"\1<sub>\2</sub>", text)
+    text = _GREEK.sub(_greek, text)
+    text = _NUMBERED.sub(lambda found: f"<sub>{found[1].translate(_DIGITS)}{found[2] or ''}</sub>", text)
+    text = _ENDLESS.sub(r"\1<sub>∞\2</sub>", text)
+    text = _GAMMA.sub(r"Γ<sub>\1</sub>", text)
+    return _SIGMA.sub(r"σ<sub>\1</sub>", text)
+
+
+def set_group(symbol: str) -> str:
+    """Return the symbol of a point group, typeset already, as HTML.
+
+    >>> set_group("Td"), set_group("C₂v")
+    ('T<sub>d</sub>', 'C<sub>2v</sub>')
+    """
+    found = _GROUP.fullmatch(symbol)
+    return f"{found[1]}<sub>{found[2]}</sub>" if found else set_labels(symbol)
+
+
+def _greek(found: re.Match) -> str:
+    letter, lower, upper = found.groups()
+    return (letter + (f"<sub>{lower}</sub>" if lower else "")
+            + (f"<sup>{upper.translate(_UPPER)}</sup>" if upper else ""))
+
+
+def set_svg(text: str, size: float) -> str:
+    """Return a text of a drawing, `size` px high: labels with subscripts and superscripts as shifted pieces.
+
+    >>> set_svg("T₂", 10)
+    'T<tspan dy="2.2" font-size="7.2">2</tspan>'
+    """
+    out, shift = [], 0.0
+    for piece in re.split(r"(<su[bp]>.*?</su[bp]>)", set_labels(text)):
+        if not piece:
+            continue
+        scripted = piece.startswith(("<sub>", "<sup>"))
+        wanted = (0.22 if piece.startswith("<sub>") else -0.35) * size if scripted else 0.0
+        inner = piece[5:-6] if scripted else piece
+        move = f' dy="{wanted - shift:.1f}"' if abs(wanted - shift) > 1e-9 else ""
+        small = f' font-size="{0.72 * size:.1f}"' if scripted else ""
+        out.append(f"<tspan{move}{small}>{inner}</tspan>" if move or small else inner)
+        shift = wanted
+    return "".join(out)
