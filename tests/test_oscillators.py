@@ -210,6 +210,41 @@ def test_carbonyls_beside_ethers():
     assert own.notes == () and own.local.symmetry.group.symbol == "C4v" and counts(own.local.bands) == (3, 4)
 
 
+@pytest.mark.parametrize("bonded, group, gamma, bands", [
+    # K. Nakamoto, Infrared and Raman Spectra of Inorganic and Coordination Compounds (from memory): ν(SO) of the free
+    # ion ν1 A1, ν3 T2; unidentate C3v, 2A1 + E; bidentate C2v, 2A1 + B1 + B2
+    (0, "Td", {"A1": 1, "T2": 1}, (1, 2)), (1, "C3v", {"A1": 2, "E": 1}, (3, 3)),
+    (2, "C2v", {"A1": 2, "B1": 1, "B2": 1}, (4, 4))], ids=["free", "unidentate", "bidentate"])
+def test_sulfate_held_by_its_oxygens(bonded, group, gamma, bands):
+    """Cobalt with ammines on an M-O-S angle of 125 degrees, shaken: what is left out marks the oxygen it holds."""
+    corners = np.array([(1, 1, 1), (1, -1, -1), (-1, 1, -1), (-1, -1, 1)]) / 3**0.5
+    oxygens = 1.48 * corners
+    across = np.cross(corners[0], corners[1])
+    across /= np.linalg.norm(across)
+    parts = [("S", (0, 0, 0)), ("O", oxygens)]
+    for oxygen in oxygens[:bonded]:
+        out = oxygen / 1.48
+        bond = np.cos(np.radians(55)) * out + np.sin(np.radians(55)) * np.cross(across, out)
+        beside = np.cross(bond, across)
+        cobalt = oxygen + 1.93 * bond
+        parts += [("Co", [cobalt]), ("N", cobalt + 1.96 * np.array([bond, across, -across, beside, -beside]))]
+    structure = built(*atoms(*parts), shake=0.03)
+    found = expect(structure, oscillators="S-O", local=True).oscillators
+    assert found.local.symmetry.group.symbol == group
+    assert found.local.bands.gamma == gamma and counts(found.local.bands) == bands
+    assert found.local.to_dict()["held"] == [2, 3][:bonded] and found.notes == ()
+
+
+def test_bonds_at_a_metal_are_named_from_it():
+    """A phenolate beside an ether: the bond at the metal is Zn-O-C, the metal taken being the one it is bonded to."""
+    symbols = ["Na", "Zn", "O", "C", "C", "O", "C"]
+    positions = [(-8, 0, 0), (0, 0, 0), (1.9, 0, 0), (2.6, 1.2, 0), (4.1, 1.2, 0), (4.8, 2.4, 0), (6.2, 2.4, 0)]
+    note, = expect(built(symbols, positions), oscillators="C-O").oscillators.notes
+    assert note == ("stretch C-O: 1 of the 3 bonds is at a metal, the others are not; --oscillators Zn-O-C takes those "
+                    "at the metal.")
+    assert expect(built(symbols, positions), oscillators="Zn-O-C").oscillators.bands.gamma == {"A'": 1}
+
+
 def test_a_local_group_lower_than_the_molecule_tells_no_leaks():
     """Found within a smaller tolerance than the molecule: no leaks can be told, and the note says why."""
     ideal = place("OC-6", "W", ["CO"] * 6)
@@ -256,7 +291,9 @@ def test_json_and_page():
     (("--oscillators", "1-63"), "atoms 1 (W) and 63 (H) are not bonded; --bond 1-63 bonds them"),
     (("--oscillators", "C"), "write a bond such as C-O"),
     (("--oscillators", "C-H", "--local", "--local-tolerance", "7"), "is too large"),
-    (("--local",), "--local needs --oscillators"),
+    (("--local",), "--local needs --oscillators"), (("--distinguish",), "--distinguish needs --oscillators"),
+    (("--local-tolerance", "0.1"), "--local-tolerance needs --oscillators"), (("--oscillators", ""), "write a bond"),
+    (("--oscillators", "C-O", "--distinguish"), "--distinguish belongs to --local"),
 ], ids=lambda value: " ".join(value) if isinstance(value, tuple) else "")
 def test_what_is_refused(arguments, message):
     result = CliRunner().invoke(cli, ["expect", SAMPLE, *arguments])

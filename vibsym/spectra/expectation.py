@@ -135,11 +135,15 @@ def expect(source, tolerance: float = DEFAULT_TOLERANCE, *, as_group: str | None
     with `local` also in the group of what they see (vibsym/spectra/oscillators.py).  `gas` adds the contours of a gas
     at `temperature` (K; 296 by default) with the Coriolis constant `zeta` (vibsym/spectra/contours.py).
     """
-    if local and not oscillators:
-        raise VibsymError("--local needs --oscillators: name the stretches, as in --oscillators C-O")
+    if oscillators is None and (local or distinguish or local_tolerance != LOCAL_TOLERANCE):
+        option = "--local" if local else "--distinguish" if distinguish else "--local-tolerance"
+        raise VibsymError(f"{option} needs --oscillators: name the stretches, as in --oscillators C-O")
+    if not local and (distinguish or local_tolerance != LOCAL_TOLERANCE):
+        option = "--distinguish" if distinguish else "--local-tolerance"
+        raise VibsymError(f"{option} belongs to --local: it shapes the local group of the oscillators")
     symmetry, found = _symmetry(source, tolerance, as_group, axes)
     chosen = None
-    if oscillators:
+    if oscillators is not None:
         from vibsym.spectra.oscillators import oscillators as look_at
 
         chosen = look_at(symmetry, oscillators, local, local_tolerance, distinguish)

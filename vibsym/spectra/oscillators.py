@@ -16,6 +16,7 @@ import numpy as np
 from vibsym.errors import VibsymError
 from vibsym.spectra.activity import Counts, count_bands
 from vibsym.spectra.expectation import LOCAL_TOLERANCE
+from vibsym.structures.bonds import neighbours
 from vibsym.structures.equivalent_bonds import symmetric_bonds
 from vibsym.structures.periodic import is_metal
 from vibsym.structures.reduced import ReducedObject, reduced_object
@@ -82,12 +83,14 @@ class LocalSymmetry:
         return tuple(atom + 1 for atom in self.reduced.atoms)
 
     def to_dict(self) -> dict:
-        """Return the `local` object for JSON; `points` are the groups of atoms that stand as one point."""
+        """Return the `local` object for JSON; `points` are the groups of atoms that stand as one point,
+        `held` the oscillating atoms bonded to a metal that is left out."""
         points = [[atom + 1 for atom in origin] for origin in self.reduced.origins if len(origin) > 1]
         rungs = [{"point_group": rung.symmetry.to_dict(), "deviation": round(float(rung.deviation), 6)}
                  for rung in self.ladder.rungs]
         return {"point_group": self.symmetry.to_dict(), "atoms": list(self.atoms), "points": points,
-                "centres": [atom + 1 for atom in self.reduced.centres], "oscillators": self.bands.to_dict(),
+                "centres": [atom + 1 for atom in self.reduced.centres],
+                "held": [atom + 1 for atom in self.reduced.held], "oscillators": self.bands.to_dict(),
                 "ladder": rungs, "leaks": [leak.to_dict() for leak in self.leaks]}
 
 
@@ -197,18 +200,28 @@ def _binds(a: int, b: int, centre: str, bonds: np.ndarray, names) -> bool:
 
 
 def _mixture(structure: Structure, bonds: np.ndarray, name: str, pairs: np.ndarray) -> tuple[str, ...]:
-    """Tell when some of the oscillators are bonded to a metal and others are not (CO beside the C-O of an ether)."""
-    metals = np.array([is_metal(number) for number in structure.numbers.tolist()])
-    beside = np.zeros(len(structure), dtype=bool)
-    for column in (0, 1):
-        beside[bonds[metals[bonds[:, 1 - column]], column]] = True
-    at_metal = beside[pairs].any(axis=1)
-    if at_metal.all() or not at_metal.any() or metals[pairs].any():
+    """Tell when some of the oscillators are bonded to a metal and others are not (CO beside the C-O of an ether).
+
+    Oscillators that share an atom (the S-O of a sulfate held by one oxygen) belong together.
+    """
+    metal = [is_metal(number) for number in structure.numbers.tolist()]
+    beside = neighbours(len(structure), bonds)
+    held: dict[tuple[int, int], tuple[int, int, int]] = {}               # oscillator -> metal, atom bonded to it, other
+    for i, j in pairs.tolist():
+        if metal[i] or metal[j]:
+            return ()
+        for a, b in ((i, j), (j, i)):
+            metals = [atom for atom in beside[a] if metal[atom]]
+            if metals:
+                held.setdefault((i, j), (metals[0], a, b))
+    inside = {atom for pair in held for atom in pair}
+    apart = [pair for pair in map(tuple, pairs.tolist()) if pair not in held and not inside.intersection(pair)]
+    if not held or not apart:
         return ()
-    symbol = structure.symbols[int(np.flatnonzero(metals)[0])]
-    bond = name.removeprefix("stretch ")
-    return (f"{name}: {int(at_metal.sum())} of the {len(pairs)} bonds are at a metal, the others are not; "
-            f"--oscillators {symbol}-{bond} takes those at the metal.",)
+    chain = "-".join(structure.symbols[atom] for atom in next(iter(held.values())))
+    number = len(pairs) - len(apart)
+    return (f"{name}: {number} of the {len(pairs)} bonds {'is' if number == 1 else 'are'} at a metal, the others are "
+            f"not; --oscillators {chain} takes those at the metal.",)
 
 
 def _leaks(local: LocalSymmetry):

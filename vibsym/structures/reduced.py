@@ -3,8 +3,10 @@
 Kept are the atoms of the oscillators, their centres, and the atoms bound to a centre, no further.  A centre is an atom
 that oscillators share or, where they share none, a metal in them, else an atom bound to them.  Donor atoms of one
 ligand that are bonded to each other (an η2-alkene, η5-Cp, η6-arene) become one point at their centroid.  Donors
-compare by element, or also by the formula of their ligand.  (Local symmetry of oscillators: P. S. Braterman, Metal
-Carbonyl Spectra, 1975; the rule for the points is common practice.)
+compare by element, or also by the formula of their ligand.  An oscillating atom that is bonded to a metal which is not
+kept differs from one that is not: a sulfate held by one oxygen has C3v, by two C2v (K. Nakamoto, Infrared and Raman
+Spectra of Inorganic and Coordination Compounds, on unidentate and bidentate ligands).  (Local symmetry of oscillators:
+P. S. Braterman, Metal Carbonyl Spectra, 1975; the rule for the points is common practice.)
 """
 
 from collections import Counter
@@ -29,6 +31,7 @@ class ReducedObject:
     centres: tuple[int, ...]
     pairs: np.ndarray                     # (n, 2) the oscillators, numbered in the reduced object
     names: tuple[str, ...]                # "P", "point of C5" for each
+    held: tuple[int, ...] = ()            # oscillating atoms of the whole, from 0, bonded to a metal that is left out
 
     @property
     def atoms(self) -> tuple[int, ...]:
@@ -52,7 +55,8 @@ def reduced_object(structure: Structure, pairs: np.ndarray, bonds: np.ndarray, c
         around = [other for other in beside[atom] if other not in kept]
         donors += [part for part in _joined(around, beside, structure) if part not in donors]
     marks = _ligand_marks(structure, bonds, centres, donors) if distinguish else [""] * len(donors)
-    symbols = [structure.labels[atom] for atom in kept]
+    held = _held_by(structure, beside, kept, {*kept, *(atom for part in donors for atom in part)})
+    symbols = [f"X{structure.symbols[atom]}at{held[atom]}" if atom in held else structure.labels[atom] for atom in kept]
     symbols += [_donor_symbol(structure, part, mark) for part, mark in zip(donors, marks, strict=True)]
     origins = [(atom,) for atom in kept] + [tuple(part) for part in donors]
     positions = np.array([structure.positions[list(origin)].mean(axis=0) for origin in origins])
@@ -61,7 +65,7 @@ def reduced_object(structure: Structure, pairs: np.ndarray, bonds: np.ndarray, c
     renumbered = np.array([[place[i], place[j]] for i, j in np.asarray(pairs).tolist()], dtype=int).reshape(-1, 2)
     names = tuple(structure.symbols[origin[0]] if len(origin) == 1 else f"point of {_formula(structure, origin)}"
                   for origin in origins)
-    return ReducedObject(small, tuple(origins), tuple(centres), renumbered, names)
+    return ReducedObject(small, tuple(origins), tuple(centres), renumbered, names, tuple(held))
 
 
 def find_centres(structure: Structure, pairs: np.ndarray, beside, element: str | None = None) -> list[int]:
@@ -79,6 +83,17 @@ def find_centres(structure: Structure, pairs: np.ndarray, beside, element: str |
     if element is not None:
         centres = {atom for atom in centres if structure.symbols[atom] == element}
     return sorted(centres)
+
+
+def _held_by(structure: Structure, beside, oscillating: Sequence[int], present: set[int]) -> dict[int, str]:
+    """Return the atoms bonded to metals that are not present, each with the symbols of these metals."""
+    found = {}
+    for atom in oscillating:
+        metals = [structure.symbols[other] for other in beside[atom]
+                  if other not in present and is_metal(structure.numbers[other])]
+        if metals:
+            found[atom] = "".join(sorted(metals))
+    return found
 
 
 def _joined(around: Sequence[int], beside, structure: Structure) -> list[list[int]]:
