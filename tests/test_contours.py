@@ -295,7 +295,7 @@ def test_direction_cosines_are_complete():
 
 
 # A, B, C in cm-1 of SO2, ethylene, pyridine, naphthalene (from memory), separations in √(B kT/hc), B the mean across
-# the moment, from a sum of lines without symmetrising, written apart (width 0.18, kT = 300 of the mean constant).
+# the moment, from a sum of lines without symmetrising, written apart (resolution 0.18, kT = 300 of the mean constant).
 SUMMED = [
     ((2.027, 0.344, 0.2935), "A", 3.27),
     ((2.027, 0.344, 0.2935), "B", 1.79),

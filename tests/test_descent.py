@@ -256,3 +256,9 @@ def test_command_formats_and_errors():
     done = run("Td", "C5v")
     assert done.exit_code == 1 and done.output.count("\n") == 1 and "not a subgroup" in done.output
     assert run("Td", "Q7").exit_code == 1
+
+
+def test_other_axes_in_a_subgroup_of_a_linear_molecule():
+    """C2v whose axis lies across the line: which plane is σ(xz) exchanges B1 and B2."""
+    upright, across = embeddings(point_group("Dinfh"), "C2v")
+    assert upright.exchange == () and across.exchange == ("B1 <-> B2",)

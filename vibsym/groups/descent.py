@@ -56,7 +56,7 @@ class Embedding:
     @cached_property
     def exchange(self) -> tuple[str, ...]:
         """What other choices of axes of the subgroup would exchange in the correlation: `B1 <-> B2`."""
-        if self.parent.infinite or self.group.infinite:
+        if self.group.infinite:
             return ()
         choices = other_frames(self.parent, self.group, self.frame)
         tables = ((frame, correlation_in_frame(self.parent, self.group, frame)) for frame in choices)

@@ -14,9 +14,9 @@ import numpy as np
 
 LEVELS = 300.0                     # kT in units of C: enough levels to make the envelope smooth
 HIGHEST = 3.3                      # J in units of √(kT/C): beyond it 2e-5 of the molecules
-WIDTH = 0.18                       # resolution in units of √(B kT), B the mean of the constants across the moment
+WIDTH = 0.22                       # resolution in units of √(B kT), B the mean of the constants across the moment
 CENTRE = 0.3                       # the Q branch lies within, in the same units
-COARSE = 0.42                      # Q branches 2(A - (B + C)/2) apart, farther than the resolution, make no wing
+COARSE = 0.44                      # Q branches 2(A - (B + C)/2) apart, farther than the resolution, make no wing
 ALIKE = 0.9                        # two maxima of one wing, one at least so high beside the other, leave none named
 STEP = 0.02
 
@@ -31,7 +31,7 @@ def branch_separation(constants: Sequence[float], axis: int, temperature: float)
     moment: type A, B or C.
 
     >>> round(branch_separation((2.027, 0.344, 0.2935), 0, 205.7), 0), branch_separation((9.4, 0.34, 0.33), 2, 206.0)
-    (26.0, None)
+    (27.0, None)
     """
     A, B, C = constants
     thermal = LEVELS * C
