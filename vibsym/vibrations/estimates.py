@@ -12,8 +12,8 @@ from vibsym.vibrations.internal import internal_coordinates
 from vibsym.vibrations.normal_modes import Mode, normal_modes
 from vibsym.vibrations.surroundings import Surroundings
 
+LETTERS = {"stretch": "ν", "bend": "δ", "linear bend": "δ", "wag": "γ", "torsion": "τ"}
 DOMINANT = 0.5  # share from which a kind names a mode
-HALOGENS = ("F", "Cl", "Br", "I")
 
 
 @dataclass(frozen=True, eq=False)
@@ -32,11 +32,7 @@ class Estimates:
 
     def spread(self, mode: Mode) -> float:
         """Return the standard error of ln(estimate) of a mode."""
-        return error_model(mode_class(mode, self.lacking))[0]
-
-    def shift(self, mode: Mode) -> float:
-        """Return the median of ln(estimate/observed) of modes of this kind."""
-        return error_model(mode_class(mode, self.lacking))[1]
+        return spread_of(mode_class(mode, self.lacking))
 
 
 def estimate(symmetry: Symmetry, field: ForceField | None = None, bonds=None) -> Estimates:
@@ -44,8 +40,10 @@ def estimate(symmetry: Symmetry, field: ForceField | None = None, bonds=None) ->
     field = standard_field() if field is None else field
     sets = internal_coordinates(symmetry, bonds)
     if not sets and len(symmetry.positions) > 1:
-        raise VibsymError(f"{symmetry.structure.source or symmetry.structure.formula}: no bonds, so the force field "
-                          "says nothing; name bonds with --bond I-J")
+        raise VibsymError(
+            f"{symmetry.structure.source or symmetry.structure.formula}: no bonds, so the force field "
+            "says nothing; name bonds with --bond I-J"
+        )
     symbols, positions = symmetry.structure.symbols, symmetry.positions
     F = field.matrix(symbols, positions, sets)
     return Estimates(symmetry, normal_modes(symmetry, sets, F), field.fallback(symbols, positions, sets), sets)
@@ -81,17 +79,14 @@ def _hydrogen(label: str) -> bool:
 
 
 @cache
-def _errors() -> dict[str, tuple[float, float]]:
-    return {row["class"]: (float(row["spread"]), float(row["shift"])) for row in read_table("estimate_errors.csv")}
+def _spreads() -> dict[str, float]:
+    return {row["class"]: float(row["spread"]) for row in read_table("estimate_errors.csv")}
 
 
-def error_model(name: str) -> tuple[float, float]:
-    """Return (spread, shift) of a class; a class without enough cases takes those of all."""
-    errors = _errors()
-    return errors.get(name) or errors["any"]
-
-
-LETTERS = {"stretch": "ν", "bend": "δ", "linear bend": "δ", "wag": "γ", "torsion": "τ"}
+def spread_of(name: str) -> float:
+    """Return the spread of ln(estimate/observed) of a class; a class without enough cases takes that of all."""
+    spreads = _spreads()
+    return spreads.get(name, spreads["any"])
 
 
 def describe(mode: Mode, least: float = 0.15) -> str:
