@@ -248,7 +248,7 @@ def test_assignment_file_is_read_and_written():
         ("status,mode", "state,mode", "no column status"),
         ("E:1.7", "E:much", "line 6: alternatives"),
         ("2600", "", "line 8: no line"),
-        ("# group: Td", "# group: Q9", "unknown point group"),
+        ("# group: Td", "# group: Q9", "a.csv, head '# group:': unknown point group"),
     ],
 )
 def test_broken_assignment_files(old, new, words):

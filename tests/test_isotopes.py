@@ -441,7 +441,18 @@ def test_command_json_and_formats(tmp_path):
 
 @pytest.mark.parametrize(
     "arguments",
-    [["--replace", "9=D"], ["--replace", "Q=D"], [], ["--satellites", "--replace", "2=D"], ["--satellites"]],
+    [
+        ["--replace", "9=D"],
+        ["--replace", "Q=D"],
+        [],
+        ["--satellites", "--replace", "2=D"],
+        ["--satellites"],
+        ["--replace", "2=D", "--mode", "A1=2917"],
+        ["--replace", "2=D", "--doublet", "1388.2:1285.4=1.6"],
+        ["--replace", "2=D", "--at-most", "1"],
+        ["--replace", "2=D", "--local"],
+        ["--replace", "2=D", "--enumerate", "--assignment", "a.csv"],
+    ],
 )
 def test_command_errors_are_one_line(tmp_path, arguments):
     done = run(write_xyz(tmp_path / "methane.xyz", "methane"), *arguments)

@@ -37,9 +37,10 @@ def molecule_of(target: str, modes, assignment, tolerance, as_group, axes, readi
         check_group(file, group)
         found += file.modes(group)
         leftovers += file.leftovers
+    found = named_modes(found)
     if symmetry is not None:
         _check_species(symmetry, found)
-    return Molecule(group, symmetry, named_modes(found), leftovers)
+    return Molecule(group, symmetry, found, leftovers)
 
 
 def group_of(target: str, tolerance, as_group, axes, reading) -> tuple:

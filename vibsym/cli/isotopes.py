@@ -37,27 +37,39 @@ def command(structure, replace, every, at_most, satellites, local, local_toleran
       vibsym isotopes try-it/rinse-dichloromethane.mol --replace H=D --enumerate
     """
     from vibsym.cli.delivery import deliver
-    from vibsym.errors import VibsymError
     from vibsym.report import isotopes as view
 
     molecule = one_structure(structure, reading)
+    _check(replace, every, at_most, satellites, local, modes, assignment, doublets)
     if satellites:
-        if replace or assignment or every:
-            raise VibsymError("--satellites goes with --mode only; leave the other options out")
         deliver([_satellites(molecule, modes, local_tolerance if local else tolerance, local)], view, form, output)
         return
-    if local:
-        raise VibsymError("--local belongs to --satellites")
-    if not replace:
-        raise VibsymError("nothing to replace; write --replace 1=D,2=D, --replace H=D, or --satellites")
     if every:
         from vibsym.spectra.isotopologues import list_isotopologues
 
         deliver([list_isotopologues(molecule, replace, tolerance, at_most)], view, form, output)
         return
-    if at_most is not None:
-        raise VibsymError("--at-most belongs to --enumerate")
     deliver([_effect(molecule, replace, tolerance, axes, assignment, doublets)], view, form, output)
+
+
+def _check(replace, every, at_most, satellites, local, modes, assignment, doublets):
+    """Refuse options that would do nothing."""
+    from vibsym.errors import VibsymError
+
+    if satellites and (replace or assignment or every or doublets):
+        raise VibsymError("--satellites goes with --mode only; leave the other options out")
+    if local and not satellites:
+        raise VibsymError("--local belongs to --satellites")
+    if not (satellites or replace):
+        raise VibsymError("nothing to replace; write --replace 1=D,2=D, --replace H=D, or --satellites")
+    if modes and not satellites:
+        raise VibsymError("--mode belongs to --satellites; observed products need two --assignment files")
+    if at_most is not None and not every:
+        raise VibsymError("--at-most belongs to --enumerate")
+    if every and (assignment or doublets):
+        raise VibsymError("--enumerate lists isotopologues; leave --assignment and --doublet out")
+    if doublets and not assignment:
+        raise VibsymError("--doublet belongs to observed products; give two --assignment files")
 
 
 def _effect(molecule, replace, tolerance, axes, assignment, doublets):

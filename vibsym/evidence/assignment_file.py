@@ -127,7 +127,10 @@ def parse_assignment(text: str, source: str = "assignment") -> AssignmentFile:
     if missing:
         raise VibsymError(f"{source}: no column {missing[0]}; an assignment CSV has {', '.join(COLUMNS)}")
     if head["group"]:
-        head["group"] = point_group(head["group"]).symbol
+        try:
+            head["group"] = point_group(head["group"]).symbol
+        except VibsymError as error:
+            raise VibsymError(f"{source}, head '# group:': {error}") from None
     rows = tuple(_row(source, number, columns, cells) for number, cells in numbered[1:])
     return AssignmentFile(rows, head["structure"], head["group"], head["axes"], source)
 
