@@ -96,9 +96,6 @@ def _coordinates(symmetry):
 def _estimates(symmetry):
     from vibsym.vibrations.estimates import estimate
 
-    dummies = [name for name, dummy in zip(symmetry.structure.symbols, symmetry.structure.is_dummy) if dummy]
-    if dummies:
-        raise VibsymError(f"{', '.join(dict.fromkeys(dummies))} has no mass; put atoms in its place")
     return estimate(symmetry)
 
 

@@ -12,8 +12,8 @@ import numpy as np
 from vibsym.report.labels import set_svg
 from vibsym.report.scene import Motion, Scene, tint_of
 
-ARROW = 0.85                   # Å, of the largest displacement in a drawing
-MOST_PLANES = 4
+ARROW = 0.65                   # Å, of the largest displacement in a drawing; shorter than the bond to a hydrogen
+MOST_PLANES = 3
 CROWDED = 20                   # atoms; in a larger structure the far side is drawn faintly
 LETTERED = 9.0                 # px; smaller discs carry no letter
 TINTS = {"hydrogen": "#ffffff", "carbon": "#c9c5bb", "nitrogen": "#b9c8ee", "oxygen": "#f3b9a8", "halogen": "#bfe0bd",
@@ -69,7 +69,7 @@ class _Frame:
     def __init__(self, scene: Scene, flat: np.ndarray, motion, elements: bool, width: float, height: float,
                  room: bool = False):
         ends = [flat[:, :2] - scene.radii[:, None], flat[:, :2] + scene.radii[:, None]]
-        self.arrow = ARROW * min(1.0, 0.35 * max(scene.reach, 1.0))
+        self.arrow = ARROW * min(1.0, 0.6 * scene.reach)
         if room:                                              # for any motion, so that all drawings have one scale
             ends += [ends[0] - 0.9 * self.arrow, ends[1] + 0.9 * self.arrow]
         elif motion is not None:
@@ -163,7 +163,7 @@ def _arrows_of(scene: Scene, flat: np.ndarray, motion: Motion, box: _Frame, atom
     path = "".join(shafts)
     return [f'<path class="halo" stroke-width="{wide + 2.4:.1f}" d="{path}"/>'
             f'<path class="move" stroke-width="{wide:.1f}" d="{path}"/>' if shafts else "",
-            f'<path class="move" stroke="none" d="{"".join(heads + dots)}"/>' if heads or dots else "",
+            f'<path class="move" style="stroke:none" d="{"".join(heads + dots)}"/>' if heads or dots else "",
             f'<path class="move" style="fill:none" stroke-width="1.4" d="{"".join(rings)}"/>' if rings else ""]
 
 
@@ -222,7 +222,7 @@ def _axes(box: _Frame, scene: Scene) -> list[str]:
             texts.append(f'<line class="sheet" stroke-width="1.3" stroke-dasharray="9 3 2 3" x1="{x:.1f}" y1="{y:.1f}" '
                          f'x2="{u:.1f}" y2="{v:.1f}"/>')
         x, y = box.beyond(1.12 * scene.reach * (np.asarray(each.vectors[0]) @ scene.view.T))
-        texts.append(f'<text class="sheet" stroke="none" font-size="13" font-style="italic" x="{x:.1f}" '
+        texts.append(f'<text class="sheet" style="stroke:none" font-size="13" font-style="italic" x="{x:.1f}" '
                      f'y="{y + 4:.1f}" text-anchor="middle">{set_svg(typeset(each.symbol), 13)}</text>')
     if any(each.kind == "centre" for each in scene.elements):
         x, y = box.at(np.zeros(3))

@@ -8,6 +8,8 @@ they are: `Ag`, `Au`, `Hg`, `Cs` and `Th` are taken for labels only where the wh
 import re
 from html import escape
 
+from vibsym.groups.symbols import typeset
+
 _DIGITS = str.maketrans("₀₁₂₃₄₅₆₇₈₉", "0123456789")
 _UPPER = str.maketrans("⁺⁻", "+−")
 _NUMBERED = re.compile(r"(?<=[A-Za-zν∞)])([₀-₉]+)([guvdh]{1,2}(?![A-Za-z]))?")
@@ -18,6 +20,8 @@ _SIGMA = re.compile(r"σ([vdh])(?![A-Za-z])")
 _SPECIES = re.compile(r"(\d*)([ABETGHSPD])([gu])")
 _GROUP = re.compile(r"([CTOIK])([sidh])")
 _TERM = r"\d*[ABETGHISPDFΣΠΔΦ][₀-₉]*[gu]?[⁺⁻]?[′″]*"
+_PLAIN = re.compile(r"(?<![\w-])(?:[CD]\d{1,2}[vdh]|S\d{1,2}(?= )|\d*[ABETF][123][gu])(?![\w-])|"
+                    r"(?<=\()\d*[ABETGH][12]?'*(?: \+ \d*[ABETGH][12]?'*)+(?=\))")      # ASCII labels in sentences
 _NAMED_GROUP = re.compile(r"(?<=oint group )([CTOIK])([sidh])(?![A-Za-z])")
 _REDUCTION = re.compile(rf"(?:ν[₀-₉]+ )?{_TERM}(?: \+ {_TERM})*")
 
@@ -29,7 +33,8 @@ def set_labels(text: str) -> str:
     ('2A<sub>1g</sub> + T<sub>1u</sub> in D<sub>3h</sub>', '3A<sub>g</sub> + H<sub>g</sub>', 'Ag and C&lt;sub&gt;')
     """
     whole = _REDUCTION.fullmatch(text) is not None
-    text = escape(text)
+    text = _PLAIN.sub(lambda found: typeset(found[0]), text)
+    text = escape(text).replace("cm-1", "cm⁻¹")
     if whole:
         text = _SPECIES.sub(r"\1\2<sub>\3</sub>", text)
     text = _NAMED_GROUP.sub(r"\1<sub>\2</sub>", text)

@@ -18,7 +18,7 @@ HEIGHTS = {"vvs": 1.0, "vs": 1.0, "s": 0.82, "ms": 0.7, "m": 0.6, "mw": 0.5, "w"
 UNKNOWN = 0.6
 LABEL = 14.5                   # px between labels
 STICKS_STYLE = (STYLE + ".ir{stroke:#a33b12;fill:#a33b12}.raman{stroke:#1f5f8b;fill:#1f5f8b}.axis{stroke:#1c2430}"
-                ".faint{stroke:#8a8f98}.curve{fill:none;stroke:#5b6470}")
+                ".faint{stroke:#8a8f98}.curve{fill:none;stroke:#5b6470}.open{fill:#fff}")
 
 
 class Stick(NamedTuple):
@@ -106,8 +106,8 @@ def _stick(scale: Scale, each: Stick, base: float, sign: int, arm: float) -> str
         parts.append(f'<text class="ink" font-size="12" x="{x:.1f}" y="{y + (4 if sign > 0 else 0) + sign * 6:.1f}" '
                      f'text-anchor="middle">?</text>')
     elif each.polarisation:
-        fill = "" if each.polarisation == "p" else ' style="fill:var(--paper,#fff)"'
-        parts.append(f'<circle class="{_class(each)}"{fill} stroke-width="1.6" cx="{x:.1f}" cy="{y:.1f}" r="3.6"/>')
+        empty = "" if each.polarisation == "p" else " open"
+        parts.append(f'<circle class="{_class(each)}{empty}" stroke-width="1.6" cx="{x:.1f}" cy="{y:.1f}" r="3.6"/>')
     return "".join(parts)
 
 
@@ -200,7 +200,7 @@ def curve_svg(found, width: float = 760, title: str = "") -> str:
     strong = sorted(sorted(peaks, key=lambda peak: -peak.height)[:most], key=lambda peak: -peak.wavenumber)
     for peak in peaks:
         at, up = scale.x(peak.wavenumber), level(float(np.interp(peak.wavenumber, x, y))) - 4
-        body.append(f'<path class="{kind}" stroke="none" d="M{at - 3.5:.1f} {up - 6:.1f}h7L{at:.1f} {up:.1f}Z"/>')
+        body.append(f'<path class="{kind}" style="stroke:none" d="M{at - 3.5:.1f} {up - 6:.1f}h7L{at:.1f} {up:.1f}Z"/>')
     for peak, place in zip(strong, spread([scale.x(peak.wavenumber) for peak in strong], LABEL, 18, width - 18)):
         at, up = scale.x(peak.wavenumber), level(float(np.interp(peak.wavenumber, x, y))) - 11
         body.append(f'<path class="faint" style="fill:none" stroke-width="0.7" d="M{at:.1f} {up:.1f}L{at:.1f} '

@@ -38,6 +38,7 @@ class Estimates:
 def estimate(symmetry: Symmetry, field: ForceField | None = None, bonds=None) -> Estimates:
     """Return the modes of a structure by the valence force field (the standard one by default)."""
     field = standard_field() if field is None else field
+    _refuse_dummies(symmetry.structure)
     sets = internal_coordinates(symmetry, bonds)
     if not sets and len(symmetry.positions) > 1:
         raise VibsymError(
@@ -47,6 +48,13 @@ def estimate(symmetry: Symmetry, field: ForceField | None = None, bonds=None) ->
     symbols, positions = symmetry.structure.symbols, symmetry.positions
     F = field.matrix(symbols, positions, sets)
     return Estimates(symmetry, normal_modes(symmetry, sets, F), field.fallback(symbols, positions, sets), sets)
+
+
+def _refuse_dummies(structure) -> None:
+    dummies = [name for name, dummy in zip(structure.symbols, structure.is_dummy) if dummy]
+    if dummies:
+        raise VibsymError(f"{structure.source or structure.formula}: the dummy atom {dummies[0]} has no mass; "
+                          "normal modes need real atoms")
 
 
 def mode_class(mode: Mode, lacking: set[str]) -> str:

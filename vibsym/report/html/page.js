@@ -154,7 +154,7 @@
       if (!width) return;
       pen.clearRect(0, 0, width, height);
       const marked = this.shown.size > 0;
-      const swing = 0.2 * Math.min(2.2, scene.reach), arrow = 0.85 * Math.min(1, 0.35 * Math.max(scene.reach, 1));
+      const swing = 0.2 * Math.min(2.2, scene.reach), arrow = 0.65 * Math.min(1, 0.6 * scene.reach);
       const reach = scene.reach * (marked ? 1.27 : 1.02) + (this.motion && !marked ? 0.6 * arrow : 0);
       const scale = Math.min(width, height) / 2 / reach;
       const moves = this.motion ? scene.motions[this.motion] : null;
