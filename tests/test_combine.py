@@ -315,3 +315,9 @@ def test_command_formats():
 def test_command_errors_are_one_line(arguments, words):
     done = run(*arguments)
     assert done.exit_code == 1 and words in done.output and done.output.count("\n") == 1
+
+
+def test_many_hot_bands_are_counted():
+    modes = [f"ν{k}:A={300 * k}" for k in range(1, 9)]
+    page = run("C1", *options(modes)).output
+    assert "of the molecules): near each of 8 fundamentals" in page and "ν₂ + ν₁ − ν₁" not in page

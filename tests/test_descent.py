@@ -262,3 +262,9 @@ def test_other_axes_in_a_subgroup_of_a_linear_molecule():
     """C2v whose axis lies across the line: which plane is σ(xz) exchanges B1 and B2."""
     upright, across = embeddings(point_group("Dinfh"), "C2v")
     assert upright.exchange == () and across.exchange == ("B1 <-> B2",)
+
+
+def test_normal_subgroups_of_the_sphere():
+    """No rotation moves {E} and {E, i}; every other class of finite subgroups of Kh has members without end."""
+    counts = {each.group.symbol: each.conjugates for each in all_embeddings(point_group("Kh"))}
+    assert counts["C1"] == counts["Ci"] == 1 and counts["Cs"] is None and counts["Oh"] is None

@@ -208,7 +208,7 @@ def _infinite_embeddings(parent, group) -> tuple[Embedding, ...]:
                 ) if below else ()
     if parent.symbol == "Kh":
         keeps = kept_elements(group, group, np.arange(group.order))
-        return (Embedding(parent, group, keeps, np.eye(3), None),)
+        return (Embedding(parent, group, keeps, np.eye(3), 1 if group.symbol in ("C1", "Ci") else None),)
     if group.symbol in LOW:                               # in D4h, whose C2', C2'' and σv, σd become alike
         merged: dict[str, Embedding] = {}
         for each in _embeddings(point_group("C4v" if parent.symbol == "C∞v" else "D4h"), group):

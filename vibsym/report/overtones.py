@@ -6,6 +6,7 @@ from vibsym.report.document import Listing, Paragraph, Table, Title
 from vibsym.report.wording import NOTHING, about_structure, gamma_plain, gamma_text, group_text
 
 POPULATED = 0.001                  # hot bands from levels with fewer molecules are left to JSON
+NAMED = 6                          # more hot bands of one lower level are only counted
 
 
 def parts(result: Combined, **_) -> list:
@@ -83,10 +84,16 @@ def _hot(result: Combined) -> list:
     for band in result.result.hot_bands:
         if band.fraction >= POPULATED and (band.infrared or band.raman):
             levels.setdefault(band.lower, []).append(band)
-    items = tuple(f"from {_text(lower)} ({_share(bands[0].fraction)} of the molecules): "
-                  + ", ".join(f"{_text(band.label)} near {_number(band.wavenumber)}" for band in bands)
+    items = tuple(f"from {_text(lower)} ({_share(bands[0].fraction)} of the molecules): {_near(bands)}"
                   for lower, bands in levels.items())
     return [Listing(items, f"Hot bands at {result.result.temperature:g} K")] if items else []
+
+
+def _near(bands) -> str:
+    """Hot bands of one lower level; where there are many, in one sentence (JSON has them all)."""
+    if len(bands) > NAMED:
+        return f"near each of {len(bands)} fundamentals"
+    return ", ".join(f"{_text(band.label)} near {_number(band.wavenumber)}" for band in bands)
 
 
 def _lines(result: Combined) -> list:
