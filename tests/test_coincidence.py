@@ -79,3 +79,14 @@ def test_how_many_pairs_chance_explains():
 def test_impossible_windows(window):
     with pytest.raises(VibsymError, match="window"):
         pair_bands((), (), window)
+
+
+def test_equal_sums_are_decided_whatever_the_order_of_rows():
+    """528 and 530 with 523 and 528: both ways of pairing sum up to 7; squares prefer neither crossing nor rows."""
+    infrared, raman = bands("IR", 528.0, 530.0, uncertainty=2.5), bands("Raman", 523.0, 528.0, uncertainty=2.5)
+    for first in (infrared, infrared[::-1]):
+        for second in (raman, raman[::-1]):
+            assert set(pairs(pair_bands(first, second))) == {(528.0, 523.0), (530.0, 528.0)}
+    tied = {frozenset(pairs(pair_bands(first, bands("Raman", 900.0))))
+            for first in (bands("IR", 898.0, 902.0), bands("IR", 902.0, 898.0))}
+    assert tied == {frozenset({(898.0, 900.0)})}

@@ -1,8 +1,9 @@
 """Coincidences of infrared and Raman bands, and how many of them chance would give.
 
 A pair is an infrared and a Raman band that differ by no more than the window, widened by the uncertainties of the two
-lines.  Bands are paired before any structure is considered: most pairs, then the least sum of distances.  A band of
-several lines lies where each of its lines lies.
+lines.  Bands are paired before any structure is considered: most pairs, then the least sum of distances, then (so that
+the order of rows does not matter) the least sum of their squares, then by wavenumber.  A band of several lines lies
+where each of its lines lies.
 
 Chance: if two lines closer than 100 cm-1 had nothing to do with each other, their difference would lie within the
 window with the probability window/100.  So the mean number of accidental pairs is the sum of window/100 over all
@@ -19,6 +20,7 @@ from vibsym.evidence.lines import Band
 
 WINDOW = 5.0          # cm-1
 NEIGHBOURHOOD = 100.0  # cm-1
+EQUAL = 1e-3          # cm-1: sums of distances that differ by less are equal, and their squares decide
 LEAST_CHANCE = 0.01   # k pairs count as accidental while chance gives k or more at least that often
 
 
@@ -56,7 +58,10 @@ def pair_bands(infrared: tuple[Band, ...], raman: tuple[Band, ...], window: floa
     if not 0 <= window <= NEIGHBOURHOOD:
         raise VibsymError(f"window {window:g} cm-1 is not between 0 and {NEIGHBOURHOOD:g}")
     near, distance, chance = _differences(infrared, raman, window)
-    partner = dict(_most_pairs(near, distance))
+    rows, columns = (sorted(range(len(bands)), key=lambda k: sorted(line.wavenumber for line in bands[k].lines))
+                     for bands in (infrared, raman))
+    found = _most_pairs(near[np.ix_(rows, columns)], distance[np.ix_(rows, columns)]) if near.any() else []
+    partner = {rows[row]: columns[column] for row, column in found}
     taken = set(partner.values())
     items = [(band, raman[partner[index]]) if index in partner else (band,) for index, band in enumerate(infrared)]
     items += [(band,) for index, band in enumerate(raman) if index not in taken]
@@ -117,6 +122,8 @@ def _most_pairs(near: np.ndarray, distance: np.ndarray) -> list[tuple[int, int]]
         return list(zip(rows.tolist(), columns.tolist()))
     from scipy.optimize import linear_sum_assignment
 
-    lonely = (distance[near].max() + 1) * (min(near.shape) + 1)   # dearer than all distances of a pairing together
-    chosen = zip(*linear_sum_assignment(np.where(near, distance, lonely)))
+    close = np.where(near, distance, 0.0)
+    cost = close + EQUAL / (1 + (close ** 2).max() * min(near.shape)) * close ** 2
+    lonely = (cost.max() + 1) * (min(near.shape) + 1)      # dearer than all distances of a pairing together
+    chosen = zip(*linear_sum_assignment(np.where(near, cost, lonely)))
     return [(int(row), int(column)) for row, column in chosen if near[row, column]]
