@@ -165,6 +165,18 @@ def test_neighbours_in_nearly_one_direction_have_no_order_round_the_centre(group
         assert coordinate_basis(symmetry, each).size == len(each) and each.name != "wag OF4U"
 
 
+@pytest.mark.parametrize("gap", [4.0, 10.0, 44.0])
+def test_a_crowded_plane_has_its_wags(gap):
+    """Eight neighbours in a plane, in pairs a few degrees apart (D4h): the order round the centre is clear, and the set
+    complete."""
+    angles = np.radians([90 * k + side * gap / 2 for k in range(4) for side in (1, -1)])
+    ring = 8.0 * np.stack([np.cos(angles), np.sin(angles), 0 * angles], axis=1)
+    structure = Structure.from_atoms(["U"] + ["F"] * 8, np.vstack([np.zeros((1, 3)), ring]),
+                                     bonds=[(0, k) for k in range(1, 9)])
+    symmetry = find_symmetry(structure, 0.001)
+    assert symmetry.group.symbol == "D4h" and regions(symmetry).missing == {}
+
+
 def test_order_of_kinds_and_ids():
     sets = internal_coordinates(cases.symmetry("C3H4"))
     assert [each.kind for each in sets] == sorted((each.kind for each in sets), key=KINDS.index)

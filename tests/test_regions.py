@@ -10,6 +10,7 @@ import pytest
 
 from vibsym.groups.bases import Basis
 from vibsym.groups.projection import symmetry_vectors
+from vibsym.groups.symbols import typeset
 from vibsym.report import expectation as view
 from vibsym.report import render
 from vibsym.spectra.activity import count_bands
@@ -144,7 +145,8 @@ def test_parts_that_are_not_bonded():
 
 def test_large_structures_are_left_out_with_a_note():
     found = Regions(None, cases.symmetry("CH4"))
-    assert found.rows == () and found.to_dict() == {"regions": [], "missing": {}, "shared": {}}
+    assert found.rows == () and found.to_dict() == {"regions": [], "missing": {}, "shared": {},
+                                                    "region_notes": list(found.notes)}
     assert "left out" in found.notes[0]
     random = np.random.default_rng(0)
     positions = 2.0 * np.stack(np.meshgrid(*[np.arange(8)] * 3), axis=-1).reshape(-1, 3)
@@ -164,3 +166,13 @@ def test_json_of_regions():
         {"set": "wag BF3", "gamma": {"A2''": 1}, "infrared": 1, "raman": 0, "coincident": 0, "polarised": 0}]
     assert answer["missing"] == {} and answer["shared"] == {"E'": ["stretch B-F", "bend F-B-F"]}
     json.dumps(answer)
+
+
+def test_notes_set_labels_as_the_page_does():
+    """Na+ beside BF4-, C3v: what the ion pair lacks is A1 + E, with subscripts on the page and without in JSON."""
+    corners = 1.4 * cases.TETRAHEDRON
+    symbols, positions = cases.atoms(("B", (0, 0, 0)), ("F", corners), ("Na", [corners[0] * -2.5]))
+    found = regions(find_symmetry(Structure.from_atoms(symbols, positions)))
+    assert found.missing == {"A1": 1, "E": 1}
+    assert found.to_dict()["region_notes"][-1].startswith("The internal coordinates lack A1 + E: motions of parts")
+    assert found.remarks(typeset)[-1].startswith("The internal coordinates lack A₁ + E: motions of parts")

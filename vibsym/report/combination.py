@@ -4,6 +4,7 @@ The common factor is the one that leaves small whole numbers; where there is non
 coordinate keeps its own exact coefficient, like ones together.  Nothing is rounded.
 """
 
+import re
 from collections.abc import Sequence
 from fractions import Fraction
 from math import acos, cos, gcd, isqrt, lcm, pi
@@ -75,12 +76,11 @@ def exact_text(exact) -> str:
 
     >>> import sympy
     >>> exact_text(sympy.sqrt(5) / 4 - sympy.Rational(1, 4)), exact_text(sympy.cos(sympy.pi / 7))
-    ('−1/4 + √5/4', 'cos(π/7)')
+    ('√5/4 − 1/4', 'cos(π/7)')
     """
-    import re
-
     text = re.sub(r"sqrt\((\d+)\)", r"√\1", str(exact)).replace("sqrt", "√").replace("pi", "π")
-    return text.replace("*", "·").replace("-", "−")
+    text = re.sub(r"(?<=\d)\*(?=√)", "", text).replace("*", "·").replace("-", "−")
+    return re.sub(r"^(\(?)−([^ ()]+) \+ ([^ ()]+)", r"\1\3 − \2", text)       # what is positive stands first
 
 
 def _whole_numbers(values: Sequence[float]) -> tuple[str, list[str]] | None:
@@ -123,7 +123,8 @@ def _product(a: int, b: int) -> str:
 
 
 def _bracketed(coefficient: str) -> str:
-    return f"({coefficient})" if " + " in coefficient or " − " in coefficient else coefficient
+    whole = re.fullmatch(r"\([^()]*\)/\d+", coefficient) or not re.search(" [+−] ", coefficient)
+    return coefficient if whole else f"({coefficient})"
 
 
 def _joined(pairs) -> str:

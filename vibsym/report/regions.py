@@ -25,7 +25,7 @@ def region_parts(regions: Regions) -> list:
     lines = [f"{', '.join(labels)}: {', '.join(names)}" for names, labels in sharing.items()]
     if lines:
         page.append(Listing(tuple(lines), "Modes of one species mix the sets that share it"))
-    notes = list(regions.notes)
+    notes = list(regions.remarks(typeset))
     if empty:
         notes.insert(0, f"Redundant with the sets above: {', '.join(empty)}.")
     return page + ([Paragraph("\n".join(notes))] if notes else [])

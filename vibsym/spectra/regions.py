@@ -6,6 +6,7 @@ a species is what it adds to the rank of B (vibsym/vibrations/redundancy.py).  S
 Γvib.  Within a species the division is a way of speaking: the normal modes mix all sets of one species.
 """
 
+from collections.abc import Callable
 from dataclasses import dataclass
 from functools import cached_property
 from typing import NamedTuple
@@ -78,20 +79,24 @@ class Regions:
 
     @cached_property
     def notes(self) -> tuple[str, ...]:
-        """What to know before the division is taken for more than a way of speaking."""
+        """The remarks with labels as in JSON."""
+        return self.remarks(str)
+
+    def remarks(self, written: Callable[[str], str]) -> tuple[str, ...]:
+        """Say what to know before the division is taken for more than a way of speaking; `written` sets labels."""
         if self.independence is None:
             return ("Too many internal coordinates: the division by region is left out.",)
         notes = []
         if self.crowded:
-            notes.append(f"There are more stretches than vibrations in {', '.join(self.crowded)}: the division into "
-                         "regions is conventional.")
+            notes.append(f"There are more stretches than vibrations in {', '.join(map(written, self.crowded))}: the "
+                         "division into regions is conventional.")
         elif self.independence.joined:
             names = list(dict.fromkeys(name for name, _ in self.independence.joined))
             several = len(names) > 3
             names = ", ".join(names[:3]) + (f" and {len(names) - 3} more" if several else "")
             notes.append(f"Redundancies join {names} with the sets above: the division into regions is conventional.")
         if self.missing:
-            lacking = " + ".join((str(n) if n > 1 else "") + label for label, n in self.missing.items())
+            lacking = " + ".join((str(n) if n > 1 else "") + written(label) for label, n in self.missing.items())
             notes.append(f"The internal coordinates lack {lacking}: motions of parts that are not bonded to each other "
                          "(--bond joins them).")
         return tuple(notes)
@@ -99,7 +104,8 @@ class Regions:
     def to_dict(self) -> dict:
         """Return the keys that regions add to JSON."""
         return {"regions": [row.to_dict() for row in self.rows], "missing": dict(self.missing),
-                "shared": {label: list(names) for label, names in self.shared.items()}}
+                "shared": {label: list(names) for label, names in self.shared.items()},
+                "region_notes": list(self.notes)}
 
 
 def regions(symmetry: Symmetry, bonds=None) -> Regions:

@@ -32,7 +32,7 @@ ROUNDING = 1e-9                # exactly 165 degrees (a regular ring of 24) must
 STRAIGHT = np.cos(np.radians(175.0)) - ROUNDING      # cosine; a smaller one is a straight angle
 NEARLY_STRAIGHT = np.cos(np.radians(165.0)) - ROUNDING     # ... of a chain: M-C-O, C-C-N as crystals have them
 PLANAR = 0.15                             # smallest singular value of the unit bond vectors (5 degrees for three)
-NARROW = np.radians(10.0)                 # neighbours of a planar centre that are nearer have no order round it
+NARROW = 1e-3                             # radian; neighbours of a planar centre that are nearer have no order round it
 LETTERS = dict(zip(KINDS, "rlawt", strict=True))
 
 
@@ -206,7 +206,7 @@ class _Frame:
             vectors = self.positions[around] - self.positions[centre]
             vectors = vectors / np.linalg.norm(vectors, axis=1)[:, None]
             _, sizes, axes = np.linalg.svd(vectors)
-            if sizes[2] > PLANAR:
+            if sizes[2] > PLANAR or sizes[1] < 2 * PLANAR:           # no plane, or nearly a line and so no plane either
                 continue
             name = wag_name(self.labels[centre], [self.labels[atom] for atom in around])
             angles = np.arctan2(vectors @ axes[1], vectors @ axes[0])
