@@ -90,7 +90,7 @@ def test_which_isomer_is_in_the_flask():
     leak = next(excuse for excuse in trans["excuses"] if excuse["kind"] == "leak")
     assert "(a) allowed in the true group C1, (b) let through by the surroundings (2 ligands at P)" in leak["reason"]
     whole = json.loads(run(*FLASK, *REGION).stdout)
-    assert [each["rank"] for each in whole["candidates"]] == [1, 1]
+    assert [each["rank"] for each in whole["candidates"]] == [1, 1] and "--local compares" in whole["notes"][0]
 
 
 def test_a_whole_spectrum_is_cut_to_the_carbonyls_of_a_metal_only(tmp_path):

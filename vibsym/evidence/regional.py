@@ -9,7 +9,7 @@ import numpy as np
 from vibsym.errors import VibsymError
 from vibsym.evidence.proposals import Proposal, bands_within, name_of
 from vibsym.spectra.bond_ranges import range_of
-from vibsym.spectra.oscillators import LocalSymmetry, Oscillators, find_oscillators, oscillators
+from vibsym.spectra.oscillators import LocalSymmetry, OscillatorBands, Oscillators, find_oscillators, oscillators
 from vibsym.spectra.prediction import SURROUNDINGS, TRUE_GROUP, Prediction, SpeciesBands
 from vibsym.structures.equivalent_bonds import symmetric_bonds
 from vibsym.structures.finder import find_symmetry
@@ -52,7 +52,8 @@ def _of_molecule(structure: Structure, symmetry: Symmetry, true: Symmetry | None
     points = ", ".join(_named_points(structure))
     return Prediction(name_of(structure) + rung, structure.to_dict(), symmetry.to_dict(),
                       bands_within(found.gamma, symmetry, true, bool(points)), region=found.name,
-                      true_group=true.group.symbol if true is not None else "", surroundings=points, span=span)
+                      true_group=true.group.symbol if true is not None else "", surroundings=points, span=span,
+                      notes=_blunt(symmetry, found))
 
 
 def _of_surroundings(structure: Structure, symmetry: Symmetry, proposal: Proposal) -> Prediction:
@@ -70,6 +71,15 @@ def _of_surroundings(structure: Structure, symmetry: Symmetry, proposal: Proposa
     return Prediction(name_of(structure), structure.to_dict(), symmetry.to_dict(), tuple(bands),
                       region=f"{local.bands.name}, local group", true_group=symmetry.group.symbol, surroundings=points,
                       local_group=local.symmetry.to_dict(), span=_span(structure, symmetry, proposal))
+
+
+def _blunt(symmetry: Symmetry, found: OscillatorBands) -> tuple[str, ...]:
+    """Say that --local sees more where the group of the molecule is too low to forbid a band or to make two one."""
+    counts = found.counts
+    if symmetry.group.infinite or symmetry.group.order > 2 or not 1 < counts.fundamentals == counts.coincident:
+        return ()
+    return (f"In {symmetry.group.symbol} every band of {found.name} is allowed in both spectra, so structures of this "
+            "group look alike; --local compares in the group of what the oscillators see.",)
 
 
 def _span(structure: Structure, symmetry: Symmetry, proposal: Proposal) -> tuple[float, float] | None:
