@@ -156,6 +156,12 @@ def test_a2b2c2_names():
     assert {"all-cis", "all-trans", "trans(CO), cis(Cl), cis(L)"} <= names
 
 
+def test_square_pyramids_are_told_apart_by_what_is_trans_in_the_base():
+    names = isomers("SPY-5", "Fe", ["CO=2", "I=2", "N"]).names
+    assert {"apical CO; trans: CO–I, I–N", "apical CO; trans: CO–N, I–I"} <= set(names)
+    assert not any("(1)" in name for name in names)
+
+
 def test_index_that_depends_on_an_unknown_donor_is_left_open():
     cis, trans = isomers("OC-6", "Mo", ["CO=4", "L=2"]).first()
     assert (cis.index, trans.index) == ("OC-6-22", None)

@@ -29,15 +29,12 @@ def trade_names(found: Orbits) -> list[str]:
     if found.count == 1:
         return [ONLY]
     rows = found.sites.tolist()
-    if found.shape.symbol in _TRANS_SHAPES:
-        names = _relations(found, rows)
-        if len(set(names)) < len(names):
-            pairs = [trans_pairs(found, row) for row in rows]
-            doubled = Counter(names)
-            names = [name if doubled[name] == 1 else "; ".join(filter(None, (name, pair)))
-                     for name, pair in zip(names, pairs)]
-    else:
-        names = _places(found, rows)
+    names = _relations(found, rows) if found.shape.symbol in _TRANS_SHAPES else _places(found, rows)
+    if found.shape.symbol in (*_TRANS_SHAPES, "SPY-5") and len(set(names)) < len(names):
+        pairs = [trans_pairs(found, row) for row in rows]
+        doubled = Counter(names)
+        names = [name if doubled[name] == 1 else "; ".join(filter(None, (name, pair)))
+                 for name, pair in zip(names, pairs)]
     return _numbered(names)
 
 
@@ -93,7 +90,8 @@ def _bis_terdentate(found: Orbits) -> list[str] | None:
 def trans_pairs(found: Orbits, row: Sequence[int]) -> str:
     """Return what stands trans to what: `CO–L, CO–CO, L–L`, first named first."""
     opposite = found.shape.opposite
-    pairs = sorted(tuple(sorted((row[site], row[opposite[site]]))) for site in range(len(row)) if site < opposite[site])
+    pairs = sorted(tuple(sorted((row[site], row[opposite[site]]))) for site in range(len(row))
+                   if opposite[site] is not None and site < opposite[site])
     return "trans: " + ", ".join("–".join(label(found, colour) for colour in pair) for pair in pairs)
 
 
