@@ -206,7 +206,7 @@ class _Frame:
             vectors = self.positions[around] - self.positions[centre]
             vectors = vectors / np.linalg.norm(vectors, axis=1)[:, None]
             _, sizes, axes = np.linalg.svd(vectors)
-            if sizes[2] > PLANAR or sizes[1] < 2 * PLANAR:           # no plane, or nearly a line and so no plane either
+            if sizes[2] > min(PLANAR, sizes[1] / 2):         # no plane; a narrow cone round a line is none either
                 continue
             name = wag_name(self.labels[centre], [self.labels[atom] for atom in around])
             angles = np.arctan2(vectors @ axes[1], vectors @ axes[0])

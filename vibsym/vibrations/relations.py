@@ -23,6 +23,7 @@ from vibsym.vibrations.redundancy import RANK, species_frames
 from vibsym.vibrations.representation import coordinate_basis
 
 SMALL = 1e-9
+ALONG = 1e-3                              # a relation nearer to known ones is one of them, told again with a rounding
 CENTRED = {"bend": 1, "wag": 0}           # where the atoms of a coordinate name the centre
 CONSTANT = 1e-6                            # per Å: a sum of angles that changes less is constant
 FLAT = 1e-6                               # atoms nearer to a plane through the centre (unit vectors) lie in it
@@ -130,7 +131,7 @@ def _independent(vectors: np.ndarray) -> np.ndarray:
     if not len(vectors):
         return vectors
     _, sizes, rows = np.linalg.svd(vectors, full_matrices=False)
-    return rows[sizes > 1e-6]
+    return rows[sizes > ALONG]
 
 
 def _centres(rows: _Rows):
