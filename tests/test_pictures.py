@@ -147,6 +147,8 @@ PAGES = {
     "isomers": ["isomers", "OC-6", "--centre", "Mo", "--ligand", "CO=4", "--ligand", "L=2", "--donor", "L=P"],
     "combine": ["combine", "Td", "--mode", "v1:A1=2917", "--mode", "v4:T2=1306"],
     "descend": ["descend", "Oh", "D4h"], "isotopes": ["isotopes", BF3, "--replace", "1=10B"],
+    "normal": ["normal", BF3], "peaks": ["peaks", str(SAMPLES / "flask-infrared.csv"), "--spectrum", "IR"],
+    "assign": ["assign", str(SAMPLES / "tube-clf3-t.xyz"), "--bands", str(SAMPLES / "tube-clf3-bands.csv"), "--strip"],
 }
 
 
@@ -170,6 +172,8 @@ def test_every_page_is_latex_with_booktabs(name):
 def test_markup_of_latex_is_escaped():
     assert latex("50 % & _x_ #1 {a} ~ ^ \\ $") == (r"50 \% \& \_x\_ \#1 \{a\} \textasciitilde{} \textasciicircum{} "
                                                    r"\textbackslash{} \$")
+    assert latex("Σg⁺") == r"$\Sigma_{\mathrm{g}}^{+}$" and latex("Hg") == r"$\mathrm{H}_{\mathrm{g}}$"
+    assert latex("3φz² in C∞v") == r"3$\varphi z^{2}$ in $\mathrm{C}_{\infty\mathrm{v}}$"
     assert latex("[a] <b>") == r"{[}a{]} \textless{}b\textgreater{}"
     assert set_latex([]).startswith("% needs")
 

@@ -1,5 +1,7 @@
 """Measured spectra: peak picking on synthetic curves with known peaks, two-column text, JCAMP-DX in all its forms."""
 
+import sys
+
 import numpy as np
 import pytest
 
@@ -116,6 +118,13 @@ def test_separators(separator):
 def test_a_decimal_comma_between_semicolons():
     text = two_columns(GRID, curve(GRID), "Wavenumber;Absorbance", ";").replace(".", ",")
     assert places(text) == pytest.approx([2130, 2050, 2003, 1710], abs=0.3)
+
+
+def test_cells_in_quotation_marks():
+    quoted = "\n".join(",".join(f'"{cell}"' for cell in line.split(","))
+                       for line in two_columns(GRID, curve(GRID)).strip().split("\n"))
+    found = parse_spectrum(quoted, "curve.csv", "IR")
+    assert found.ordinate == "absorbance" and len(found.values) == len(GRID)
 
 
 def test_lines_before_the_numbers_are_passed_over():
@@ -263,6 +272,14 @@ def test_damage_is_found():
         parse_spectrum("##TITLE=x\n##XUNITS=1/CM\n##PEAK TABLE=(XY..XY)\n2050,1\n##END=\n", "made.jdx", "IR")
     with pytest.raises(VibsymError, match="is no ordinate in AFFN, PAC, SQZ, DIF or DUP"):
         parse_spectrum(good.replace("##XYDATA=(X++(Y..Y))\n1600", "##XYDATA=(X++(Y..Y))\n1600 &&"), "made.jdx", "IR")
+
+
+def test_tables_of_several_pages_and_a_missing_reader_are_told(monkeypatch):
+    with pytest.raises(VibsymError, match=r"##NTUPLES .* is not read; export the spectrum as ##XYDATA"):
+        parse_spectrum("##TITLE=x\n##JCAMP-DX=5.00\n##NTUPLES=INFRARED SPECTRUM\n##PAGE=N=1\n##END=\n", "n.jdx", "IR")
+    monkeypatch.setitem(sys.modules, "jcamp", None)
+    with pytest.raises(VibsymError, match=r"JCAMP-DX needs the package jcamp; install it with: pip install 'vibsym\["):
+        parse_spectrum("##TITLE=x\n##XUNITS=1/CM\n##END=\n", "made.jdx", "IR")
 
 
 def test_a_point_without_value_is_a_question_mark():

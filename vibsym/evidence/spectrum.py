@@ -112,7 +112,7 @@ def _rows(text: str, most: int | None = None) -> tuple[list[str] | None, list[tu
     """Return the head line (the last one before the numbers begin) and the rows with their line numbers."""
     head, rows = None, []
     for number, line in enumerate(text.lstrip("\ufeff").splitlines(), 1):
-        bare = line.strip()
+        bare = line.strip().replace('"', "")             # some instruments quote every cell
         if not bare or bare.startswith(("#", "%", "//")):
             continue
         cells = _cells(bare)

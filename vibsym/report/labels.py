@@ -32,7 +32,7 @@ def set_labels(text: str) -> str:
     >>> set_labels("2A₁g + T₁u in D₃h"), set_labels("3Ag + Hg"), set_labels("Ag and C<sub>")
     ('2A<sub>1g</sub> + T<sub>1u</sub> in D<sub>3h</sub>', '3A<sub>g</sub> + H<sub>g</sub>', 'Ag and C&lt;sub&gt;')
     """
-    whole = _REDUCTION.fullmatch(text) is not None
+    whole = is_reduction(text)
     text = _PLAIN.sub(lambda found: typeset(found[0]), text)
     text = escape(text).replace("cm-1", "cm⁻¹")
     if whole:
@@ -43,6 +43,15 @@ def set_labels(text: str) -> str:
     text = _ENDLESS.sub(r"\1<sub>∞\2</sub>", text)
     text = _GAMMA.sub(r"Γ<sub>\1</sub>", text)
     return _SIGMA.sub(r"σ<sub>\1</sub>", text)
+
+
+def is_reduction(text: str) -> bool:
+    """Tell whether a text is nothing but species, so that `Ag` in it is no silver.
+
+    >>> is_reduction("2Ag + B₁u"), is_reduction("Ag and Hg")
+    (True, False)
+    """
+    return _REDUCTION.fullmatch(text) is not None
 
 
 def set_group(symbol: str) -> str:

@@ -8,9 +8,12 @@ import re
 import unicodedata
 
 from vibsym.report.document import Facts, Listing, Paragraph, Preformatted, Table, Title
+from vibsym.report.labels import is_reduction
 
 PREAMBLE = "% needs \\usepackage{booktabs,longtable,array,amssymb}; made by vibsym --format latex"
 LONG = 40                      # rows; a longer table may break across pages
+LETTERS = 60                   # in a line of the second column of facts
+WIDE = 92                      # letters in a row; a wider table is set small
 _ESCAPED = {"\\": r"\textbackslash{}", "{": r"\{", "}": r"\}", "$": r"\$", "&": r"\&", "%": r"\%", "#": r"\#",
             "_": r"\_", "^": r"\textasciicircum{}", "~": r"\textasciitilde{}",
             "<": r"\textless{}", ">": r"\textgreater{}", "|": r"\textbar{}",
@@ -50,21 +53,39 @@ def latex(text: str) -> str:
     '$\\mathrm{A}_{2}^{\\prime\\prime}$ \\& 50 \\%'
     >>> latex("ν₁(C–O) in D₃h")
     '$\\nu_{1}$(C--O) in $\\mathrm{D}_{3\\mathrm{h}}$'
+    >>> latex("2Ag + Σu⁺"), latex("Ag in D∞h")
+    ('2$\\mathrm{A}_{\\mathrm{g}}$ + $\\Sigma_{\\mathrm{u}}^{+}$', 'Ag in $\\mathrm{D}_{\\infty\\mathrm{h}}$')
     """
     out, place = [], 0
-    for match in re.finditer(_SCRIPTED, text):
+    for match in (_SPECIES if is_reduction(text) else _LABEL).finditer(text):
         out += map(_plain, text[place:match.start()])
-        base, scripts, letters, greek, name = match.groups()
-        out.append(f"${_GREEK[greek]}_{{\\mathrm{{{name}}}}}$" if greek else
-                   f"${_base(base or '')}{_scripts(scripts, letters or '')}$")
+        out.append(f"${_formula(match)}$")
         place = match.end()
     out += map(_plain, text[place:])
-    return re.sub(r"(?<!\\)\$\$", "", "".join(out))
+    return re.sub(r"(?<!\\)\$\$", " ", "".join(out))         # \varphi and z in one formula are still two
 
 
-_SCRIPTED = ("([A-Za-z)" + "".join(_GREEK) + r"]|\d(?=[" + "".join(_UPPER) + "]))?(["
-             + "".join(_UPPER) + "".join(_LOWER) + "′″]+)"
-             r"([ghuvd]+(?![A-Za-z]))?|([Γσ])(3N|vib|translation|rotation|[vhd])(?![A-Za-z])")
+_ENDLESS = r"(?P<letter>[ΣΠΔΦ])(?P<side>[gu]?)(?P<sign>[⁺⁻]?)(?![A-Za-z])|(?P<axis>[CD])∞(?P<plane>[vh]?)(?![A-Za-z])"
+_SCRIPTED = ("(?P<base>[A-Za-z)" + "".join(_GREEK) + r"]|\d(?=[" + "".join(_UPPER) + "]))?(?P<scripts>["
+             + "".join(_UPPER) + "".join(_LOWER) + r"′″]+)(?P<more>[ghuvd]+(?![A-Za-z]))?")
+_LABEL = re.compile(rf"{_ENDLESS}|{_SCRIPTED}|(?P<greek>[Γσ])(?P<index>3N|vib|translation|rotation|[vhd])(?![A-Za-z])")
+_SPECIES = re.compile(rf"(?P<mulliken>[ABETGHSPD])(?P<parity>[gu])|{_LABEL.pattern}")        # where Ag is no silver
+
+
+def _formula(match: re.Match) -> str:
+    """Return what a label is in mathematics mode."""
+    found = match.groupdict()
+    if found.get("mulliken"):
+        return rf"\mathrm{{{found['mulliken']}}}_{{\mathrm{{{found['parity']}}}}}"
+    if found["letter"]:
+        side = rf"_{{\mathrm{{{found['side']}}}}}" if found["side"] else ""
+        return _GREEK[found["letter"]] + side + _scripts(found["sign"], "")
+    if found["axis"]:
+        plane = rf"\mathrm{{{found['plane']}}}" if found["plane"] else ""
+        return rf"\mathrm{{{found['axis']}}}_{{\infty{plane}}}"
+    if found["greek"]:
+        return rf"{_GREEK[found['greek']]}_{{\mathrm{{{found['index']}}}}}"
+    return _base(found["base"] or "") + _scripts(found["scripts"], found["more"] or "")
 
 
 def _base(text: str) -> str:
@@ -129,6 +150,9 @@ def _facts(part: Facts) -> list[str]:
         return _heading(part.heading)
     rows = [rf"{_set(name)} & {_set(value)} \\" for name, value in part.pairs]
     columns = r"{@{}l>{\raggedright\arraybackslash}p{0.7\linewidth}@{}}"
+    lines = sum(1 + len(value) // LETTERS for _, value in part.pairs)
+    if lines > LONG:
+        return [*_heading(part.heading), "", r"\begin{longtable}" + columns, *rows, r"\end{longtable}"]
     return [*_heading(part.heading), "", r"\noindent\begin{tabular}" + columns, *rows, r"\end{tabular}"]
 
 
@@ -155,4 +179,7 @@ def _table(part: Table) -> list[str]:
     rows = [" & ".join(map(_set, row)) + r" \\" for row in part.rows]
     ruled = [r"\toprule", head, r"\midrule", *([r"\endhead"] if kind == "longtable" else []), *rows, r"\bottomrule"]
     begin = begin if kind == "longtable" else r"\noindent" + begin
-    return [*_heading(part.heading), "", begin, *ruled, rf"\end{{{kind}}}"]
+    width = sum(max(len(row[k]) for row in (part.head, *part.rows)) + 2 for k in range(len(columns) - part.flow))
+    small = width + (25 if part.flow else 0) > WIDE
+    before, after = ([r"{\footnotesize\setlength{\tabcolsep}{3pt}"], ["}"]) if small else ([], [])
+    return [*_heading(part.heading), "", *before, begin, *ruled, rf"\end{{{kind}}}", *after]
