@@ -3,6 +3,7 @@
 import json
 import re
 from html.parser import HTMLParser
+from itertools import pairwise
 
 import numpy as np
 import pytest
@@ -11,6 +12,7 @@ from click.testing import CliRunner
 import vibsym
 from vibsym.cli.main import cli
 from vibsym.evidence.bandlist import parse_bands, read_bands
+from vibsym.evidence.proposals import Proposal
 from vibsym.report.collection import collect
 from vibsym.report.html.page import report_page
 from vibsym.structures.structure import Structure
@@ -116,6 +118,53 @@ def test_leftover_lines_stand_with_their_candidates():
     bands = parse_bands("wavenumber,spectrum,strength\n3657,IR,s\n1595,IR,vs\n3756,IR,vs\n3183,IR,vw\n", "gas.csv")
     reader = Reader(report_page(collect([water], bands)))
     assert "3183" in reader.text("s0-leftover") and "2ν2 at 3190.0" in reader.text("s0-leftover")
+
+
+WATER = Structure.from_atoms(["O", "H", "H"], [[0, 0, 0.117], [0, 0.757, -0.469], [0, -0.757, -0.469]])
+ODD = {
+    "several": lambda: [vibsym.read(path) for path in TUBE],
+    "atom": lambda: [vibsym.read(SAMPLES / "cylinder-argon.xyz")],
+    "linear": lambda: [vibsym.read(SAMPLES / "cylinder-n2o.xyz")],
+    "dummy": lambda: [Structure.from_atoms(["X", "O", "H", "H"],
+                                           [[0, 0, 2.117], *np.add(WATER.positions, (0, 0, 1)).tolist()])],
+    "no bonds": lambda: [Structure.from_atoms(["Ar"] * 3, [[0, 0, 0], [4, 0, 0], [2, 12 ** 0.5, 0]])],
+}
+
+
+@pytest.mark.parametrize("name", ODD)
+def test_the_page_is_sound_html_whatever_the_structure(name):
+    page = report_page(collect(ODD[name]()))
+    reader = Reader(page)
+    ids = [given["id"] for _, given in reader.tags if "id" in given]
+    assert len(ids) == len(set(ids))
+    levels = [int(tag[1]) for tag, _ in reader.tags if re.fullmatch("h[1-6]", tag)]
+    assert levels[0] == 1 and levels.count(1) == 1
+    assert all(after <= before + 1 for before, after in pairwise(levels)), "no level is skipped"
+    assert ("html", {"lang": "en"}) in reader.tags and re.search("<title>[^<]+</title>", page)
+
+
+@pytest.mark.parametrize("name, reason", [("dummy", "the dummy atom X has no mass"), ("no bonds", "no bonds, so")])
+def test_what_is_left_out_is_told(name, reason):
+    reader = Reader(report_page(collect(ODD[name]())))
+    assert f"Normal modes left out: {'H2O·X' if name == 'dummy' else 'Ar3'}: {reason}" in reader.text("s0-conventions")
+
+
+def test_labels_have_their_subscripts():
+    page = report_page(collect([vibsym.read(SAMPLES / "soot-c60.xyz")]))
+    assert 'title="point group">I<sub>h</sub></span>' in page
+    assert "<th scope=\"row\" class=\"whole\" data-head=\"species\">T<sub>1u</sub></th>" in page
+    assert "2A<sub>g</sub> + 3T<sub>1g</sub>" in page
+    assert "T₁" not in page.split("<script")[0] and "F<sub>1u</sub>" in report_page(
+        collect([vibsym.read(SAMPLES / "soot-c60.xyz")]), "F")
+
+
+def test_the_region_asked_for_is_what_is_screened():
+    observed = read_bands(str(SAMPLES / "flask-bands.csv"))
+    flask = [vibsym.read(SAMPLES / f"flask-{name}.xyz") for name in ("cis", "trans")]
+    reader = Reader(report_page(collect(flask, observed, Proposal(oscillators="C-O", local=True))))
+    shown = reader.text("all-screen")
+    assert "flask-cis, C2v: fits stretch C-O, local group: predicted infrared 4" in shown
+    assert "flask-trans, D4h: excluded" in shown
 
 
 def test_everything_has_its_section(tube):

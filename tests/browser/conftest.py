@@ -9,14 +9,16 @@ import shutil
 import pytest
 
 import vibsym
-from vibsym.evidence.bandlist import parse_bands
+from vibsym.evidence.bandlist import parse_bands, read_bands
+from vibsym.evidence.proposals import Proposal
 from vibsym.report.collection import collect
 from vibsym.report.html.page import report_page
 from vibsym.structures.structure import Structure
 from vibsym.tables import folder
 
 FLAGS = ("--headless", "--no-sandbox", "--disable-gpu", "--no-first-run", "--disable-background-networking",
-         "--disable-component-update", "--disable-sync", "--force-device-scale-factor=1")
+         "--disable-component-update", "--disable-sync", "--disable-dev-shm-usage",
+         "--force-device-scale-factor=1")
 BANDS = """wavenumber,spectrum,strength,polarisation
 {rows}
 """
@@ -77,6 +79,18 @@ def _structures():
             "benzene": (benzene, BENZENE), "c60": (vibsym.read(samples / "soot-c60.xyz"), "")}
 
 
+def _several():
+    """Three structures with bands, one of them with a line left over; a linear molecule; one atom."""
+    samples = folder("samples")
+    tube = [vibsym.read(samples / f"tube-clf3-{shape}.xyz") for shape in ("t", "pyramid", "triangle")]
+    bands = read_bands(str(samples / "tube-clf3-bands.csv"))
+    flask = [vibsym.read(samples / f"flask-{shape}.xyz") for shape in ("cis", "trans")]
+    infrared = read_bands(infrared=str(samples / "flask-infrared.csv"))
+    return {"tube": (tube, bands, None), "flask": (flask, infrared, Proposal(oscillators="C-O", local=True)),
+            "linear": ([vibsym.read(samples / "cylinder-n2o.xyz")], None, None),
+            "atom": ([vibsym.read(samples / "cylinder-argon.xyz")], None, None)}
+
+
 @pytest.fixture(scope="session")
 def pages(tmp_path_factory):
     """Return the path of the page of each molecule."""
@@ -88,4 +102,7 @@ def pages(tmp_path_factory):
         report = collect([structure], observed, command=f"vibsym report {name}.xyz")
         path.write_text(report_page(report), encoding="utf-8")
         found[name] = path
+    for name, (structures, observed, proposal) in _several().items():
+        found[name] = path = place / f"{name}.html"
+        path.write_text(report_page(collect(structures, observed, proposal)), encoding="utf-8")
     return found

@@ -9,6 +9,7 @@ import pytest
 
 PROBES = (Path(__file__).parent / "probes.js").read_text(encoding="utf-8")
 MOLECULES = ("water", "carbonyl", "benzene", "c60")
+LAYOUTS = (*MOLECULES, "tube", "flask", "linear", "atom")
 WIDTHS = (400, 900, 1600)
 
 
@@ -29,7 +30,7 @@ def asked(browser, probe):
 
 @pytest.mark.parametrize("scheme", ("light", "dark"))
 @pytest.mark.parametrize("width", WIDTHS)
-@pytest.mark.parametrize("name", MOLECULES)
+@pytest.mark.parametrize("name", LAYOUTS)
 def test_layout_and_contrast(browser, pages, name, width, scheme):
     opened(browser, pages[name], width, scheme)
     browser.execute_script("document.querySelectorAll('details').forEach(each => { each.open = true; });")

@@ -29,9 +29,9 @@ def read_jcamp(text: str, source: str, block: int | None = None):
     blocks = [each for each in _blocks(text, source) if each["table"]]
     if not blocks:
         several = re.search(r"^##\s*NTUPLES\s*=", text, re.MULTILINE | re.IGNORECASE)
-        raise VibsymError(f"{source}: " + ("##NTUPLES (several tables in one block) is not read; export the spectrum as "
-                                           "##XYDATA or as two columns of text" if several else
-                                           "no block with ##XYDATA, ##XYPOINTS or ##PEAK TABLE"))
+        reason = ("##NTUPLES (several tables in one block) is not read; export the spectrum as ##XYDATA or as two "
+                  "columns of text" if several else "no block with ##XYDATA, ##XYPOINTS or ##PEAK TABLE")
+        raise VibsymError(f"{source}: {reason}")
     if block is not None and not 1 <= block <= len(blocks):
         raise VibsymError(f"{source}: --block {block}: the file holds {len(blocks)}")
     if block is None and len(blocks) > 1:
