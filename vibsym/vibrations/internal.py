@@ -137,7 +137,8 @@ def select(sets: Sequence[CoordinateSet], wanted: Sequence[str] = (),
         for text in wanted:
             if not any(same_set(each.name, text) for each in sets):
                 names = ", ".join(each.name for each in sets)
-                raise VibsymError(f"no coordinates '{text}'; the sets are {names or 'none'}")
+                has = f"the sets are {names}" if names else "the structure has no bonds (--bond I-J makes one)"
+                raise VibsymError(f"no coordinates '{text}'; {has}")
         chosen = [each for each in sets if any(same_set(each.name, text) for text in wanted)]
     if len(atoms):
         chosen = [each.chosen(np.flatnonzero(np.isin(each.atoms, atoms).all(axis=1))) for each in chosen]
