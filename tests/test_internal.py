@@ -199,7 +199,7 @@ def test_select_by_name_kind_and_atoms():
     assert stretch.name == "stretch C-C" and stretch.ids == ("r1",)
     with pytest.raises(VibsymError, match=r"no coordinates 'stretch C-Q'; the sets are stretch C-C, stretch C-H"):
         select(sets, ["stretch C-Q"])
-    with pytest.raises(VibsymError, match=r"no coordinates 'bend'; the structure has no bonds \(--bond I-J makes one\)"):
+    with pytest.raises(VibsymError, match=r"no coordinates 'bend'; the structure has no bonds"):
         select((), ["bend"])
     with pytest.raises(VibsymError, match="no internal coordinates among the atoms 3,4"):
         select(sets, (), (2, 3))
