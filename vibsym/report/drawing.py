@@ -25,9 +25,14 @@ STYLE = ("text{font-family:'Helvetica Neue',Arial,'DejaVu Sans',sans-serif}.ink{
 
 def structure_svg(scene: Scene, motion: Motion | None = None, elements: bool = False, width: float = 420,
                   height: float = 330, title: str = "", alone: bool = False) -> str:
-    """Return a drawing; with `motion` its displacements, with `elements` axes, planes and centre."""
+    """Return a drawing; with `motion` its displacements, with `elements` axes, planes and centre.
+
+    On a page it fills width and height; alone it is no larger than what is drawn and a margin.
+    """
     flat = scene.positions @ scene.view.T
     box = _Frame(scene, flat, motion, elements, width, height)
+    if alone:
+        width, height = box.trimmed()
     body = []
     if elements:
         body += [_plane(box, scene, vector) for vector in _planes(scene)]
@@ -73,7 +78,9 @@ class _Frame:
         if room:                                              # for any motion, so that all drawings have one scale
             ends += [ends[0] - 0.9 * self.arrow, ends[1] + 0.9 * self.arrow]
         elif motion is not None:
-            ends.append(flat[:, :2] + 1.25 * self.arrow * (motion.vectors @ scene.view.T)[:, :2])
+            moves = (motion.vectors @ scene.view.T)[:, :2]
+            sizes = np.maximum(np.linalg.norm(moves, axis=1, keepdims=True), 1e-9)
+            ends.append(flat[:, :2] + (self.arrow + scene.radii[:, None] / sizes) * moves)
         if elements:
             ends.append(1.15 * scene.reach * np.array([[1, 1], [-1, -1]]))
         points = np.concatenate(ends)
@@ -82,8 +89,15 @@ class _Frame:
         margin = 22 if elements else 8                         # the symbol of an axis stands beyond its end
         most = (0.3 if room else 0.21) * width                 # px for 1 Å: small molecules do not fill the paper
         self.scale = float(min((width - 2 * margin) / span[0], (height - 2 * margin) / span[1], most))
+        self.size = span * self.scale + 2 * margin
         self.middle = (low + high) / 2
         self.centre = np.array([width / 2, height / 2])
+
+    def trimmed(self) -> tuple[float, float]:
+        """Cut the paper to what is drawn; return its width and height in whole px."""
+        width, height = (float(np.ceil(each)) for each in self.size)
+        self.centre = np.array([width / 2, height / 2])
+        return width, height
 
     def at(self, point) -> tuple[float, float]:
         x, y = (np.asarray(point)[:2] - self.middle) * self.scale

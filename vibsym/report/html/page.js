@@ -249,14 +249,15 @@
       });
     }
 
-    /* A symbol with its index lowered: C, then 2 smaller. */
+    /* A symbol with its index lowered and its primes where they belong: C, then 2 smaller, then ′. */
     write(symbol, x, y, size) {
-      const { pen } = this, [, head, tail] = symbol.match(/^(.)(.*)$/u), plain = tail.replace(/[₀-₉]/g, c => String.fromCharCode(c.charCodeAt(0) - 0x2050));
+      const { pen } = this, [, head, tail, primes] = symbol.match(/^(.)(.*?)([′″]*)$/u), plain = tail.replace(/[₀-₉]/g, c => String.fromCharCode(c.charCodeAt(0) - 0x2050));
       pen.textAlign = "left";
       const wide = pen.measureText(head).width;
       pen.font = "italic " + 0.72 * size + "px " + this.font;
       const left = x - (wide + pen.measureText(plain).width) / 2;
       pen.fillText(plain, left + wide, y + 0.25 * size);
+      pen.fillText(primes, left + wide + pen.measureText(plain).width, y - 0.1 * size);
       pen.font = "italic " + size + "px " + this.font;
       pen.fillText(head, left, y);
     }
