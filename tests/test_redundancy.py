@@ -93,7 +93,7 @@ def test_reasons():
                               "(circles: 3 of 4)"}
     assert reasons("C2H4") == {"the 3 angles at C1 and at its equivalent: their sum is constant"}
     (ring,) = reasons("S8")
-    assert ring.startswith("the ring of S1-S2-S3-S4-S5-S6-S7-S8 stays closed")
+    assert ring.startswith("the ring of S1-S5-S2-S6-S3-S7-S4-S8 stays closed")
     # the angles in the pentagon add up to 360 degrees, those of two steps (144 degrees) only weighted with them
     assert reasons("XeF5-, D5h") == {
         "the 10 angles at Xe1: angles that make a full circle in a plane add up to 360° (circles: 1 of 5); weighted "

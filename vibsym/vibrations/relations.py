@@ -214,9 +214,9 @@ def _circles(rows: _Rows, centre: int, angles: np.ndarray) -> list[int]:
 def _rings(rows: _Rows):
     """Yield (reason, orbits) for each kind of ring: its stretches, bends and torsions are bound by its closure."""
     symmetry = rows.symmetry
-    rings = [frozenset(ring) for ring in find_rings(len(symmetry.positions), symmetric_bonds(symmetry))]
     seen: set[frozenset] = set()
-    for ring in rings:
+    for in_turn in find_rings(len(symmetry.positions), symmetric_bonds(symmetry)):
+        ring = frozenset(in_turn)
         if ring in seen:
             continue
         images = {frozenset(row) for row in symmetry.permutations[:, sorted(ring)].tolist()}
@@ -227,7 +227,7 @@ def _rings(rows: _Rows):
         beside = {number for number, (each, orbit) in enumerate(rows.orbits)
                   if each.kind in CENTRED and any(each.atoms[orbit[0]][CENTRED[each.kind]] in image
                                                   for image in images)}
-        names = "-".join(f"{symmetry.structure.labels[atom]}{atom + 1}" for atom in sorted(ring))
+        names = "-".join(f"{symmetry.structure.labels[atom]}{atom + 1}" for atom in in_turn)
         also = f" (and {len(images) - 1} equivalent)" if len(images) > 1 else ""
         closed = f"the ring of {names}{also} stays closed"
         yield closed + ("; the sum of its angles is constant" if _constant_sum(rows, ring) else ""), inside
