@@ -165,6 +165,17 @@ def test_the_region_asked_for_is_what_is_screened():
     shown = reader.text("all-screen")
     assert "flask-cis, C2v: fits stretch C-O, local group: predicted infrared 4" in shown
     assert "flask-trans, D4h: excluded" in shown
+    assigned = reader.text("s0-assignment")
+    assert "named in the group of the whole molecule, point group C1; what the bands allow was judged" in assigned
+    unseen = reader.result("assign-0")["unseen"]
+    assert f"{len(unseen)} not seen." in assigned and "fundamentals not seen have estimates outside" in assigned
+    assert not any(f"{row['mode']} {row['estimate']:.0f}" in assigned for row in unseen if row["estimate"] < 1500)
+
+
+def test_options_that_need_bands_say_so(tmp_path):
+    target = tmp_path / "page.html"
+    done = CliRunner().invoke(cli, ["report", str(TUBE[0]), "--between", "100", "900", "--output", str(target)])
+    assert done.exit_code == 1 and "--between needs observed bands" in done.output and not target.exists()
 
 
 def test_everything_has_its_section(tube):

@@ -33,6 +33,7 @@ def command(structures, bands, infrared, raman, between, window, allow, light, t
     import shlex
     import sys
 
+    from vibsym.errors import VibsymError
     from vibsym.evidence.bandlist import read_bands
     from vibsym.evidence.proposals import Proposal
     from vibsym.evidence.screening import ScreenOptions
@@ -40,7 +41,11 @@ def command(structures, bands, infrared, raman, between, window, allow, light, t
     from vibsym.report.collection import collect
     from vibsym.report.html.page import report_page
 
-    observed = read_bands(bands, infrared, raman, between=between, light=light) if bands or infrared or raman else None
+    measured = bands or infrared or raman
+    for name, value in (("between", between), ("allow", allow)):
+        if value and not measured:
+            raise VibsymError(f"--{name} needs observed bands: --bands FILE, or --ir FILE and --raman FILE")
+    observed = read_bands(bands, infrared, raman, between=between, light=light) if measured else None
     read = [each for path in structures for each in read_structures(path, frame, bonds, no_bonds, average_masses)]
     told = "vibsym " + shlex.join(sys.argv[1:]) if sys.argv[1:2] == ["report"] else "vibsym report"
     page = report_page(collect(read, observed, Proposal(**proposal), ScreenOptions(window, allow), told), triple)

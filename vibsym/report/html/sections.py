@@ -100,15 +100,39 @@ def _assignment(report: Report, sheet: Sheet, prefix: str) -> str:
                             f"{len(answer['unseen'])} not seen.", strong=True), Table(head, rows, frozenset({2, 3, 4}))]
     if any(not row["firm"] for row in answer["assignments"]):
         page.append(Paragraph("Firm: every other species costs much more. Otherwise the species that cost nearly as "
-                              "little "
-                              "stand there with what they cost more; decide by a further measurement."))
-    if answer["unseen"]:
-        unseen: dict[str, list[str]] = {}
-        for row in answer["unseen"]:
-            unseen.setdefault(typeset(row["species"]), []).append(f"{typeset(row['mode'])} {row['estimate']:.0f}")
-        page.append(Facts(tuple((label, ", ".join(modes)) for label, modes in unseen.items()),
+                              "little stand there with what they cost more; decide by a further measurement."))
+    return set_html([*page, *_local_note(sheet), *_unseen(answer["unseen"], report.observed)])
+
+
+def _local_note(sheet: Sheet) -> list:
+    """Tell that modes are named in the group of the whole molecule, also where the bands were judged in a local one."""
+    local = sheet.expectation.oscillators.local if sheet.expectation.oscillators is not None else None
+    if local is None or local.symmetry.group.symbol == sheet.symmetry.group.symbol:
+        return []
+    whole, own = typeset(sheet.symmetry.group.symbol), typeset(local.symmetry.group.symbol)
+    return [Paragraph(f"Modes are named in the group of the whole molecule, point group {whole}; what the bands allow "
+                      f"was judged in the local group of the oscillators, point group {own}.")]
+
+
+def _unseen(unseen: list[dict], observed) -> list:
+    """Return the fundamentals not seen, by species; those far outside the lines that were given are only counted."""
+    lines = [line.wavenumber for line in observed.lines]
+    room = max(0.15 * (max(lines) - min(lines)), 100.0)
+    inside: dict[str, list[str]] = {}
+    outside = 0
+    for row in unseen:
+        if not min(lines) - room <= row["estimate"] <= max(lines) + room:
+            outside += 1
+            continue
+        inside.setdefault(typeset(row["species"]), []).append(f"{typeset(row['mode'])} {row['estimate']:.0f}")
+    told = []
+    if inside:
+        told.append(Facts(tuple((label, ", ".join(modes)) for label, modes in inside.items()),
                           "Fundamentals not seen, with their estimates in cm⁻¹"))
-    return set_html(page)
+    if outside:
+        told.append(Paragraph(f"{count_text(outside, 'fundamental')} not seen {'have' if outside > 1 else 'has'} "
+                              "estimates outside the range of the lines given."))
+    return told
 
 
 def _leftovers(report: Report, sheet: Sheet, prefix: str) -> str:
