@@ -62,7 +62,8 @@ def latex(text: str) -> str:
         out.append(f"${_formula(match)}$")
         place = match.end()
     out += map(_plain, text[place:])
-    return re.sub(r"(?<!\\)\$\$", " ", "".join(out))         # \varphi and z in one formula are still two
+    joined = re.sub(r"(\\[A-Za-z]+)\$\$(?=[A-Za-z])", r"\1 ", "".join(out))        # \varphi and z stay two words
+    return re.sub(r"(?<!\\)\$\$", "", joined)
 
 
 _ENDLESS = r"(?P<letter>[ΣΠΔΦ])(?P<side>[gu]?)(?P<sign>[⁺⁻]?)(?![A-Za-z])|(?P<axis>[CD])∞(?P<plane>[vh]?)(?![A-Za-z])"
