@@ -59,6 +59,23 @@ def test_recall_and_precision_with_noise(weakest_over_noise, recall, precision):
     assert seen / true >= recall and seen / told >= precision
 
 
+@pytest.mark.parametrize("step", (0.25, 1.0, 4.0))
+@pytest.mark.parametrize("noise", (0.001, 0.005))
+def test_places_are_as_certain_as_they_say(step, noise):
+    """Bands of mixed width and height: nearly all lie within twice their stated uncertainty of the true place."""
+    random = np.random.default_rng(11)
+    off = []
+    for _ in range(6):
+        x = np.arange(400, 4000, step)
+        bands = [(float(place), random.uniform(5, 20), 10 ** random.uniform(-1, 0))
+                 for place in np.arange(500, 3900, 150) + random.uniform(-20, 20, 23)]
+        y = sum(height * np.exp(-np.log(2) * ((x - place) / width) ** 2) for place, width, height in bands)
+        found = pick_peaks(parse_spectrum(two_columns(x, y + random.normal(0, noise, len(x))), "made.csv", "IR")).peaks
+        assert len(found) == len(bands)
+        off += [min(abs(peak.wavenumber - place) for place, _, _ in bands) / peak.uncertainty for peak in found]
+    assert np.mean(np.array(off) < 2) >= 0.97
+
+
 def test_noise_alone_has_no_peaks():
     for seed in range(20):
         y = np.random.default_rng(seed).normal(0, 1, 4000)

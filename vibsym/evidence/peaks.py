@@ -3,8 +3,8 @@
 A band is a maximum of the signal (absorbance -log10 T, or Raman intensity) that rises by at least `prominence` above
 the higher of the two saddles that part it from higher ones, and lies at least `distance` from a stronger one
 (`scipy.signal.find_peaks`).  Before, the curve is set on even steps if need be and smoothed by a quadratic over the
-minimum distance (A. Savitzky, M. J. E. Golay, Anal. Chem. 36, 1627 (1964)).  Places are refined by the parabola
-through the top and its neighbours.  Heights stand on the baseline: the lower convex hull (`rubber`, common practice),
+minimum distance (A. Savitzky, M. J. E. Golay, Anal. Chem. 36, 1627 (1964)).  Places are those of the parabola
+through the upper part of the band.  Heights stand on the baseline: the lower convex hull (`rubber`, common practice),
 or zero.
 
 Default prominence: the larger of 8 standard deviations of the noise (estimated from second differences) and 1 % of the
@@ -25,6 +25,8 @@ DISTANCE = 4.0                # cm-1
 NOISE_TIMES = 8.0             # between the highest and the lowest of some thousand points of noise
 SPAN_PART = 0.01
 STRENGTHS = ((0.75, "vs"), (0.4, "s"), (0.15, "m"), (0.04, "w"), (0.0, "vw"))
+TOP = 0.2                     # part of the rise of a band, from its top, through which the parabola is laid
+FEWEST_ON_TOP = 5             # points
 EVEN = 0.02                   # largest relative difference of steps still called even
 
 
@@ -36,7 +38,7 @@ class Peak:
     height: float
     prominence: float
     strength: str
-    uncertainty: float        # cm-1, half a step of the curve
+    uncertainty: float        # cm-1, from the steps of the curve and its noise
 
     def to_dict(self) -> dict:
         """Return the peak for JSON."""
@@ -92,8 +94,10 @@ def pick_peaks(spectrum: Spectrum, prominence: float | None = None, distance: fl
                               distance=max(1, ceil(distance / step - 1e-9)))
     above = smooth - (lower_hull(x, smooth) if baseline == "rubber" else 0.0)
     highest = max((above[k] for k in found), default=1.0) or 1.0
-    peaks = [Peak(round(_top(x, smooth, k), 2), float(above[k]), float(rise), _strength(above[k] / highest),
-                  _half_step(step)) for k, rise in zip(found, about["prominences"])]
+    rises = about["prominences"]
+    peaks = [Peak(round(place, 2), float(above[k]), float(rise), _strength(above[k] / highest),
+                  _rounded_up(float(np.hypot(step / 2, spread))))
+             for k, rise, (place, spread) in zip(found, rises, _places(x, y, smooth, found, rises))]
     return Peaks(spectrum, tuple(sorted(peaks, key=lambda peak: -peak.wavenumber)), float(prominence), distance,
                  baseline, noise, tuple(notes))
 
@@ -176,5 +180,27 @@ def _strength(part: float) -> str:
     return next(name for least, name in STRENGTHS if part >= least or name == "vw")
 
 
-def _half_step(step: float) -> float:
-    return ceil(step * 50) / 100
+def _places(x: np.ndarray, y: np.ndarray, smooth: np.ndarray, found: np.ndarray, rises: np.ndarray):
+    """Yield for each maximum its place and the standard deviation of the place (cm-1).
+
+    A parabola is laid through the points round the maximum that lie in the upper TOP of its rise; its vertex is the
+    place.  Noise s moves the vertex by the standard deviation of the slope, s / (sum of t^2)^1/2, over the curvature.
+    Too few points above: the parabola through the highest three of the smoothed curve, and no more is known.
+    """
+    step, noise = float(x[1] - x[0]), _noise(y)
+    for k, rise in zip(found, rises):
+        below = smooth < smooth[k] - TOP * rise
+        left = k - int(np.argmax(below[k::-1])) + 1 if below[:k].any() else 0
+        right = k + int(np.argmax(below[k:])) if below[k:].any() else len(x)
+        t = (np.arange(left, right) - (left + right - 1) / 2) * step
+        bend, slope, _ = np.polyfit(t, y[left:right], 2) if len(t) >= FEWEST_ON_TOP else (0.0, 0.0, 0.0)
+        place = -slope / (2 * bend) if bend < 0 else np.inf
+        if abs(place) > t[-1]:
+            yield _top(x, smooth, k), 0.0
+            continue
+        spread = noise / float(t @ t) ** 0.5 / (2 * abs(bend))
+        yield float(x[left:right].mean() + place), float(min(spread, t[-1]))
+
+
+def _rounded_up(value: float) -> float:
+    return ceil(round(value * 100, 6)) / 100

@@ -1,5 +1,7 @@
 """Set a page as Markdown: the same parts as on the terminal, for notebooks, tickets and supporting information."""
 
+import re
+
 from vibsym.report.document import Facts, Listing, Paragraph, Preformatted, Table, Title
 
 
@@ -44,7 +46,12 @@ def _table(part: Table) -> list[str]:
 
 
 def _safe(text: str) -> str:
-    """Keep characters that Markdown would take for markup."""
-    for mark in "\\|*_<>`":
+    """Keep characters that Markdown would take for markup: also a link, an entity, a mark that opens a line.
+
+    >>> _safe("# [a](b) & &lt; ~~c~~")
+    '\\\\# \\\\[a](b) & \\\\&lt; \\\\~\\\\~c\\\\~\\\\~'
+    """
+    for mark in "\\|*_<>`~[":
         text = text.replace(mark, "\\" + mark)
-    return text
+    text = re.sub(r"&(?=#?\w+;)", r"\\&", text)
+    return re.sub(r"^([#+-])(?=\s|$)", r"\\\1", text)
