@@ -149,6 +149,11 @@ def test_what_is_left_out_is_told(name, reason):
     assert f"Normal modes left out: {'H2O·X' if name == 'dummy' else 'Ar3'}: {reason}" in reader.text("s0-conventions")
 
 
+def test_silver_is_no_species():
+    page = report_page(collect([Structure.from_atoms(["Ag"], [[0, 0, 0]])]))
+    assert "<h1>Ag</h1>" in page
+
+
 def test_labels_have_their_subscripts():
     page = report_page(collect([vibsym.read(SAMPLES / "soot-c60.xyz")]))
     assert 'title="point group">I<sub>h</sub></span>' in page

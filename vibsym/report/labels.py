@@ -24,19 +24,26 @@ _PLAIN = re.compile(r"(?<![\w-])(?:[CD]\d{1,2}[vdh]|S\d{1,2}(?= )|\d*[ABETF][123
                     r"(?<=\()\d*[ABETGH][12]?'*(?: \+ \d*[ABETGH][12]?'*)+(?=\))")      # ASCII labels in sentences
 _NAMED_GROUP = re.compile(r"(?<=oint group )([CTOIK])([sidh])(?![A-Za-z])")
 _REDUCTION = re.compile(rf"(?:ν[₀-₉]+ )?{_TERM}(?: \+ {_TERM})*")
+# "Ag, Hu: stretch C-C", "No vibrations in Ag, Au"
+_LISTED = re.compile(rf"^{_TERM}(?:, {_TERM})*(?=: (?:stretch|bend|linear|wag|torsion))|"
+                     rf"(?<=No vibrations in ){_TERM}(?:, {_TERM})*")
 
 
-def set_labels(text: str) -> str:
-    """Return a text as HTML: escaped, its labels with subscripts and superscripts.
+def set_labels(text: str, formula: bool = False) -> str:
+    """Return a text as HTML: escaped, its labels with subscripts and superscripts; in a `formula` Ag is silver.
 
     >>> set_labels("2A₁g + T₁u in D₃h"), set_labels("3Ag + Hg"), set_labels("Ag and C<sub>")
     ('2A<sub>1g</sub> + T<sub>1u</sub> in D<sub>3h</sub>', '3A<sub>g</sub> + H<sub>g</sub>', 'Ag and C&lt;sub&gt;')
+    >>> set_labels("Ag, T₁u: stretch C-C"), set_labels("Ag", formula=True)
+    ('A<sub>g</sub>, T<sub>1u</sub>: stretch C-C', 'Ag')
     """
-    whole = is_reduction(text)
+    whole = is_reduction(text) and not formula
     text = _PLAIN.sub(lambda found: typeset(found[0]), text)
     text = escape(text).replace("cm-1", "cm⁻¹")
     if whole:
         text = _SPECIES.sub(r"\1\2<sub>\3</sub>", text)
+    elif not formula:
+        text = _LISTED.sub(lambda found: _SPECIES.sub(r"\1\2<sub>\3</sub>", found[0]), text)
     text = _NAMED_GROUP.sub(r"\1<sub>\2</sub>", text)
     text = _GREEK.sub(_greek, text)
     text = _NUMBERED.sub(lambda found: f"<sub>{found[1].translate(_DIGITS)}{found[2] or ''}</sub>", text)

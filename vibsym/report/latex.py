@@ -46,8 +46,10 @@ def set_latex(parts) -> str:
     return PREAMBLE + "\n\n" + "\n\n".join("\n".join(setters[type(part)](part)) for part in parts) + "\n"
 
 
-def latex(text: str) -> str:
+def latex(text: str, formula: bool = False) -> str:
     r"""Return a text with everything that LaTeX would take for markup escaped, and Unicode as commands.
+
+    In a `formula` Ag is silver; elsewhere a text of nothing but species has their indices.
 
     >>> latex("A₂″ & 50 %")
     '$\\mathrm{A}_{2}^{\\prime\\prime}$ \\& 50 \\%'
@@ -57,7 +59,7 @@ def latex(text: str) -> str:
     ('2$\\mathrm{A}_{\\mathrm{g}}$ + $\\Sigma_{\\mathrm{u}}^{+}$', 'Ag in $\\mathrm{D}_{\\infty\\mathrm{h}}$')
     """
     out, place = [], 0
-    for match in (_SPECIES if is_reduction(text) else _LABEL).finditer(text):
+    for match in (_SPECIES if is_reduction(text) and not formula else _LABEL).finditer(text):
         out += map(_plain, text[place:match.start()])
         out.append(f"${_formula(match)}$")
         place = match.end()
@@ -126,13 +128,13 @@ def _barred(text: str) -> str:
     return re.sub("([0-9])\u0305", "\ue000\\1", text)
 
 
-def _set(text: str) -> str:
+def _set(text: str, formula: bool = False) -> str:
     """Escape a text; a digit under a combining bar (6̅) becomes an overlined digit."""
-    return re.sub("\ue000(.)", r"$\\overline{\1}$", latex(_barred(text)))
+    return re.sub("\ue000(.)", r"$\\overline{\1}$", latex(_barred(text), formula))
 
 
 def _title(part: Title) -> list[str]:
-    return [rf"\subsection*{{{_set(part.text)}}}", *([_set(part.aside)] if part.aside else [])]
+    return [rf"\subsection*{{{_set(part.text, True)}}}", *([_set(part.aside)] if part.aside else [])]
 
 
 def _heading(text: str) -> list[str]:

@@ -62,11 +62,12 @@ def _beside(name: str) -> str:
 
 def _cover(report: Report, names: str) -> str:
     """The head of a page on several structures, with what concerns them all."""
-    rows = "".join(f'<li><a href="#sheet-{number}">{set_labels(typeset(sheet.expectation.structure.formula))}</a>, '
-                   f"{escape(_file_name(sheet))}</li>" for number, sheet in enumerate(report.sheets))
+    formulas = [set_labels(typeset(sheet.expectation.structure.formula), True) for sheet in report.sheets]
+    rows = "".join(f'<li><a href="#sheet-{number}">{formula}</a>, {escape(_file_name(sheet))}</li>'
+                   for number, (formula, sheet) in enumerate(zip(formulas, report.sheets)))
     sections = "".join(_section(number, title, f"all-{key}", text)
                        for number, (key, title, text) in enumerate(shared_sections(report), 1))
-    return (f'<header class="top"><h1>{set_labels(names)}</h1><p class="source">{len(report.sheets)} '
+    return (f'<header class="top"><h1>{set_labels(names, True)}</h1><p class="source">{len(report.sheets)} '
             f'structures</p></header>'
             f'<ul class="contents">{rows}</ul>{sections}')
 
@@ -87,7 +88,7 @@ def _article(report: Report, sheet: Sheet, number: int) -> str:
     told = f'<p class="comment">{escape(comment)}</p>' if comment else ""
     atoms = len(found.structure)
     figure = plate(sheet.scene, motions_of(sheet), formula, group, found.axes.words)
-    return (f'<article id="sheet-{number}"><header class="top"><{tag}>{set_labels(formula)}</{tag}>'
+    return (f'<article id="sheet-{number}"><header class="top"><{tag}>{set_labels(formula, True)}</{tag}>'
             f'<span class="stamp" title="point group">{set_group(group)}</span><p class="source">'
             f'{escape(_file_name(sheet))}, {atoms} atom{"s" if atoms != 1 else ""}</p></header>'
             f'<nav aria-label="Sections of {escape(formula)}"><ul class="contents">{contents}</ul></nav>{told}'

@@ -15,7 +15,7 @@ def set_html(parts, level: int = 3) -> str:
 
 def heading(text: str, level: int) -> str:
     """Return a heading, or nothing for an empty text."""
-    return f"<h{level}>{set_labels(text)}</h{level}>" if text else ""
+    return f"<h{level}>{set_labels(text, True)}</h{level}>" if text else ""
 
 
 def _title(part: Title, level: int) -> str:
