@@ -150,6 +150,15 @@ def test_pins_that_cannot_be(name):
     assert words in str(error.value) and "\n" not in str(error.value)
 
 
+def test_a_pin_holds_only_the_line_that_can_be_of_its_species():
+    """A1 of methane is silent in the infrared: the infrared line at the pinned place is T2 and not pinned."""
+    bands = parse_bands("wavenumber,spectrum\n3019,IR\n3019,Raman\n1534,Raman\n1306,IR")
+    rows = {row.mode.species: row for row in assign(methane(), bands, pins=["A1=3019"]).assigned}
+    assert rows["A1"].pinned and rows["A1"].raman is not None and rows["A1"].infrared is None
+    held = [row for row in assign(methane(), bands, pins=["A1=3019"]).assigned if row.pinned]
+    assert [row.mode.species for row in held] == ["A1"]
+
+
 def test_two_pins_on_one_fundamental():
     with pytest.raises(VibsymError, match="cannot all be assigned"):
         assign(methane(), parse_bands("wavenumber,spectrum\n3019,IR\n1306,IR\n1290,IR"), pins=["v4=1290", "v4=1306"])

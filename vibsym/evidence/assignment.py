@@ -181,7 +181,7 @@ def _result(symmetry, observed, estimates, costs, allowed, best, held) -> Assign
                 *(bands[seen[name]] if name in seen else None for name in ("IR", "Raman")),
                 describe(modes[column]),
                 others,
-                any(_holds(pin, bands, seen) for pin in held),
+                any(_holds(pin, bands, seen, column, modes[column].species) for pin in held),
             )
         )
     leftover = tuple(bands[row] for row, column in enumerate(best.places.tolist()) if column < 0)
@@ -212,8 +212,10 @@ def alternatives(
     return tuple(sorted(found, key=lambda pair: pair[1]))
 
 
-def _holds(pin: Pin, bands, seen: dict[str, int]) -> bool:
-    return any(pin.matches(bands[row]) for row in seen.values())
+def _holds(pin: Pin, bands, seen: dict[str, int], column: int, species: str) -> bool:
+    """Whether a pin put one of the bands where it is; a line of the other spectrum at the same place is not pinned."""
+    meant = pin.species == species and pin.mode in (None, column)
+    return meant and any(pin.matches(bands[row]) for row in seen.values())
 
 
 def _notes(estimates: Estimates, observed: BandList) -> tuple[str, ...]:
