@@ -12,10 +12,10 @@ import numpy as np
 from vibsym.errors import VibsymError
 from vibsym.evidence.bandlist import BandList
 from vibsym.evidence.screening import Screening, ScreenOptions, screen_predictions
-from vibsym.spectra.expectation import DEFAULT_TOLERANCE, expect
+from vibsym.spectra.expectation import expect
 from vibsym.spectra.prediction import Prediction, bands_of_gamma
 from vibsym.structures.structure import Structure, structure_of
-from vibsym.structures.symmetry import Symmetry, within
+from vibsym.structures.symmetry import DEFAULT_TOLERANCE, LOCAL_TOLERANCE, Symmetry, within
 
 
 @dataclass(frozen=True)
@@ -28,7 +28,7 @@ class Proposal:
     every_rung: bool = False
     oscillators: str | None = None        # "C-O", "Mo-C-O" or atom pairs
     local: bool = False
-    local_tolerance: float = 0.3          # Å
+    local_tolerance: float = LOCAL_TOLERANCE  # Å
     distinguish: bool = False             # donors are alike only if their ligands have one formula
 
 

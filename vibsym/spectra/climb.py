@@ -3,9 +3,9 @@
 from dataclasses import dataclass
 from functools import cached_property
 
-from vibsym.spectra.expectation import DEFAULT_TOLERANCE, Expectation
+from vibsym.spectra.expectation import Expectation
 from vibsym.structures.structure import Structure, structure_of
-from vibsym.structures.symmetry import Symmetry
+from vibsym.structures.symmetry import DEFAULT_TOLERANCE, Symmetry
 from vibsym.vibrations.cartesian import displacements
 
 

@@ -11,15 +11,12 @@ from typing import TYPE_CHECKING
 from vibsym.errors import VibsymError
 from vibsym.spectra.activity import Counts, SpeciesRow, count_bands, species_rows
 from vibsym.structures.structure import Structure, structure_of
-from vibsym.structures.symmetry import Symmetry
+from vibsym.structures.symmetry import DEFAULT_TOLERANCE, LOCAL_TOLERANCE, Symmetry
 from vibsym.vibrations.cartesian import Displacements, displacements
 
 if TYPE_CHECKING:
     from vibsym.spectra.contours import GasPhase
     from vibsym.spectra.oscillators import Oscillators
-
-DEFAULT_TOLERANCE = 0.02  # Å
-LOCAL_TOLERANCE = 0.3  # Å; for the group of oscillators, wide enough for the angles of real complexes
 
 
 @dataclass(frozen=True)

@@ -17,9 +17,9 @@ from vibsym.groups.descent import descend_gamma
 from vibsym.spectra.activity import Counts, count_bands
 from vibsym.spectra.fermi import Doublet, deperturbed
 from vibsym.spectra.modes import Mode
-from vibsym.structures.finder import DEFAULT_TOLERANCE
 from vibsym.structures.isotopes import Substitution, substitution
 from vibsym.structures.structure import Structure
+from vibsym.structures.symmetry import DEFAULT_TOLERANCE
 from vibsym.vibrations.cartesian import displacements
 from vibsym.vibrations.productrule import ProductLine, product_rule
 

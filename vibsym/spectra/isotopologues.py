@@ -3,9 +3,9 @@
 from dataclasses import dataclass
 
 from vibsym.errors import VibsymError
-from vibsym.structures.finder import DEFAULT_TOLERANCE
 from vibsym.structures.isotopes import Isotopologue, isotopologues
 from vibsym.structures.structure import Structure
+from vibsym.structures.symmetry import DEFAULT_TOLERANCE
 
 
 @dataclass(frozen=True, eq=False)

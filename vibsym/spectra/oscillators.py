@@ -15,13 +15,12 @@ import numpy as np
 
 from vibsym.errors import VibsymError
 from vibsym.spectra.activity import Counts, count_bands
-from vibsym.spectra.expectation import LOCAL_TOLERANCE
 from vibsym.structures.bonds import neighbours
 from vibsym.structures.equivalent_bonds import symmetric_bonds
 from vibsym.structures.periodic import is_metal
 from vibsym.structures.reduced import ReducedObject, reduced_object
 from vibsym.structures.structure import Structure
-from vibsym.structures.symmetry import Symmetry
+from vibsym.structures.symmetry import LOCAL_TOLERANCE, Symmetry
 from vibsym.vibrations.internal import CoordinateSet
 from vibsym.vibrations.naming import bond_name
 from vibsym.vibrations.representation import coordinate_basis

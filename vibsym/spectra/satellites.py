@@ -17,13 +17,12 @@ from vibsym.groups.bases import Basis
 from vibsym.groups.projection import symmetry_vectors
 from vibsym.structures.bonds import find_bonds
 from vibsym.structures.elements import isotopes
-from vibsym.structures.finder import DEFAULT_TOLERANCE, find_symmetry
+from vibsym.structures.finder import find_symmetry
 from vibsym.structures.isotopes import isotopologues
 from vibsym.structures.reduced import reduced_object
 from vibsym.structures.structure import Structure
-from vibsym.structures.symmetry import Symmetry
+from vibsym.structures.symmetry import DEFAULT_TOLERANCE, LOCAL_TOLERANCE, Symmetry
 
-LOCAL_TOLERANCE = 0.3              # Å, as for the local group of oscillators
 FORCE = 5.8917936e-5               # 4π²c² u in N/m for μ in u, ν in cm-1 (CODATA 2018)
 
 

@@ -21,9 +21,8 @@ from vibsym.structures.linear import LinearPlacement, image_permutations, line_f
 from vibsym.structures.placement import Placement, place
 from vibsym.structures.structure import structure_of
 from vibsym.structures.subsets import closed_subsets, consistent, product_table
-from vibsym.structures.symmetry import Symmetry
+from vibsym.structures.symmetry import DEFAULT_TOLERANCE, Symmetry
 
-DEFAULT_TOLERANCE = 0.02       # Å
 LARGEST_TOLERANCE = 0.5        # Å
 SAME = 1e-6                    # Å; deviations that differ by less are equal
 

@@ -15,10 +15,10 @@ import numpy as np
 
 from vibsym.errors import VibsymError
 from vibsym.groups.descent import Correlation, correlation_in_frame, restrict
-from vibsym.structures.finder import DEFAULT_TOLERANCE, find_symmetry
+from vibsym.structures.finder import find_symmetry
 from vibsym.structures.labels import is_dummy, read_label
 from vibsym.structures.structure import Structure
-from vibsym.structures.symmetry import Symmetry
+from vibsym.structures.symmetry import DEFAULT_TOLERANCE, Symmetry
 
 MOST_ARRANGEMENTS = 2**16          # beyond, a listing helps nobody
 

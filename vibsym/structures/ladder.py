@@ -18,7 +18,6 @@ from vibsym.groups.distinct import first_of_each
 from vibsym.groups.pointgroup import point_group
 from vibsym.structures.candidates import Operations, codes_of, find_operations
 from vibsym.structures.finder import (
-    DEFAULT_TOLERANCE,
     Centred,
     centre,
     largest_group,
@@ -33,7 +32,7 @@ from vibsym.structures.linear import LinearPlacement, linear_placements
 from vibsym.structures.placement import Placement
 from vibsym.structures.structure import structure_of
 from vibsym.structures.subsets import closed_subsets, product_table
-from vibsym.structures.symmetry import Symmetry, within
+from vibsym.structures.symmetry import DEFAULT_TOLERANCE, Symmetry, within
 
 SMALLEST_DEVIATION = 0.005     # Å; smaller deviations count as this much in the ratio that suggests a rung
 SAME_DEVIATION = 0.0005        # Å; of two rungs whose deviations agree so far, the higher is shown

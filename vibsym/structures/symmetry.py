@@ -13,6 +13,9 @@ import numpy as np
 
 from vibsym.structures.structure import Structure
 
+DEFAULT_TOLERANCE = 0.02       # Å
+LOCAL_TOLERANCE = 0.3          # Å; for the group of oscillators, wide enough for the angles of real complexes
+
 
 def within(deviation: float) -> str:
     """Return a deviation (Å) as it is printed everywhere: rounded up to 0.001 Å, so that "within" stays true.
