@@ -10,10 +10,10 @@ import re
 from functools import cached_property
 
 from vibsym.errors import VibsymError
-from vibsym.groups.pointgroup import OperationClass, PointGroup, Species, point_group
+from vibsym.groups.species import OperationClass, Species
 from vibsym.groups.symbols import plain_label
 
-_IMAGE = {"C∞v": "C4v", "D∞h": "D4h", "Kh": "Oh"}
+IMAGES = {"C∞v": "C4v", "D∞h": "D4h", "Kh": "Oh"}
 _IMAGE_LABELS = {
     "C∞v": {"A1": "Σ+", "A2": "Σ-", "E": "Π"},
     "D∞h": {"A1g": "Σg+", "A2g": "Σg-", "Eg": "Πg", "A2u": "Σu+", "A1u": "Σu-", "Eu": "Πu"},
@@ -36,22 +36,27 @@ _SPHERICAL_FUNCTIONS = {
 
 
 class InfiniteGroup:
-    """C∞v, D∞h or Kh: the attributes of a `PointGroup`, with `order` None and a finite `image` for displacements."""
+    """C∞v, D∞h or Kh: the attributes of a `PointGroup`, with `order` None and a finite `image` for displacements.
+
+    `point_group(symbol)` makes one, with the `PointGroup` of `IMAGES[symbol]` for its image.
+    """
 
     infinite = True
     order = None
 
-    def __init__(self, symbol: str):
+    def __init__(self, symbol: str, image):
         self.symbol = symbol
-        self.image: PointGroup = point_group(_IMAGE[symbol])
+        self.image = image
         self.image_labels = dict(_IMAGE_LABELS[symbol])
 
     @property
     def chiral(self) -> bool:
+        """No improper operation: true of none of the three."""
         return False
 
     @property
     def centrosymmetric(self) -> bool:
+        """The inversion is among the operations."""
         return self.symbol != "C∞v"
 
     @property
@@ -68,6 +73,7 @@ class InfiniteGroup:
 
     @property
     def labels(self) -> tuple[str, ...]:
+        """Labels of `species`."""
         if self.symbol == "C∞v":
             return "Σ+", "Σ-", "Π", "Δ", "Φ"
         if self.symbol == "D∞h":
@@ -95,6 +101,7 @@ class InfiniteGroup:
         return name + parity + (sign if name == "Σ" else "")
 
     def species_named(self, label: str) -> Species:
+        """Return the species with a label of any height (`Δ`, `Hg`, `8g`)."""
         quantum, parity, sign = self.quantum(label)
         spherical = self.symbol == "Kh"
         table = _SPHERICAL_FUNCTIONS if spherical else _AXIAL_FUNCTIONS

@@ -1,13 +1,11 @@
-"""Point groups in their standard orientation: operations, classes, species, activity; and the way from symbol to group.
+"""Point groups in their standard orientation: operations, classes, species; and the way from symbol to group.
 
 A finite group is a `PointGroup`; C∞v, D∞h and Kh are `InfiniteGroup` (vibsym/groups/infinite.py), with the same
-attributes where they make sense.  Species that are complex-conjugate pairs (E of C3, S4, T, ...) are one real
-two-dimensional species: the sum over the group of its squared characters is 2h, and it counts as one band.
+attributes where they make sense.  Species and classes themselves stand in vibsym/groups/species.py.
 Source of labels and order: E. B. Wilson, J. C. Decius, P. C. Cross, Molecular Vibrations (1955), appendix X;
 R. S. Mulliken, J. Chem. Phys. 23, 1997 (1955).
 """
 
-from dataclasses import dataclass
 from functools import cache, cached_property
 
 import numpy as np
@@ -15,58 +13,8 @@ import numpy as np
 from vibsym.errors import VibsymError
 from vibsym.groups.axial import GroupPlan, SpeciesPlan, axial_group
 from vibsym.groups.functions import functions_of_species
+from vibsym.groups.species import OperationClass, Species
 from vibsym.groups.symbols import POLYHEDRAL, group_symbol, plain_label
-
-
-@dataclass(frozen=True)
-class OperationClass:
-    """A class of conjugate operations: `2C3` with the places of its members among the operations."""
-
-    symbol: str
-    size: int
-    members: tuple[int, ...]
-
-
-@dataclass(frozen=True)
-class Species:
-    """An irreducible representation with its characters (one a class) and the functions that belong to it."""
-
-    label: str
-    degeneracy: int
-    characters: tuple[float, ...]
-    pair: bool
-    linear: tuple[str, ...]
-    rotations: tuple[str, ...]
-    quadratic: tuple[str, ...]
-    cubic: tuple[str, ...]
-    totally_symmetric: bool
-
-    @property
-    def norm(self) -> int:
-        """Sum of squared characters over the order: 2 for a conjugate pair, else 1."""
-        return 2 if self.pair else 1
-
-    @property
-    def infrared(self) -> bool:
-        return bool(self.linear)
-
-    @property
-    def raman(self) -> bool:
-        return bool(self.quadratic)
-
-    @property
-    def hyper_raman(self) -> bool:
-        return bool(self.cubic)
-
-    @property
-    def polarised(self) -> bool:
-        """Raman lines can be polarised only where the species is totally symmetric."""
-        return self.totally_symmetric and self.raman
-
-    @property
-    def silent(self) -> bool:
-        """Neither infrared nor Raman active."""
-        return not (self.infrared or self.raman)
 
 
 class PointGroup:
@@ -103,6 +51,7 @@ class PointGroup:
 
     @property
     def centrosymmetric(self) -> bool:
+        """The inversion is among the operations."""
         return "i" in self.operation_symbols
 
     @cached_property
@@ -113,6 +62,7 @@ class PointGroup:
 
     @cached_property
     def species(self) -> tuple[Species, ...]:
+        """The species in table order, the totally symmetric one first."""
         rows = self.character_rows
         plans = list(self._plans.values())
         scales = [plan.matrices.shape[1] / (2 if plan.pair else 1) for plan in plans]
@@ -129,6 +79,7 @@ class PointGroup:
 
     @property
     def labels(self) -> tuple[str, ...]:
+        """Labels of the species in table order."""
         return tuple(self._plans)
 
     def species_named(self, label: str) -> Species:
@@ -193,9 +144,9 @@ def point_group(symbol: str):
 @cache
 def _group(symbol: str):
     if symbol in ("C∞v", "D∞h", "Kh"):
-        from vibsym.groups.infinite import InfiniteGroup
+        from vibsym.groups.infinite import IMAGES, InfiniteGroup
 
-        return InfiniteGroup(symbol)
+        return InfiniteGroup(symbol, _group(IMAGES[symbol]))
     if symbol in POLYHEDRAL:
         from vibsym.groups.polyhedral import polyhedral_group
 

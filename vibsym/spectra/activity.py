@@ -8,7 +8,8 @@ never promises.
 
 from typing import TYPE_CHECKING, NamedTuple
 
-from vibsym.groups.pointgroup import PointGroup, Species
+from vibsym.groups.pointgroup import PointGroup
+from vibsym.groups.species import Species
 
 if TYPE_CHECKING:
     from vibsym.groups.infinite import InfiniteGroup

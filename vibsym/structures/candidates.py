@@ -7,36 +7,16 @@ x_i - x_pi(i)| of at most 2t, so a goes to a like atom whose radius differs by a
 1976). Whether operations make a group is for `subsets.py` to tell.
 """
 
-from dataclasses import dataclass
-
 import numpy as np
 
 from vibsym.groups.distinct import first_of_each
-from vibsym.structures.matching import assign, bijective, nearest, residuals
+from vibsym.structures.matching import bijective, nearest, one_to_one, residuals
+from vibsym.structures.operations import SLACK, Operations, codes_of
 from vibsym.structures.placement import correlation, fitted_maps
 
-SLACK = 1.5                    # least squares does not minimise the largest residual, so it may exceed 2t somewhat
 ASSIGN_CANDIDATES = 200        # at most so many candidates are matched one to one when the nearest atoms fail
 ASSIGN_ENTRIES = 3_000_000
 MANY_ATOMS = 100               # above, most operations are made as products of a few
-
-
-@dataclass(frozen=True)
-class Operations:
-    """Candidates (C): permutations (C, N), determinants (C,), fitted matrices (C, 3, 3), largest residuals (C,), the
-    pair of atoms.
-    """
-
-    permutations: np.ndarray
-    signs: np.ndarray
-    matrices: np.ndarray
-    residuals: np.ndarray
-    pair: tuple
-
-    def chosen(self, indices):
-        """Return some of the operations."""
-        return Operations(self.permutations[indices], self.signs[indices], self.matrices[indices],
-                          self.residuals[indices], self.pair)
 
 
 def shells(radii, kinds, reach):
@@ -141,11 +121,11 @@ def find_operations(points, kinds, tolerance, apart):
         keep = (distances <= limits).all(axis=1) & bijective(targets)
         maps, targets = maps[keep], targets[keep]
     else:
-        maps, targets = _loosely_matched(points, kinds, maps, targets, distances, limits, tolerance)
+        maps, targets = _loosely_matched(points, kinds, maps, targets, distances, limits)
     return _fitted(points, kinds, maps, targets, (a, b), tolerance, clear)
 
 
-def _loosely_matched(points, kinds, maps, targets, distances, limits, tolerance):
+def _loosely_matched(points, kinds, maps, targets, distances, limits):
     """Match one to one where the tolerance is comparable with the distances between atoms."""
     keep = (distances <= limits).all(axis=1)
     maps, targets, distances = maps[keep], targets[keep], distances[keep]
@@ -158,7 +138,7 @@ def _loosely_matched(points, kinds, maps, targets, distances, limits, tolerance)
     if len(broken) > allowed:
         broken = broken[np.argsort((distances[broken] ** 2).sum(axis=1))[:allowed]]
     if len(broken):
-        targets[broken] = assign(points, kinds, maps[broken])
+        targets[broken] = one_to_one(points, kinds, maps[broken])
         whole[broken] = True
     return maps[whole], targets[whole]
 
@@ -180,10 +160,3 @@ def _fitted(points, kinds, maps, targets, pair, tolerance, clear):
     first = first_of_each(codes)
     keep = keep[np.sort(first)]
     return Operations(targets[keep], signs[keep], matrices[keep], left[keep], pair)
-
-
-def codes_of(permutations, signs, pair):
-    """Return (C,) whole numbers that tell operations apart: where the pair goes, and the determinant."""
-    a, b = pair
-    atoms = permutations.shape[1]
-    return (permutations[:, a] * atoms + permutations[:, b]) * 2 + (signs > 0)

@@ -15,9 +15,10 @@ from vibsym.errors import VibsymError
 from vibsym.groups.identify import identified, schoenflies
 from vibsym.groups.pointgroup import point_group
 from vibsym.structures.axis_choice import chosen_setting, free_frame, settled
-from vibsym.structures.candidates import Operations, find_operations
+from vibsym.structures.candidates import find_operations
 from vibsym.structures.distances import closest_pair
 from vibsym.structures.linear import LinearPlacement, image_permutations, line_frame, linear_placements
+from vibsym.structures.operations import Operations
 from vibsym.structures.placement import Placement, place
 from vibsym.structures.structure import structure_of
 from vibsym.structures.subsets import closed_subsets, consistent, product_table

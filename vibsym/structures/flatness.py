@@ -7,6 +7,7 @@ with a fixed lowest valence are asked; metals and H are not.
 from collections.abc import Sequence
 
 from vibsym.errors import VibsymError
+from vibsym.structures.connections import Connections
 from vibsym.structures.labels import read_label
 
 # lowest valence of the neutral atom; an ion has that of its isoelectronic neighbour (N+ as C, O- as F)
@@ -15,8 +16,8 @@ VALENCES = {"B": 3, "C": 4, "N": 3, "O": 2, "F": 1, "Si": 4, "P": 3, "S": 2, "Cl
 AROMATIC = 4        # bond type; types above it (any, coordination) count as single
 
 
-def refuse_drawing(table, marked_flat: bool, name: str) -> None:
-    """Raise VibsymError if `table` (a `molfile.Connections`) is a drawing without depth."""
+def refuse_drawing(table: Connections, marked_flat: bool, name: str) -> None:
+    """Raise VibsymError if `table` is a drawing without depth."""
     if any(position[2] for position in table.positions):
         return
     remedy = "give three-dimensional coordinates with all hydrogens"

@@ -7,8 +7,8 @@ generator (by the tree of `matching.py`), memory as N.
 
 import numpy as np
 
-from vibsym.structures.candidates import SLACK, Operations, codes_of
 from vibsym.structures.matching import bijective, nearest
+from vibsym.structures.operations import SLACK, Operations, codes_of
 from vibsym.structures.placement import correlation, fitted_maps
 
 LEEWAY = 0.5                   # Å; an image is sought among like atoms whose radius differs by no more

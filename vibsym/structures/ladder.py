@@ -16,7 +16,7 @@ import numpy as np
 from vibsym.errors import VibsymError
 from vibsym.groups.distinct import first_of_each
 from vibsym.groups.pointgroup import point_group
-from vibsym.structures.candidates import Operations, codes_of, find_operations
+from vibsym.structures.candidates import find_operations
 from vibsym.structures.finder import (
     Centred,
     centre,
@@ -29,6 +29,7 @@ from vibsym.structures.finder import (
     symmetry_of,
 )
 from vibsym.structures.linear import LinearPlacement, linear_placements
+from vibsym.structures.operations import Operations, codes_of
 from vibsym.structures.placement import Placement
 from vibsym.structures.structure import structure_of
 from vibsym.structures.subsets import closed_subsets, product_table

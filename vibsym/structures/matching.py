@@ -58,7 +58,7 @@ def bijective(targets):
     return hit.all(axis=1)
 
 
-def assign(points, kinds, matrices, start=None):
+def one_to_one(points, kinds, matrices):
     """Return (C, N) one-to-one matchings of images to like atoms, shortest distances first (greedy).
 
     Used where the nearest atoms do not make a bijection: with a loose tolerance an atom can be nearest to two images.

@@ -8,9 +8,9 @@ symbols D and T, or from the old mass-difference field.  V3000 is read in `molfi
 
 import re
 from collections.abc import Sequence
-from typing import NamedTuple
 
 from vibsym.errors import VibsymError
+from vibsym.structures.connections import Connections, atom_label, checked_bond
 from vibsym.structures.elements import average_mass
 from vibsym.structures.flatness import refuse_drawing
 from vibsym.structures.labels import is_dummy, read_label, write_label
@@ -19,17 +19,6 @@ from vibsym.structures.structure import Structure
 
 OLD_CHARGES = {1: 3, 2: 2, 3: 1, 5: -1, 6: -2, 7: -3}       # charge field of an atom line; 4 is a doublet radical
 HYDROGEN_BOND = 10                                          # a bond type that holds no oscillator
-
-
-class Connections(NamedTuple):
-    """What a connection table holds, of either version; lists grow while it is read."""
-
-    labels: list[str]
-    positions: list[list[float]]
-    bonds: list[tuple[int, int, int]]       # atoms from 0, type (4: aromatic)
-    isotopes: dict[int, int]
-    charges: dict[int, int]
-    radicals: dict[int, int]
 
 
 def counts_line(lines: Sequence[str], start: int = 0) -> int | None:
@@ -84,27 +73,6 @@ def _structure(table: Connections, title: str, name: str, first_line: int | None
     bonds = sorted(set(bonds)) if bonds else None
     return Structure.from_atoms(labels, table.positions, None, name, comment=title, bonds=bonds,
                                 charge=sum(table.charges.values()), first_line=first_line)
-
-
-def atom_label(text: str, where: str) -> str:
-    """Return the label of an atom if it can be read; `where` (file and line) stands in the message if not."""
-    try:
-        read_label(text)
-    except VibsymError as error:
-        raise VibsymError(f"{where}: {error}") from None
-    if text.isdigit():
-        raise VibsymError(f"{where}: '{text[:20]}' is not an element symbol")
-    return text
-
-
-def checked_bond(first: int, second: int, kind: int, atoms: int, where: str) -> tuple[int, int, int]:
-    """Return a bond with atoms from 0, or raise where its atoms do not exist."""
-    for number in (first, second):
-        if not 1 <= number <= atoms:
-            raise VibsymError(f"{where}: the bond names atom {number}, but there are {atoms} atoms")
-    if first == second:
-        raise VibsymError(f"{where}: atom {first} is bonded to itself; mend the bond block")
-    return first - 1, second - 1, kind
 
 
 def _read_v2000(lines: Sequence[str], counts: int, name: str) -> Connections:

@@ -7,7 +7,7 @@ import re
 from collections.abc import Iterator, Sequence
 
 from vibsym.errors import VibsymError
-from vibsym.structures.molfile import Connections, atom_label, checked_bond
+from vibsym.structures.connections import Connections, atom_label, checked_bond
 from vibsym.structures.numbers import read_coordinate
 
 PREFIX = "M  V30 "

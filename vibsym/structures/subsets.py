@@ -10,7 +10,7 @@ from heapq import heappop, heappush
 
 import numpy as np
 
-from vibsym.structures.candidates import Operations, codes_of
+from vibsym.structures.operations import Operations, codes_of
 
 MOST_WORK = 60_000             # subsets times operations; the largest are extended first, so large groups come first
 
