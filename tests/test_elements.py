@@ -84,7 +84,7 @@ def test_unlabelled_means_the_most_abundant_isotope(name):
     ("d", ("H", 2)), ("T", ("H", 3)), ("2H", ("H", 2)), ("13C", ("C", 13)), ("13c", ("C", 13)),
     ("12C", ("C", None)),
     ("1H", ("H", None)), ("37Cl", ("Cl", 37)), ("35Cl", ("Cl", None)),
-    ("X", ("X", None)), ("XL", ("XL", None)), ("Xx", ("Xx", None)),
+    ("X", ("X", None)), ("XL", ("XL", None)), ("XX", ("XX", None)),
     ("X1", ("X1", None)), ("Xe", ("Xe", None)), ("XE", ("Xe", None)), ("xe", ("Xe", None)), ("118", ("Og", None)),
 ])
 def test_label_is_read(text, label):
@@ -93,7 +93,7 @@ def test_label_is_read(text, label):
 
 
 @pytest.mark.parametrize("text, told", [
-    ("Q", "not an element"), ("", "not an element"), ("C13", "write 13C or C"),
+    ("Q", "not an element"), ("Xx", "'Xx' is not an element symbol"), ("Xyz", "not an element"), ("", "not an element"), ("C13", "write 13C or C"),
     ("99C", "no isotope 99C"),
     ("0", "atomic number 0"), ("119", "atomic number 119"), ("Cc", "not an element"), ("É", "not an element"),
     ("²H", "not an element"), ("2D", "not an element"), ("C\n", "not an element"), ("9" * 5000, "atomic number"),

@@ -1,7 +1,7 @@
 """How an atom may be written: `C`, `cl`, `CL`, `D`, `T`, `13C`, an atomic number, or a dummy atom `X`, `XL`.
 
-A symbol that begins with X and is not xenon names a dummy atom: a point with a kind (the symbol, as written) and no
-mass.  A number after the symbol (`C13`) could be a mass or a running number and is refused with the two ways out.
+X, alone or before a capital or a digit (xenon excepted), names a dummy atom: a point with a kind (the symbol, as
+written) and no mass; `Xx` is a slip of the pen.  A number after the symbol (`C13`) could be a mass or a running number and is refused with the two ways out.
 """
 
 from functools import cache
@@ -40,12 +40,13 @@ def read_label(text: str) -> tuple[str, int | None]:
 
 
 def is_dummy(text: str) -> bool:
-    """Tell whether a symbol names a dummy atom: it begins with X and is not xenon.
+    """Tell whether a symbol names a dummy atom: X alone, or X before a capital or a digit, and not xenon.
 
-    >>> is_dummy("XL"), is_dummy("Xe")
-    (True, False)
+    >>> is_dummy("X"), is_dummy("XL"), is_dummy("Xe"), is_dummy("Xx")
+    (True, True, False, False)
     """
-    return text[:1] in ("X", "x") and text.lower() != "xe" and text.isascii() and text.isalnum()
+    return (text[:1] in ("X", "x") and not text[1:2].islower() and text.upper() != "XE"
+            and text.isascii() and text.isalnum())
 
 
 def write_label(symbol: str, mass_number: int | None) -> str:
@@ -68,4 +69,4 @@ def _refuse(text: str):
     if match and (match[1].capitalize() in elements() or match[1].upper() in HYDROGEN_ISOTOPES):
         name = match[1].capitalize()
         raise VibsymError(f"{text!r} could be an isotope or a numbered atom; write {match[2]}{name} or {name}")
-    raise VibsymError(f"{text[:20]!r} is not an element symbol (a dummy atom is X or begins with X)")
+    raise VibsymError(f"{text[:20]!r} is not an element symbol (a dummy atom is X, or a name such as XL)")

@@ -92,5 +92,6 @@ def dummy_names(texts: Sequence[str]) -> dict[str, str]:
 
 def _dummy(text: str) -> str:
     """X and the letters and digits of the name; never Xe, which is xenon."""
-    name = "X" + "".join(c for c in text.replace("'", "p") if c.isascii() and c.isalnum())
+    name = "".join(c for c in text.replace("'", "p") if c.isascii() and c.isalnum())
+    name = "X" + name[:1].upper() + name[1:]
     return name + "0" if name.lower() == "xe" else name
