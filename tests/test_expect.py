@@ -196,7 +196,7 @@ def test_chirality_pairs_isotopes_and_rotors_are_said_where_they_hold():
     assert "35Cl" in notes_of("CH3Cl") and "the symmetry stays" in notes_of("CH3Cl")
     assert "lower symmetry" in notes_of("CCl4") and "mixture" not in notes_of("CH4")
     assert "methyl" in notes_of("CH3OH") and "turns" not in notes_of("CH3CN").lower()
-    assert "5-membered ring" in notes_of("Fe(C5H5)2 stag")
+    assert "5-membered ring (2 on Fe1)" in notes_of("Fe(C5H5)2 stag")
 
 
 def _boric_acid():

@@ -85,9 +85,14 @@ def _rotors(structure: Structure) -> tuple[str, ...]:
         counts.setdefault(rotor.name, []).append(f"{structure.symbols[rotor.atom]}{rotor.atom + 1}")
     if not counts:
         return ()
-    parts = ", ".join(f"{name} ({', '.join(atoms[:6])}{', ...' if len(atoms) > 6 else ''})"
-                      for name, atoms in counts.items())
+    parts = ", ".join(f"{name} ({_holders(atoms)})" for name, atoms in counts.items())
     return (f"Turns easily: {parts}. If it turns freely, the group of the rigid shape may mislead.",)
+
+
+def _holders(atoms: list[str]) -> str:
+    """Return the atoms that name or hold what turns, one that holds several once: `2 on Fe1`."""
+    told = [atom if atoms.count(atom) == 1 else f"{atoms.count(atom)} on {atom}" for atom in dict.fromkeys(atoms)]
+    return ", ".join(told[:6]) + (", ..." if len(told) > 6 else "")
 
 
 def _dummies(structure: Structure) -> tuple[str, ...]:
