@@ -11,8 +11,9 @@ from molecules import TETRAHEDRON, atoms, ring
 from test_published_complexes import ROWS, observed
 
 from vibsym.evidence.bandlist import parse_bands, within
-from vibsym.evidence.proposals import Proposal, screen
+from vibsym.evidence.proposals import screen
 from vibsym.evidence.screening import screen_predictions
+from vibsym.evidence.whole_molecule import Proposal
 from vibsym.spectra.isomer_bands import list_isomers
 from vibsym.structures.structure import Structure
 

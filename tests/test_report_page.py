@@ -12,7 +12,7 @@ from click.testing import CliRunner
 import vibsym
 from vibsym.cli.main import cli
 from vibsym.evidence.bandlist import parse_bands, read_bands
-from vibsym.evidence.proposals import Proposal
+from vibsym.evidence.whole_molecule import Proposal
 from vibsym.report.collection import collect
 from vibsym.report.html.page import report_page
 from vibsym.structures.structure import Structure

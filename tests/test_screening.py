@@ -9,8 +9,9 @@ import pytest
 
 from vibsym.errors import VibsymError
 from vibsym.evidence.bandlist import parse_bands, within
-from vibsym.evidence.proposals import Proposal, screen
+from vibsym.evidence.proposals import screen
 from vibsym.evidence.screening import ScreenOptions, screen_predictions
+from vibsym.evidence.whole_molecule import Proposal
 from vibsym.groups.pointgroup import point_group
 from vibsym.report import render
 from vibsym.report import screening as view

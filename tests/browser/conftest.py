@@ -10,7 +10,7 @@ import pytest
 
 import vibsym
 from vibsym.evidence.bandlist import parse_bands, read_bands
-from vibsym.evidence.proposals import Proposal
+from vibsym.evidence.whole_molecule import Proposal
 from vibsym.report.collection import collect
 from vibsym.report.html.page import report_page
 from vibsym.structures.structure import Structure

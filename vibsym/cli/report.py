@@ -35,8 +35,8 @@ def command(structures, bands, infrared, raman, between, window, allow, light, t
 
     from vibsym.errors import VibsymError
     from vibsym.evidence.bandlist import read_bands
-    from vibsym.evidence.proposals import Proposal
     from vibsym.evidence.screening import ScreenOptions
+    from vibsym.evidence.whole_molecule import Proposal
     from vibsym.files import write_text_atomically
     from vibsym.report.collection import collect
     from vibsym.report.html.page import report_page

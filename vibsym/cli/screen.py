@@ -31,8 +31,9 @@ def command(structures, bands, infrared, raman, between, window, allow, light, m
       vibsym screen try-it/flask-cis.xyz try-it/flask-trans.xyz --bands try-it/flask-bands.csv --oscillators C-O --local
     """
     from vibsym.evidence.bandlist import read_bands
-    from vibsym.evidence.proposals import Proposal, screen
+    from vibsym.evidence.proposals import screen
     from vibsym.evidence.screening import ScreenOptions
+    from vibsym.evidence.whole_molecule import Proposal
     from vibsym.report import screening as view
 
     observed = read_bands(bands, infrared, raman, between=between, light=light)

@@ -15,6 +15,7 @@ import re
 import numpy as np
 
 from vibsym.errors import VibsymError
+from vibsym.evidence.spectrum_axes import is_per_cent, ordinate_named, unit_named
 
 _SQUEEZED = {c: str(k) for k, c in enumerate("@ABCDEFGHI")} | {c: f"-{k}" for k, c in enumerate("abcdefghi", 1)}
 _DIFFERENCE = {c: str(k) for k, c in enumerate("%JKLMNOPQR")} | {c: f"-{k}" for k, c in enumerate("jklmnopqr", 1)}
@@ -137,8 +138,6 @@ def _records(lines: list[str], source: str) -> dict:
 
 
 def _spectrum_of(block: dict, source: str):
-    from vibsym.evidence.spectrum import ordinate_named, unit_named
-
     head, table, notes = block["head"], block["table"], []
     if table["form"] == _STEPPED:
         x, y = _stepped(head, table, source, notes)
@@ -158,7 +157,7 @@ def _spectrum_of(block: dict, source: str):
     unit = unit_named(units)
     if units and unit is None:
         raise VibsymError(f"{source}: ##XUNITS={units} is neither cm-1 nor nm nor µm")
-    return x, y, unit, named, "percent" in ordinate.lower() or "%" in ordinate, str(head.get("title", "")), notes
+    return x, y, unit, named, is_per_cent(ordinate), str(head.get("title", "")), notes
 
 
 def _stepped(head: dict, table: dict, source: str, notes: list[str]):

@@ -5,31 +5,14 @@ ladder, where a weak forbidden band may leak because the true group is lower.
 """
 
 from collections.abc import Sequence
-from dataclasses import dataclass
-
-import numpy as np
 
 from vibsym.errors import VibsymError
 from vibsym.evidence.bandlist import BandList
 from vibsym.evidence.screening import Screening, ScreenOptions, screen_predictions
+from vibsym.evidence.whole_molecule import Proposal, whole_molecule
 from vibsym.spectra.expectation import expect
-from vibsym.spectra.prediction import Prediction, bands_of_gamma
+from vibsym.spectra.prediction import Prediction
 from vibsym.structures.structure import Structure, structure_of
-from vibsym.structures.symmetry import DEFAULT_TOLERANCE, LOCAL_TOLERANCE, Symmetry, within
-
-
-@dataclass(frozen=True)
-class Proposal:
-    """How structures are turned into predictions."""
-
-    tolerance: float = DEFAULT_TOLERANCE  # Å
-    as_group: str | None = None
-    axes: str | None = None               # the other choice of axes, where labels depend on it
-    every_rung: bool = False
-    oscillators: str | None = None        # "C-O", "Mo-C-O" or atom pairs
-    local: bool = False
-    local_tolerance: float = LOCAL_TOLERANCE  # Å
-    distinguish: bool = False             # donors are alike only if their ligands have one formula
 
 
 def screen(structures: Sequence, observed: BandList, proposal: Proposal | None = None,
@@ -60,44 +43,6 @@ def predictions_of(structure: Structure, proposal: Proposal) -> list[Prediction]
         return [whole_molecule(structure, each, rungs[0] if number else None) for number, each in enumerate(rungs)]
     found = expect(structure, proposal.tolerance, as_group=proposal.as_group, axes=proposal.axes)
     return [whole_molecule(structure, found.symmetry, found.found)]
-
-
-def whole_molecule(structure: Structure, symmetry: Symmetry, true: Symmetry | None = None) -> Prediction:
-    """Return all fundamentals of a molecule; `true` is its symmetry if `symmetry` is a higher rung."""
-    gamma = expect(symmetry).gamma_vib
-    if true is not None and true.group.symbol == symmetry.group.symbol:
-        true = None
-    rung = f" as {symmetry.group.symbol} ({within(symmetry.deviation)} Å)" if true is not None else ""
-    return Prediction(name_of(structure) + rung, structure.to_dict(), symmetry.to_dict(),
-                      bands_within(gamma, symmetry, true), true_group=true.group.symbol if true is not None else "")
-
-
-def bands_within(gamma: dict[str, int], symmetry: Symmetry, true: Symmetry | None, point_like: bool = False):
-    """Return the bands of a representation, with what the lower true group and ligands taken as points let through."""
-    if true is None:
-        return bands_of_gamma(gamma, symmetry.group, point_like=point_like)
-    return bands_of_gamma(gamma, symmetry.group, true.group, embedding(symmetry, true), point_like)
-
-
-def embedding(higher: Symmetry, lower: Symmetry) -> np.ndarray:
-    """Return (h,) for each operation of the lower group the one of the higher group that it has become.
-
-    Both are compared as they stand in space: the nearest one of the same determinant, since the axes of an approached
-    group lie a little askew.
-    """
-    def in_space(symmetry: Symmetry) -> np.ndarray:
-        return np.einsum("ba,rbc,cd->rad", symmetry.frame, symmetry.group.image.matrices, symmetry.frame)
-    above, below = in_space(higher), in_space(lower)
-    distance = np.linalg.norm(above[None] - below[:, None], axis=(2, 3))
-    distance += 10 * (np.linalg.det(above)[None] * np.linalg.det(below)[:, None] < 0)
-    return distance.argmin(axis=1)
-
-
-def name_of(structure: Structure) -> str:
-    """Return the file's name without folder and ending, else the formula."""
-    from pathlib import PurePath
-
-    return PurePath(structure.source).stem or structure.formula
 
 
 def _named_apart(predictions: list[Prediction]) -> list[Prediction]:

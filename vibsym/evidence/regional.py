@@ -7,7 +7,7 @@ surroundings, if a polyatomic ligand was taken for a point.
 import numpy as np
 
 from vibsym.errors import VibsymError
-from vibsym.evidence.proposals import Proposal, bands_within, name_of
+from vibsym.evidence.whole_molecule import Proposal, bands_within, name_of
 from vibsym.spectra.bond_ranges import range_of
 from vibsym.spectra.oscillators import LocalSymmetry, OscillatorBands, Oscillators, find_oscillators, oscillators
 from vibsym.spectra.prediction import SURROUNDINGS, TRUE_GROUP, Prediction, SpeciesBands
@@ -16,7 +16,7 @@ from vibsym.structures.finder import find_symmetry
 from vibsym.structures.ladder import as_group, ladder
 from vibsym.structures.periodic import is_metal
 from vibsym.structures.structure import Structure
-from vibsym.structures.symmetry import Symmetry, within
+from vibsym.structures.symmetry import Symmetry
 
 
 def regional_predictions(structure: Structure, proposal: Proposal) -> list[Prediction]:
@@ -48,9 +48,8 @@ def _of_molecule(structure: Structure, symmetry: Symmetry, true: Symmetry | None
     """The oscillators in the group of the molecule; `true` is its own group if `symmetry` is a higher rung."""
     found = _stretches(structure, symmetry, proposal).bands
     span = _span(structure, symmetry, proposal)
-    rung = f" as {symmetry.group.symbol} ({within(symmetry.deviation)} Å)" if true is not None else ""
     points = ", ".join(_named_points(structure))
-    return Prediction(name_of(structure) + rung, structure.to_dict(), symmetry.to_dict(),
+    return Prediction(name_of(structure, symmetry, true), structure.to_dict(), symmetry.to_dict(),
                       bands_within(found.gamma, symmetry, true, bool(points)), region=found.name,
                       true_group=true.group.symbol if true is not None else "", surroundings=points, span=span,
                       notes=_blunt(symmetry, found))

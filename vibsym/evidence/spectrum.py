@@ -16,9 +16,8 @@ from dataclasses import dataclass
 import numpy as np
 
 from vibsym.errors import VibsymError
+from vibsym.evidence.spectrum_axes import ORDINATES, UNITS, is_per_cent, ordinate_named, unit_named
 
-UNITS = ("cm-1", "nm", "µm")
-ORDINATES = ("absorbance", "transmittance", "intensity")
 FEWEST = 20                   # points; less is a list, not a curve
 FEWEST_UNNAMED = 40           # points without a head line; a band list of numbers alone could be shorter
 HIGHEST, LOWEST_TOP = 15000.0, 50.0   # cm-1; a spectrum whose end lies outside is no spectrum in cm-1
@@ -102,7 +101,7 @@ def is_spectrum(text: str) -> bool:
     if is_jcamp(text):
         return True
     head, rows = _rows(text, FEWEST_UNNAMED)
-    if head is not None and len(head) >= 2 and _ordinate_named(" ".join(head)) is not None:
+    if head is not None and len(head) >= 2 and ordinate_named(" ".join(head)) is not None:
         return True
     listed = head is not None and any(cell.lower() in _LIST_COLUMNS for cell in head[1:])
     return len(rows) >= FEWEST_UNNAMED and not listed
@@ -165,35 +164,7 @@ def _two_columns(text: str, source: str):
     x = np.array([float(cells[0]) for _, cells in rows])
     y = np.array([float(cells[1]) if cells[1] != "?" else np.nan for _, cells in rows])
     first, second = ((head[0], " ".join(head[1:2])) if head else ("", ""))
-    return x, y, unit_named(first), _ordinate_named(second), "%" in second or "percent" in second.lower(), notes
-
-
-def unit_named(text: str) -> str | None:
-    """Return the unit that a head line or a record names; None: none.
-
-    >>> unit_named("Wavenumber (cm-1)"), unit_named("wavelength / nm"), unit_named("MICROMETERS"), unit_named("x")
-    ('cm-1', 'nm', 'µm', None)
-    """
-    word = text.lower().replace("−", "-").replace("⁻¹", "-1").replace("μ", "µ").replace("^", "").replace("{", "")
-    if re.search(r"cm ?-1|1/cm|wave ?number|raman ?shift", word):
-        return "cm-1"
-    if re.search(r"nanomet|\bnm\b|\(nm", word):
-        return "nm"
-    if re.search(r"micromet|micron|µm|\bum\b", word):
-        return "µm"
-    return None
-
-
-def _ordinate_named(text: str) -> str | None:
-    word = text.lower()
-    if re.search(r"transm|%\s*t\b", word):
-        return "transmittance"
-    if re.search(r"absorb|\babs\b|extinction", word):
-        return "absorbance"
-    return "intensity" if re.search(r"intensit|counts|arb|raman (?!shift)|scatter", word) else None
-
-
-ordinate_named = _ordinate_named
+    return x, y, unit_named(first), ordinate_named(second), is_per_cent(second), notes
 
 
 def _chosen(name: str, given: str | None, own: str | None, known: tuple[str, ...], source: str) -> str | None:

@@ -9,8 +9,9 @@ from dataclasses import dataclass, replace
 
 from vibsym.errors import VibsymError
 from vibsym.evidence.bandlist import BandList
-from vibsym.evidence.proposals import Proposal, screen
+from vibsym.evidence.proposals import screen
 from vibsym.evidence.screening import Screening, ScreenOptions
+from vibsym.evidence.whole_molecule import Proposal
 from vibsym.report.scene import Scene, scene_of
 from vibsym.spectra.expectation import Expectation, expect
 
