@@ -3,66 +3,24 @@
 import click
 
 from vibsym.cli import options
+from vibsym.cli.bands import lines_options
 from vibsym.cli.pictures import picture_options, save_picture, strip_option
 from vibsym.cli.reading import finish
 
 
 @click.command("assign")
 @options.structure_argument
-@click.option(
-    "--bands",
-    metavar="FILE",
-    help="Observed lines: CSV with wavenumber, spectrum, strength, polarisation, uncertainty, together, note.",
-)
-@click.option(
-    "--ir", "infrared", metavar="FILE", help="Infrared lines without a spectrum column, or a measured spectrum."
-)
-@click.option("--raman", metavar="FILE", help="Raman lines without a spectrum column, or a measured spectrum.")
-@click.option("--between", type=float, nargs=2, metavar="LOW HIGH", help="Use only the lines of this region.")
-@click.option(
-    "--window",
-    type=float,
-    default=5.0,
-    show_default=True,
-    metavar="CM-1",
-    help="Largest difference of an infrared and a Raman line that coincide.",
-)
-@click.option(
-    "--pin",
-    "pins",
-    multiple=True,
-    metavar="ν4=1306",
-    help="Fix a line at a fundamental or a species (T2=1306); the rest adapts. Repeatable.",
-)
+@lines_options
+@click.option("--pin", "pins", multiple=True, metavar="ν4=1306",
+              help="Fix a line at a fundamental or a species (T2=1306); the rest adapts. Repeatable.")
 @click.option("--force-constants", "constants", metavar="FILE", help="TOML file of force constants for the estimates.")
 @strip_option
 @picture_options("sticks")
 @options.light_option
 @options.output_options
-@options.tolerance_option
-@options.as_option
-@options.axes_option
-@options.reading_options
-def command(
-    structure,
-    bands,
-    infrared,
-    raman,
-    between,
-    window,
-    pins,
-    constants,
-    strip,
-    picture,
-    show,
-    light,
-    form,
-    output,
-    tolerance,
-    as_group,
-    axes,
-    **reading,
-):
+@options.symmetry_options
+def command(structure, bands, infrared, raman, between, window, pins, constants, strip, picture, show, light, form,
+            output, tolerance, as_group, axes, **reading):
     """Tell which observed line is which fundamental of STRUCTURE, and how firm each is.
 
     \b

@@ -23,10 +23,7 @@ from vibsym.cli.assigned import molecule_of
 @click.option("--window", type=float, default=5.0, show_default=True, metavar="CM-1",
               help="How far a line may be from the fundamental that it is.")
 @options.output_options
-@options.tolerance_option
-@options.as_option
-@options.axes_option
-@options.reading_options
+@options.symmetry_options
 def command(target, modes, assignment, quanta, temperature, resonance, doublets, bands, infrared, raman, match, window,
             form, output, tolerance, as_group, axes, **reading):
     """Show overtones, sums and differences of the fundamentals of a STRUCTURE or of a GROUP.

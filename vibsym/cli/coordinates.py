@@ -10,10 +10,7 @@ from vibsym.cli.reading import finish, results_of
 @click.command("coordinates")
 @options.structures_argument
 @options.output_options
-@options.tolerance_option
-@options.as_option
-@options.axes_option
-@options.reading_options
+@options.symmetry_options
 @options.select_option
 @options.atoms_option
 @picture_options("structure")

@@ -10,10 +10,7 @@ from vibsym.cli.assigned import group_of
 @click.argument("source", metavar="FROM")
 @click.argument("to", required=False, metavar="[TO]")
 @options.output_options
-@options.tolerance_option
-@options.as_option
-@options.axes_option
-@options.reading_options
+@options.symmetry_options
 def command(source, to, form, output, tolerance, as_group, axes, **reading):
     """Show what the species of FROM, a group or a structure, become in its subgroup TO.
 

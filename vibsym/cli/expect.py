@@ -10,10 +10,7 @@ from vibsym.cli.reading import finish, results_of
 @click.command("expect")
 @options.structures_argument
 @options.output_options
-@options.tolerance_option
-@options.as_option
-@options.axes_option
-@options.reading_options
+@options.symmetry_options
 @options.working_option
 @options.light_option
 @options.oscillator_options

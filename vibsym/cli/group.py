@@ -10,10 +10,7 @@ from vibsym.errors import VibsymError
 @click.command("group")
 @options.structures_argument
 @options.output_options
-@options.tolerance_option
-@options.as_option
-@options.axes_option
-@options.reading_options
+@options.symmetry_options
 @options.write_option
 def command(structures, form, output, tolerance, as_group, axes, write, **reading):
     """Show the point group of each STRUCTURE and the higher groups that it nearly has.

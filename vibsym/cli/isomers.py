@@ -3,7 +3,7 @@
 import click
 
 from vibsym.cli import options
-from vibsym.cli.bands import bands_options, progress
+from vibsym.cli.bands import bands_options, progress, refuse_without_bands
 from vibsym.cli.delivery import deliver
 
 
@@ -33,14 +33,12 @@ def command(symbol, centre, ligands, donors, oscillators, limit, write, form, ou
       vibsym isomers SP-4 --centre Pt --ligand CO=2 --ligand Cl=2 --write cis-trans
       vibsym isomers OC-6 --centre Mo --ligand CO=4 --ligand L=2 --bands try-it/flask-bands.csv
     """
-    from vibsym.errors import VibsymError
     from vibsym.report import isomers as view
     from vibsym.spectra.isomer_bands import list_isomers
 
     measured = bands["bands"] or bands["infrared"] or bands["raman"]
-    for name in ("mixture", "between", "allow"):
-        if bands[name] and not measured:
-            raise VibsymError(f"--{name} needs observed bands: --bands FILE, or --ir FILE and --raman FILE")
+    if not measured:
+        refuse_without_bands(mixture=bands["mixture"], between=bands["between"], allow=bands["allow"])
     result = list_isomers(symbol, centre, ligands, donors, oscillators, limit)
     if write is not None:
         save(result, write)

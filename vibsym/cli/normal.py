@@ -9,50 +9,20 @@ from vibsym.cli.reading import finish
 
 @click.command("normal")
 @options.structure_argument
-@click.option(
-    "--force-constants",
-    "constants",
-    metavar="FILE",
-    help="TOML file of force constants that replace or add to the tabulated ones; units stated in it.",
-)
+@click.option("--force-constants", "constants", metavar="FILE",
+              help="TOML file of force constants that replace or add to the tabulated ones; units stated in it.")
 @click.option("--hessian", metavar="FILE", help="Cartesian Hessian computed elsewhere, 3N × 3N, as text or .npy.")
-@click.option(
-    "--hessian-unit",
-    "unit",
-    default="hartree/bohr2",
-    show_default=True,
-    metavar="UNIT",
-    help="hartree/bohr2, N/m, mdyn/A, eV/A2, kcal/mol/A2 or kJ/mol/A2.",
-)
+@click.option("--hessian-unit", "unit", default="hartree/bohr2", show_default=True, metavar="UNIT",
+              help="hartree/bohr2, N/m, mdyn/A, eV/A2, kcal/mol/A2 or kJ/mol/A2.")
 @click.option("--mass-weighted", is_flag=True, help="The Hessian is already divided by √(mi mj), masses in u.")
-@click.option(
-    "--refine",
-    multiple=True,
-    metavar="ASSIGNMENT",
-    help="Adjust the constants to an assignment CSV; of an isotopologue too, whose head names its structure file.",
-)
+@click.option("--refine", multiple=True, metavar="ASSIGNMENT",
+              help="Adjust the constants to an assignment CSV; of an isotopologue too, whose head names its structure "
+                   "file.")
 @picture_options("ν1")
 @options.output_options
-@options.tolerance_option
-@options.as_option
-@options.axes_option
-@options.reading_options
-def command(
-    structure,
-    constants,
-    hessian,
-    unit,
-    mass_weighted,
-    refine,
-    picture,
-    show,
-    form,
-    output,
-    tolerance,
-    as_group,
-    axes,
-    **reading,
-):
+@options.symmetry_options
+def command(structure, constants, hessian, unit, mass_weighted, refine, picture, show, form, output, tolerance,
+            as_group, axes, **reading):
     """Tell the normal modes of STRUCTURE: species, wavenumber, energy distribution, activity.
 
     Without further options the constants are those of the tabulated valence force field.

@@ -89,3 +89,10 @@ def reading_options(command):
     ):
         command = option(command)
     return command
+
+
+def symmetry_options(command):
+    """Add what decides the group of a structure: --tolerance, --as, --axes, and how it is read."""
+    for option in (reading_options, axes_option, as_option, tolerance_option):
+        command = option(command)
+    return command

@@ -22,6 +22,11 @@ def read_structures(path: str, frame: str = "1", bonds=(), no_bonds=(), average_
     return [_prepared(structure, bonds, no_bonds, average_masses) for structure in found]
 
 
+def read_all_structures(paths, *reading) -> list:
+    """Return the structures of all arguments; the first that cannot be read stops."""
+    return [structure for path in paths for structure in read_structures(path, *reading)]
+
+
 def results_of(paths, make: Callable, **reading) -> tuple[list, int]:
     """Return the results of all structures that could be read, and how many files failed.
 

@@ -3,18 +3,15 @@
 import click
 
 from vibsym.cli import options
-from vibsym.cli.bands import bands_options
-from vibsym.cli.reading import read_structures
+from vibsym.cli.bands import bands_options, refuse_without_bands
+from vibsym.cli.reading import read_all_structures
 
 
 @click.command("report")
 @options.structures_argument
 @bands_options
 @options.oscillator_options
-@options.tolerance_option
-@options.as_option
-@options.axes_option
-@options.reading_options
+@options.symmetry_options
 @click.option("--triple", type=click.Choice(("T", "F")), default="T", show_default=True,
               help="Letter of triply degenerate species in what is written.")
 @click.option("--output", required=True, metavar="FILE", help="The HTML file to write.")
@@ -33,7 +30,6 @@ def command(structures, bands, infrared, raman, between, window, allow, light, t
     import shlex
     import sys
 
-    from vibsym.errors import VibsymError
     from vibsym.evidence.bandlist import read_bands
     from vibsym.evidence.screening import ScreenOptions
     from vibsym.evidence.whole_molecule import Proposal
@@ -42,11 +38,10 @@ def command(structures, bands, infrared, raman, between, window, allow, light, t
     from vibsym.report.html.page import report_page
 
     measured = bands or infrared or raman
-    for name, value in (("between", between), ("allow", allow)):
-        if value and not measured:
-            raise VibsymError(f"--{name} needs observed bands: --bands FILE, or --ir FILE and --raman FILE")
+    if not measured:
+        refuse_without_bands(between=between, allow=allow)
     observed = read_bands(bands, infrared, raman, between=between, light=light) if measured else None
-    read = [each for path in structures for each in read_structures(path, frame, bonds, no_bonds, average_masses)]
+    read = read_all_structures(structures, frame, bonds, no_bonds, average_masses)
     told = "vibsym " + shlex.join(sys.argv[1:]) if sys.argv[1:2] == ["report"] else "vibsym report"
     page = report_page(collect(read, observed, Proposal(**proposal), ScreenOptions(window, allow), told), triple)
     write_text_atomically(output, page)

@@ -4,7 +4,7 @@ import click
 
 from vibsym.cli import options
 from vibsym.cli.bands import bands_options, progress
-from vibsym.cli.reading import finish, read_structures
+from vibsym.cli.reading import finish, read_all_structures
 
 
 @click.command("screen")
@@ -14,10 +14,7 @@ from vibsym.cli.reading import finish, read_structures
 @click.option("--mixture", is_flag=True, help="Also let every two structures share the lines.")
 @click.option("--every-rung", is_flag=True, help="Screen each structure in every group of its ladder.")
 @options.output_options
-@options.tolerance_option
-@options.as_option
-@options.axes_option
-@options.reading_options
+@options.symmetry_options
 def command(structures, bands, infrared, raman, between, window, allow, light, mixture, form, output, frame, bonds,
             no_bonds, average_masses, **proposal):
     """Tell which STRUCTURE the observed infrared and Raman bands allow, and what speaks against the others.
@@ -37,7 +34,7 @@ def command(structures, bands, infrared, raman, between, window, allow, light, m
     from vibsym.report import screening as view
 
     observed = read_bands(bands, infrared, raman, between=between, light=light)
-    read = [each for path in structures for each in read_structures(path, frame, bonds, no_bonds, average_masses)]
+    read = read_all_structures(structures, frame, bonds, no_bonds, average_masses)
     with progress() as callback:
         result = screen(read, observed, Proposal(**proposal), ScreenOptions(window, allow, mixture), callback)
     finish([result], 0, view, form, output)
