@@ -190,6 +190,15 @@ def test_whole_molecules_miss_nothing_in_a_list_of_one_region():
         {"species": "T1u", "infrared": True, "raman": False}]
 
 
+def test_bands_just_beyond_the_window_are_named_with_the_window_that_pairs_them():
+    """Gas (infrared) and liquid (Raman) of one substance differ by 9 and 11 cm-1; 233 has no partner."""
+    found, rows = isomers_of("CO=4", "Cl=2"), "928,IR,s\n578,IR,m\n919,Raman,s\n567,Raman,vs\n233,Raman,m\n"
+    note, = (each for each in screened(found, rows).notes if "--window" in each)
+    assert "IR 928 and Raman 919, IR 578 and Raman 567" in note and "233" not in note and "--window 11 pairs" in note
+    assert not any("--window" in each for each in screened(found, rows, window=11).notes)
+    assert len(screened(found, rows, window=11).seen.pairs) == 2
+
+
 def test_a_band_outside_the_range_of_the_other_spectrum_is_not_missing_there():
     """Infrared ends where Raman goes on: the low Raman lines say nothing against bands active in both."""
     bent = Structure.from_atoms(["S", "Cl", "Cl"], [[0, 0, 0], [0, 1.55, 1.3], [0, -1.55, 1.3]], source="bent.xyz")

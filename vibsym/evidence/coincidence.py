@@ -21,6 +21,7 @@ from vibsym.evidence.lines import Band
 WINDOW = 5.0          # cm-1
 NEIGHBOURHOOD = 100.0  # cm-1
 EQUAL = 1e-3          # cm-1: sums of distances that differ by less are equal, and their squares decide
+NEAR = 3.0            # windows: unpaired bands no farther apart may be one band, shifted by phase or solvent
 LEAST_CHANCE = 0.01   # k pairs count as accidental while chance gives k or more at least that often
 
 
@@ -36,6 +37,23 @@ class Coincidences:
     def pairs(self) -> tuple[tuple[Band, ...], ...]:
         """The coincident pairs."""
         return tuple(item for item in self.items if len(item) == 2)
+
+    @property
+    def near_misses(self) -> tuple[tuple[Band, Band], ...]:
+        """Unpaired infrared and Raman bands a little farther apart than the window, each band once, the nearest first.
+
+        The same band of a gas, a liquid and a solution may be shifted so far (common practice).
+        """
+        lonely = [item[0] for item in self.items if len(item) == 1]
+        apart = sorted((distance_of(one, two), k, m)
+                       for k, one in enumerate(lonely) if one.spectrum == "IR"
+                       for m, two in enumerate(lonely) if two.spectrum == "Raman")
+        found, taken = [], set()
+        for distance, k, m in apart:
+            if self.window < distance <= NEAR * self.window and not taken & {k, m}:
+                taken |= {k, m}
+                found.append((lonely[k], lonely[m]))
+        return tuple(found)
 
     @property
     def by_chance(self) -> int:
@@ -66,6 +84,11 @@ def pair_bands(infrared: tuple[Band, ...], raman: tuple[Band, ...], window: floa
     items = [(band, raman[partner[index]]) if index in partner else (band,) for index, band in enumerate(infrared)]
     items += [(band,) for index, band in enumerate(raman) if index not in taken]
     return Coincidences(tuple(items), window, chance)
+
+
+def distance_of(one: Band, two: Band) -> float:
+    """Return how far apart two bands are, cm-1: their nearest lines."""
+    return min(abs(a.wavenumber - b.wavenumber) for a in one.lines for b in two.lines)
 
 
 def chance_of(number: int, mean: float) -> float:

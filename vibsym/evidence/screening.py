@@ -10,16 +10,18 @@ lines, span an octave (less is the list of one region; our own rule).
 
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
+from math import ceil
 
 from vibsym.errors import VibsymError
 from vibsym.evidence.bandlist import BandList, in_region
-from vibsym.evidence.coincidence import WINDOW, Coincidences, pair_bands
+from vibsym.evidence.coincidence import WINDOW, Coincidences, distance_of, pair_bands
 from vibsym.evidence.excuses import Excuse, excuses_of
 from vibsym.evidence.explanation import Explanation, explain
 from vibsym.evidence.separation import separating
 from vibsym.spectra.prediction import Prediction, SpeciesBands, mixture
 
 FITS, STRAINED, EXCLUDED = "fits", "strained", "excluded"
+MOST_MISSES = 4   # pairs just beyond the window that a note names
 MOST_MIXED = 60   # structures; more would make thousands of pairs
 CAUTION = ("Fitting is not proof: symmetry permits, it never promises. Fewer bands than predicted exclude no "
            "structure, and one that was not proposed may fit as well.")
@@ -157,7 +159,7 @@ def screen_predictions(predictions: Sequence[Prediction], observed: BandList, op
             progress(number, len(asked))
     ranked = _ranked(candidates)
     return Screening(observed, seen, ranked, separating(ranked, observed), _limits(observed),
-                     _notes(observed, singles))
+                     (*_notes(observed, singles), *_near_misses(seen)))
 
 
 def _mixtures(singles: list[Prediction]) -> list[Prediction]:
@@ -225,12 +227,24 @@ def _limits(observed: BandList) -> tuple[str, ...]:
 def _notes(observed: BandList, predictions: list[Prediction]) -> tuple[str, ...]:
     notes = list(observed.notes)
     if not observed.whole_range and any(not each.region for each in predictions):
-        notes.append("The lines belong to one region, the predictions to the whole molecule: none is counted as "
-                     "unseen, and fundamentals of other regions may hide an excess of lines; --oscillators compares "
-                     "one region.")
+        notes.append("The lines span less than an octave, as those of one region do, the predictions are those of the "
+                     "whole molecule: none is counted as unseen, and fundamentals of other regions may hide an excess "
+                     "of lines; --oscillators compares one region, --between states the range that was measured.")
     if observed.between is None and observed.whole_range and any(each.region for each in predictions):
         regions = ", ".join(dict.fromkeys(each.region for each in predictions if each.region))
         notes.append(f"The lines span more than one region, the predictions are those of {regions}: bends and other "
                      "modes in the list stay unexplained; --between takes the region of the stretches.")
     notes += [note for each in predictions for note in each.notes]
     return tuple(dict.fromkeys(notes))
+
+
+def _near_misses(seen: Coincidences) -> tuple[str, ...]:
+    """Tell which bands a wider window would pair, because that decides about mutual exclusion and excess bands."""
+    misses = seen.near_misses
+    if not misses:
+        return ()
+    told = ", ".join(f"IR {one} and Raman {two}" for one, two in misses[:MOST_MISSES])
+    more = f" and {len(misses) - MOST_MISSES} more pairs" if len(misses) > MOST_MISSES else ""
+    widest = ceil(max(distance_of(one, two) for one, two in misses))
+    return (f"Taken for different fundamentals, because they lie beyond the window: {told}{more}. If the spectra are of "
+            f"different phases or solvents they may be the same bands: --window {widest} pairs them.",)

@@ -6,6 +6,8 @@ from vibsym.groups.symbols import typeset
 from vibsym.report.document import Listing, Paragraph, Table, Title
 from vibsym.report.wording import NOTHING, count_text
 
+BY_SYMMETRY = ("An explanation is one of those that symmetry allows: positions do not count here. Which band is which "
+               "mode: vibsym assign.")
 MOST_DETAILED = 8    # candidates with all their excuses on the page; JSON and CSV hold them all
 
 
@@ -18,6 +20,8 @@ def parts(result: Screening, most: int | None = None, **_) -> list:
         page += _details(candidate)
     if len(detailed) < len(result.candidates):
         page.append(Paragraph(f"Proofs of the other {len(result.candidates) - len(detailed)}: --format json or csv"))
+    if detailed:
+        page.append(Paragraph(BY_SYMMETRY))
     if result.separating:
         page.append(Listing(result.separating, "What would separate those that survive, cheapest first"))
     beware = (*result.limits, *result.notes)
