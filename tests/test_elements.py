@@ -93,8 +93,8 @@ def test_label_is_read(text, label):
 
 
 @pytest.mark.parametrize("text, told", [
-    ("Q", "not an element"), ("Xx", "'Xx' is not an element symbol"), ("Xyz", "not an element"), ("", "not an element"), ("C13", "write 13C or C"),
-    ("99C", "no isotope 99C"),
+    ("Q", "not an element"), ("Xx", "'Xx' is not an element symbol"), ("Xyz", "not an element"), ("", "not an element"),
+    ("C13", "write 13C or C"), ("99C", "no isotope 99C"),
     ("0", "atomic number 0"), ("119", "atomic number 119"), ("Cc", "not an element"), ("É", "not an element"),
     ("²H", "not an element"), ("2D", "not an element"), ("C\n", "not an element"), ("9" * 5000, "atomic number"),
 ])

@@ -246,5 +246,5 @@ def _near_misses(seen: Coincidences) -> tuple[str, ...]:
     told = ", ".join(f"IR {one} and Raman {two}" for one, two in misses[:MOST_MISSES])
     more = f" and {len(misses) - MOST_MISSES} more pairs" if len(misses) > MOST_MISSES else ""
     widest = ceil(max(distance_of(one, two) for one, two in misses))
-    return (f"Taken for different fundamentals, because they lie beyond the window: {told}{more}. If the spectra are of "
-            f"different phases or solvents they may be the same bands: --window {widest} pairs them.",)
+    return (f"Taken for different fundamentals, because they lie beyond the window: {told}{more}. If the spectra are "
+            f"of different phases or solvents they may be the same bands: --window {widest} pairs them.",)

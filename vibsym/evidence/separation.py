@@ -19,8 +19,8 @@ def separating(candidates, observed: BandList) -> tuple[str, ...]:
     if len(survivors) < 2:
         return ()
     if not observed.whole_range and not all(each.region for each in survivors):
-        return ("no measurement yet: the lines span less than an octave, as those of one region do; compare that region "
-                "(--oscillators), or state the range that was measured (--between)",)
+        return ("no measurement yet: the lines span less than an octave, as those of one region do; compare that "
+                "region (--oscillators), or state the range that was measured (--between)",)
     have, sentences, survivors = observed.spectra, [], named(survivors)
     measured = any(line.polarisation for line in observed.lines)
     if "Raman" in have and not measured:

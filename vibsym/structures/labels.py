@@ -1,7 +1,8 @@
 """How an atom may be written: `C`, `cl`, `CL`, `D`, `T`, `13C`, an atomic number, or a dummy atom `X`, `XL`.
 
 X, alone or before a capital or a digit (xenon excepted), names a dummy atom: a point with a kind (the symbol, as
-written) and no mass; `Xx` is a slip of the pen.  A number after the symbol (`C13`) could be a mass or a running number and is refused with the two ways out.
+written) and no mass; `Xx` is a slip of the pen.  A number after the symbol (`C13`) could be a mass or a running number
+and is refused with the two ways out.
 """
 
 from functools import cache
