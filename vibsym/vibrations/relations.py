@@ -25,8 +25,8 @@ from vibsym.vibrations.representation import coordinate_basis
 SMALL = 1e-9
 ALONG = 1e-3                              # a relation nearer to known ones is one of them, told again with a rounding
 CENTRED = {"bend": 1, "wag": 0}           # where the atoms of a coordinate name the centre
-CONSTANT = 1e-6                            # per Å: a sum of angles that changes less is constant
-FLAT = 1e-6                               # atoms nearer to a plane through the centre (unit vectors) lie in it
+CONSTANT = 1e-5                           # per Å: a sum of angles that changes less is constant (files round to 1e-6 Å)
+FLAT = 1e-5                               # atoms nearer to a plane through the centre (unit vectors) lie in it
 
 
 @dataclass(frozen=True)
