@@ -40,26 +40,25 @@ class BandList:
     @property
     def whole_range(self) -> bool:
         """Whether a whole spectrum was observed, not one region: the stated range, else the lines, span an octave."""
-        low, high = self.between or self._span(self.lines)
+        low, high = self.between or _span(self.lines)
         return high >= OCTAVE * low
 
     @property
     def one_sided(self) -> frozenset[Band]:
         """The bands that lie where the other spectrum was not observed: outside the stated range or its own lines."""
-        ranges = {name: self.between or self._span([line for line in self.lines if line.spectrum == name])
-                  for name in self.spectra}
+        spans = self.spans
         found = []
         for band in self.bands:
-            low, high = self._span(band.lines)
-            if any(high < start or low > end for name, (start, end) in ranges.items() if name != band.spectrum):
+            low, high = _span(band.lines)
+            ranges = (self.between or span for name, span in spans.items() if name != band.spectrum)
+            if any(high < start or low > end for start, end in ranges):
                 found.append(band)
         return frozenset(found)
 
-    @staticmethod
-    def _span(lines) -> tuple[float, float]:
-        """Return the lowest and the highest wavenumber, (0, inf) where there are no lines."""
-        places = [line.wavenumber for line in lines]
-        return (min(places), max(places)) if places else (0.0, float("inf"))
+    @property
+    def spans(self) -> dict[str, tuple[float, float]]:
+        """The lowest and the highest wavenumber of each spectrum, cm-1."""
+        return {name: _span([line for line in self.lines if line.spectrum == name]) for name in self.spectra}
 
     def of(self, spectrum: str) -> tuple[Band, ...]:
         """Return the bands of one spectrum."""
@@ -149,13 +148,12 @@ def in_region(observed: BandList, low: float, high: float) -> BandList:
     kept = tuple(line for line in observed.lines if low <= line.wavenumber <= high)
     if observed.between or not kept or len(kept) == len(observed.lines):
         return observed
-    spans = {name: BandList._span([line for line in observed.lines if line.spectrum == name])
-             for name in observed.spectra}
     left = len(observed.lines) - len(kept)
     note = (f"{left} {'line' if left == 1 else 'lines'} outside {low:g} to {high:g} cm-1, where these oscillators lie, "
             f"{'is' if left == 1 else 'are'} left out; --between takes another region")
     return replace(observed, lines=kept, notes=(*observed.notes, note),
-                   spectra=tuple(name for name, (start, end) in spans.items() if end >= low and start <= high))
+                   spectra=tuple(name for name, (start, end) in observed.spans.items()
+                                 if end >= low and start <= high))
 
 
 def parse_bands(text: str, source: str = "band list", spectrum: str | None = None, *,
@@ -307,3 +305,9 @@ def _refuse_units(lines: list[Line], source: str) -> None:
         worst = max(lines, key=lambda line: line.wavenumber)
         raise VibsymError(f"{source}, line {worst.row}: no value is above {worst.wavenumber:g}: micrometres? "
                           f"{worst.wavenumber:g} µm is {1e4 / worst.wavenumber:.0f} cm-1")
+
+
+def _span(lines) -> tuple[float, float]:
+    """Return the lowest and the highest wavenumber, (0, inf) where there are no lines."""
+    places = [line.wavenumber for line in lines]
+    return (min(places), max(places)) if places else (0.0, float("inf"))

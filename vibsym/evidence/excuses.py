@@ -35,7 +35,7 @@ def excuses_of(prediction: Prediction, seen: Coincidences, explanation: Explanat
     if explanation.broken:
         excuses.append(_accidental(explanation.broken, seen, demands))
     for place in explanation.places:
-        excuses += _leaks(place, prediction, demands)
+        excuses += _leaks(place, prediction)
     return tuple(excuses)
 
 
@@ -77,7 +77,7 @@ def _accidental(broken: tuple[tuple[Band, ...], ...], seen: Coincidences, demand
                   tuple(line for item in broken for line in _lines(item)), reason)
 
 
-def _leaks(place: Place, prediction: Prediction, demands: tuple[Demand, ...]) -> list[Excuse]:
+def _leaks(place: Place, prediction: Prediction) -> list[Excuse]:
     excuses = []
     for band in place.item:
         species = place.species

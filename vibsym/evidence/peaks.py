@@ -77,7 +77,7 @@ def pick_peaks(spectrum: Spectrum, prominence: float | None = None, distance: fl
     """Return the bands of a spectrum; `prominence` in units of the signal, `distance` and `between` in cm-1."""
     from scipy.signal import find_peaks, savgol_filter
 
-    _check(prominence, distance, baseline, spectrum)
+    _check(prominence, distance, baseline)
     notes = list(spectrum.notes)
     x, y = _cut(spectrum.wavenumbers, spectrum.signal(), between, spectrum.source)
     x, y = _even(x, y, notes)
@@ -126,7 +126,7 @@ def band_rows(result: Peaks) -> list[dict]:
              "note": f"prominence {peak.prominence:.3g}"} for peak in result.peaks]
 
 
-def _check(prominence, distance: float, baseline: str, spectrum: Spectrum) -> None:
+def _check(prominence, distance: float, baseline: str) -> None:
     if prominence is not None and not 0 < prominence < float("inf"):
         raise VibsymError(f"--prominence {prominence:g}: give a height above zero, in absorbance or counts")
     if not 0 < distance < float("inf"):

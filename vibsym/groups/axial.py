@@ -204,10 +204,10 @@ def _operation_symbols(elements: _Elements) -> list[str]:
             else:
                 symbols.append("σv(xz)" if along_x else "σv'(yz)")
         elif s < 0:
-            two_sets = _two_sets(axes, elements.turn) or _has_s4(elements)
-            symbols.append(("C2'" if not _odd(m, axes, elements) else "C2''") if two_sets else "C2")
+            two_sets = _two_sets(axes) or _has_s4(elements)
+            symbols.append(("C2'" if not _odd(m, axes) else "C2''") if two_sets else "C2")
         else:
-            symbols.append(_plane_symbol(m, planes, axes, has_plane, elements))
+            symbols.append(_plane_symbol(m, planes, axes, has_plane))
     return symbols
 
 
@@ -224,18 +224,19 @@ def _has_s4(elements: _Elements) -> bool:
         np.any((elements.p == 0) & (elements.s > 0) & (elements.m == 1)))
 
 
-def _two_sets(marks: np.ndarray, turn: int) -> bool:
+def _two_sets(marks: np.ndarray) -> bool:
+    """Axes or planes at every step fall into two classes, those with even and those with odd marks."""
     return len(marks) % 2 == 0 and 0 < int((marks % 2).sum()) < len(marks)
 
 
-def _odd(m: int, marks: np.ndarray, elements: _Elements) -> bool:
-    return _two_sets(marks, elements.turn) and m % 2 == 1
+def _odd(m: int, marks: np.ndarray) -> bool:
+    return _two_sets(marks) and m % 2 == 1
 
 
-def _plane_symbol(m: int, planes: np.ndarray, axes: np.ndarray, has_plane: bool, elements: _Elements) -> str:
+def _plane_symbol(m: int, planes: np.ndarray, axes: np.ndarray, has_plane: bool) -> str:
     if len(axes) and not has_plane:
         return "σd"                                       # Dnd: the planes lie between the twofold axes
-    return "σd" if _odd(m, planes, elements) else "σv"
+    return "σd" if _odd(m, planes) else "σv"
 
 
 def rotation_symbol(m: int, turn: int, s: int = 1) -> str:

@@ -58,7 +58,7 @@ class Embedding:
         """What other choices of axes of the subgroup would exchange in the correlation: `B1 <-> B2`."""
         if self.group.infinite:
             return ()
-        choices = other_frames(self.parent, self.group, self.frame)
+        choices = other_frames(self.group, self.frame)
         tables = ((frame, correlation_in_frame(self.parent, self.group, frame)) for frame in choices)
         return tuple(exchanges(self.group, self.frame, frame) for frame, table in tables if table != self.correlation)
 

@@ -28,7 +28,7 @@ def frame_in_parent(parent: PointGroup, operations: np.ndarray) -> tuple[str, np
     return symbol, max(frames, key=lambda frame: _fitness(parent.symbol, group, matrices, names, frame))
 
 
-def other_frames(parent: PointGroup, group: PointGroup, frame: np.ndarray) -> list[np.ndarray]:
+def other_frames(group: PointGroup, frame: np.ndarray) -> list[np.ndarray]:
     """Return the frames of the other choices of x and y of a subgroup that stands in `frame`, z left where it is."""
     matrices = np.einsum("ba,cbd,de->cae", frame, group.matrices, frame)
     frames = standard_frames(matrices)[1]

@@ -27,10 +27,7 @@ def parts(result: Descent, **_) -> list:
 def rows(result: Descent, **_) -> list[dict]:
     """Return one CSV row an embedding and species, or a class of subgroups."""
     if result.to is None:
-        return [{"from": result.group.symbol, **result._listed(each)} if result.gamma is None else
-                {"from": result.group.symbol, "symbol": each.group.symbol, "keeps": each.keeps,
-                 "order": each.group.order, "conjugates": each.conjugates, **result.after(each)[1].to_dict()}
-                for each in result.embeddings]
+        return [{"from": result.group.symbol, **_flat(result.listed(each))} for each in result.embeddings]
     table = []
     for each in result.embeddings:
         for change in result.activity(each):
@@ -60,6 +57,11 @@ def changes_table(changes, heading: str = "") -> Table:
         rows.append((typeset(change["species"]), *modes, gamma_text(change["becomes"]), ", ".join(news) or NOTHING))
     head = ("species", *(("modes",) if changes and changes[0]["modes"] is not None else ()), "becomes", "new")
     return Table(head, tuple(rows), frozenset({1}) if len(head) == 4 else frozenset(), heading, flow=True)
+
+
+def _flat(entry: dict) -> dict:
+    """Return an entry with its counts as columns of their own."""
+    return {name: value for name, value in entry.items() if name != "counts"} | entry.get("counts", {})
 
 
 def _embedding(result: Descent, each) -> list:

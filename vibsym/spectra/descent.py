@@ -57,10 +57,11 @@ class Descent:
         if self.gamma is not None:
             answer |= {"gamma_vib": dict(self.gamma), "counts": self.counts.to_dict()}
         if self.to is None:
-            return answer | {"subgroups": [self._listed(each) for each in self.embeddings]}
+            return answer | {"subgroups": [self.listed(each) for each in self.embeddings]}
         return answer | {"to": self.to, "embeddings": [self._detailed(each) for each in self.embeddings]}
 
-    def _listed(self, each: Embedding) -> dict:
+    def listed(self, each: Embedding) -> dict:
+        """Return a class of subgroups as it stands in a list of them, with a structure also its counts."""
         entry = {"symbol": each.group.symbol, "keeps": each.keeps, "order": each.group.order,
                  "conjugates": each.conjugates}
         return entry if self.gamma is None else entry | {"counts": self.after(each)[1].to_dict()}

@@ -29,15 +29,15 @@ def chirality_symbol(shape: Shape, priorities: Sequence[Priority]) -> str | None
     if kind in ("T-4", "TPY-3"):
         return _tetrahedral(shape, priorities)
     if kind == "OC-6":
-        found = {_around(shape, priorities, end, _ring(shape, end)) for end in octahedral_axis(shape, priorities)[0]}
+        found = {_around(priorities, _ring(shape, end)) for end in octahedral_axis(shape, priorities)[0]}
         return found.pop() if len(found) == 1 else None
     if kind == "SPY-5":
-        return _around(shape, priorities, 0, _ring(shape, 0))
+        return _around(priorities, _ring(shape, 0))
     if kind.endswith(("BPY-5", "BPY-7", "BPY-8", "BPY-9")):
         if priorities[0] == priorities[1]:
             return None
         end = int(priorities[1] < priorities[0])
-        return _around(shape, priorities, end, _ring(shape, end))
+        return _around(priorities, _ring(shape, end))
     return _see_saw(shape, priorities) if kind == "SS-4" else None
 
 
@@ -80,7 +80,7 @@ def _ring(shape: Shape, end: int) -> list[int]:
     return [others[k] for k in np.argsort(angle % (2 * np.pi), kind="stable")]
 
 
-def _around(shape: Shape, priorities: Sequence[Priority], end: int, ring: list[int]) -> str | None:
+def _around(priorities: Sequence[Priority], ring: list[int]) -> str | None:
     anticlockwise = [priorities[site] for site in ring]
     first, second = ring_sequence(anticlockwise[::-1]), ring_sequence(anticlockwise)
     return None if first == second else "C" if first < second else "A"
