@@ -103,15 +103,18 @@ def test_reasons():
     assert reasons("CH3Cl") == {"the 6 angles at C1: a weighted sum of them is constant"}
 
 
-def test_a_centre_as_flat_as_a_file_of_six_decimals_tells_has_a_constant_sum_of_angles():
-    """A boric acid with its H atoms out of the plane, C3: no operation keeps B in the plane of the O atoms."""
+@pytest.mark.parametrize("height, reason", [
+    (4e-7, "the 3 angles at B1: their sum is constant"),                  # as flat as a file of six decimals tells
+    (0.01, "the 4 angles and wags at B1: weighted sums of them are constant")], ids=["flat", "nearly flat"])
+def test_a_flat_centre_that_no_operation_keeps_flat(height, reason):
+    """A boric acid with its H atoms out of the plane, C3: three bonds have two angles and a wag, or three angles."""
     turns = np.arange(3) * 2 * np.pi / 3
-    oxygens = np.stack([1.37 * np.cos(turns), 1.37 * np.sin(turns), np.full(3, 1e-6)], axis=1)
+    oxygens = np.stack([1.37 * np.cos(turns), 1.37 * np.sin(turns), np.full(3, height)], axis=1)
     hydrogens = np.stack([1.87 * np.cos(turns + 0.5), 1.87 * np.sin(turns + 0.5), np.full(3, 0.45)], axis=1)
     symmetry = find_symmetry(Structure.from_atoms(["B", *"OOO", *"HHH"], [[0, 0, 0], *oxygens, *hydrogens]))
     assert symmetry.group.symbol == "C3"
     told = relations(symmetry, select(internal_coordinates(symmetry), []))
-    assert [each.reason for each in told] == ["the 3 angles at B1: their sum is constant"]
+    assert [each.reason for each in told] == [reason]
 
 
 def test_sum_of_the_tetrahedral_angles():

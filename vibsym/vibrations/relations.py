@@ -135,7 +135,7 @@ def _independent(vectors: np.ndarray) -> np.ndarray:
 
 
 def _centres(rows: _Rows):
-    """Yield (reason, relations) for each kind of centre: those among its angles, then those of its wags."""
+    """Yield (reason, relations) for each kind of centre: those among its angles, those of its wags, those of both."""
     first_of = rows.symmetry.permutations.min(axis=0)          # an orbit of atoms is named by its first
     centre_of, bends, wags, first = np.full(len(rows.ids), -1), [], [], 0
     for each in rows.sets:
@@ -147,14 +147,14 @@ def _centres(rows: _Rows):
     bends, wags = (np.concatenate(found) if found else np.zeros(0, dtype=int) for found in (bends, wags))
     for centre in np.unique(first_of[centre_of[centre_of >= 0]]).tolist():
         atoms = np.flatnonzero(first_of == centre)
-        for kind, chosen in (("angles", bends), ("wags", wags)):
+        for kind, chosen in (("angles", bends), ("wags", wags), ("both", np.concatenate([bends, wags]))):
             local = [_local_relations(rows, chosen[centre_of[chosen] == atom]) for atom in atoms.tolist()]
             if len(local[0]):
                 name = _centre_name(rows, centre, len(atoms))
                 own = chosen[centre_of[chosen] == centre]
-                reason = (_angles_at(rows, centre, own, len(local[0]), name) if kind == "angles" else
-                          f"the {len(own)} wags at {name}: weighted sums of them are constant")
-                yield reason, np.concatenate(local)
+                yield (_angles_at(rows, centre, own, len(local[0]), name) if kind == "angles" else
+                       f"the {len(own)} {'wags' if kind == 'wags' else 'angles and wags'} at {name}: weighted sums of "
+                       "them are constant"), np.concatenate(local)
 
 
 def _local_relations(rows: _Rows, places: np.ndarray) -> np.ndarray:
