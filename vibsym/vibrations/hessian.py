@@ -18,7 +18,7 @@ from vibsym.groups.projection import symmetry_vectors
 from vibsym.structures.symmetry import Symmetry
 from vibsym.vibrations.bmatrix import rigid_motions
 from vibsym.vibrations.cartesian import displacements
-from vibsym.vibrations.normal_modes import Mode, wavenumbers_of
+from vibsym.vibrations.normal_modes import Mode, mode_of, wavenumbers_of
 from vibsym.vibrations.numbering import numbered
 from vibsym.vibrations.units import HESSIAN_UNITS
 
@@ -70,15 +70,13 @@ def _numbers(raw: bytes, path: str) -> np.ndarray:
             try:
                 found.append(float(word.replace("D", "e").replace("d", "e")))
             except ValueError:
-                raise VibsymError(
-                    f"{path}, line {number}: '{word[:30]}' is not a number; a Hessian is 3N × 3N numbers"
-                ) from None
+                raise VibsymError(f"{path}, line {number}: '{word[:30]}' is not a number; "
+                                  "a Hessian is 3N × 3N numbers") from None
     return np.array(found)
 
 
-def hessian_modes(
-    symmetry: Symmetry, hessian: np.ndarray, unit: str = "N/m", mass_weighted: bool = False
-) -> HessianModes:
+def hessian_modes(symmetry: Symmetry, hessian: np.ndarray, unit: str = "N/m",
+                  mass_weighted: bool = False) -> HessianModes:
     """Return the modes of a Hessian given in the orientation of the structure as read.
 
     `unit` is a key of HESSIAN_UNITS; with `mass_weighted` the elements are already divided by √(m_i m_j), m in u.
@@ -103,10 +101,8 @@ def hessian_modes(
     values, vectors = wavenumbers_of(squares), inner @ vectors
     _check_unit(values, unit)
     if np.abs(loose).max() > 50:
-        notes.append(
-            f"translations and rotations had up to {np.abs(loose).max():.0f} cm-1 before they were taken out: "
-            "was the Hessian computed at this geometry and in this orientation?"
-        )
+        notes.append(f"translations and rotations had up to {np.abs(loose).max():.0f} cm-1 before they were taken out: "
+                     "was the Hessian computed at this geometry and in this orientation?")
     modes = _labelled(symmetry, H, values, vectors, notes)
     return HessianModes(modes, tuple(float(value) for value in loose), tuple(notes))
 
@@ -117,14 +113,12 @@ def _symmetric(hessian: np.ndarray, notes: list[str]) -> np.ndarray:
         raise VibsymError("the Hessian is zero throughout")
     if gap.max() > SYMMETRIC * largest:
         i, j = np.unravel_index(int(gap.argmax()), gap.shape)
-        raise VibsymError(
-            f"the Hessian is not symmetric: element {i + 1},{j + 1} is {hessian[i, j]:g}, element {j + 1},{i + 1} is "
-            f"{hessian[j, i]:g}; they may differ by {SYMMETRIC:g} of the largest element ({largest:g})"
-        )
+        raise VibsymError(f"the Hessian is not symmetric: element {i + 1},{j + 1} is {hessian[i, j]:g}, element "
+                          f"{j + 1},{i + 1} is {hessian[j, i]:g}; they may differ by {SYMMETRIC:g} of the largest "
+                          f"element ({largest:g})")
     if gap.max() > 1e-9 * largest:
-        notes.append(
-            f"the Hessian was made symmetric (largest difference {gap.max() / largest:.1e} of the largest element)"
-        )
+        notes.append(f"the Hessian was made symmetric (largest difference {gap.max() / largest:.1e} of the largest "
+                     "element)")
     return (hessian + hessian.T) / 2
 
 
@@ -132,15 +126,13 @@ def _check_unit(values: np.ndarray, unit: str) -> None:
     highest = np.abs(values).max(initial=0.0)
     if values.size and not LOWEST <= highest <= HIGHEST:
         others = ", ".join(name for name in HESSIAN_UNITS if name != unit)
-        raise VibsymError(
-            f"the highest wavenumber would be {highest:.3g} cm-1: the Hessian is not in {unit}; "
-            f"try --hessian-unit with {others}, or --mass-weighted if it is"
-        )
+        raise VibsymError(f"the highest wavenumber would be {highest:.3g} cm-1: the Hessian is not in {unit}; "
+                          f"try --hessian-unit with {others}, or --mass-weighted if it is")
 
 
-def _labelled(
-    symmetry: Symmetry, H: np.ndarray, values: np.ndarray, vectors: np.ndarray, notes: list[str]
-) -> tuple[Mode, ...]:
+def _labelled(symmetry: Symmetry, H: np.ndarray, values: np.ndarray, vectors: np.ndarray,
+              notes: list[str]) -> tuple[Mode, ...]:
+    """Return the numbered modes of eigenvalues (cm-1) and eigenvectors (3N, k), each given to one species."""
     gamma = displacements(symmetry).gamma_vib
     frames = _species_rows(symmetry)
     labels = [label for label in frames if label in gamma]
@@ -157,30 +149,15 @@ def _labelled(
         species = symmetry.group.species_named(label)
         own = sorted((k for k in range(len(squares)) if places[k] == number), key=lambda k: squares[k])
         for start in range(0, len(own), species.degeneracy):
-            members = own[start : start + species.degeneracy]
+            members = own[start:start + species.degeneracy]
             weight = float(np.mean([weights[k, number] for k in members]))
             value = float(np.mean(wavenumbers_of(np.array([squares[k] for k in members]))))
-            modes.append(
-                Mode(
-                    "",
-                    label,
-                    species.degeneracy,
-                    value,
-                    species.infrared,
-                    species.raman,
-                    species.polarised,
-                    (),
-                    min(weight, 1.0),
-                    columns[members[0]],
-                )
-            )
+            modes.append(mode_of(species, value, columns[members[0]], weight=min(weight, 1.0)))
     _check_totals(weights, labels, gamma, symmetry, notes)
     doubtful = sum(mode.weight < DOUBTFUL for mode in modes)
     if doubtful:
-        notes.append(
-            f"{doubtful} of {len(modes)} labels have a weight below {DOUBTFUL}: the geometry is far from "
-            f"{symmetry.group.symbol} for these modes"
-        )
+        notes.append(f"{doubtful} of {len(modes)} labels have a weight below {DOUBTFUL}: the geometry is far from "
+                     f"{symmetry.group.symbol} for these modes")
     return numbered(modes, symmetry)
 
 
@@ -214,11 +191,8 @@ def _parted(H: np.ndarray, block: np.ndarray, frames: list[np.ndarray]):
 
 def _counted_out(weights: np.ndarray, labels: list[str], gamma: dict[str, int], symmetry: Symmetry) -> np.ndarray:
     """Return the species of every vector so that each has as many as Γvib says, with the largest total weight."""
-    slots = [
-        number
-        for number, label in enumerate(labels)
-        for _ in range(gamma[label] * symmetry.group.species_named(label).degeneracy)
-    ]
+    slots = [number for number, label in enumerate(labels)
+             for _ in range(gamma[label] * symmetry.group.species_named(label).degeneracy)]
     best = weights.argmax(axis=1)
     if sorted(best.tolist()) == slots:
         return best
@@ -231,15 +205,11 @@ def _counted_out(weights: np.ndarray, labels: list[str], gamma: dict[str, int], 
 
 
 def _check_totals(weights, labels, gamma, symmetry, notes) -> None:
+    """Note where the species nearest to the modes are not as many as Γvib says."""
     best = weights.argmax(axis=1)
-    counts = {
-        label: int((best == number).sum()) // symmetry.group.species_named(label).degeneracy
-        for number, label in enumerate(labels)
-    }
+    counts = {label: int((best == number).sum()) // symmetry.group.species_named(label).degeneracy
+              for number, label in enumerate(labels)}
     wrong = [label for label in labels if counts[label] != gamma[label]]
     if wrong:
-        notes.append(
-            "the modes nearest to "
-            + ", ".join(f"{label} are {counts[label]}, not {gamma[label]}" for label in wrong)
-            + ": labels were counted out to fit Γvib"
-        )
+        told = ", ".join(f"{label} are {counts[label]}, not {gamma[label]}" for label in wrong)
+        notes.append(f"the modes nearest to {told}: labels were counted out to fit Γvib")

@@ -17,6 +17,7 @@ from typing import NamedTuple
 
 import numpy as np
 
+from vibsym.groups.species import Species
 from vibsym.structures.symmetry import Symmetry
 from vibsym.vibrations.bmatrix import b_matrix, rigid_motions
 from vibsym.vibrations.cartesian import displacements
@@ -100,22 +101,23 @@ def normal_modes(symmetry: Symmetry, sets: Sequence, F: np.ndarray, shares: bool
     found = []
     for block in species_blocks(symmetry, sets):
         values, vectors = np.linalg.eigh(block.rows.T @ F @ block.rows)
-        keep = np.argsort(values)[::-1][:: block.norm][: block.modes]
+        keep = np.argsort(values)[::-1][::block.norm][:block.modes]
         S = block.rows @ vectors[:, keep]
         energy = S * (F @ S)
         parts = np.zeros((len(sets), len(keep)))
         np.add.at(parts, owner, energy)
+        species = symmetry.group.species_named(block.species)
         for column, number in enumerate(keep):
-            found.append(
-                _mode(
-                    symmetry,
-                    block,
-                    float(values[number]),
-                    block.vectors @ vectors[:, number],
-                    _distribution(sets, parts[:, column]) if shares else (),
-                )
-            )
+            told = _distribution(sets, parts[:, column]) if shares else ()
+            wavenumber = float(wavenumbers_of(values[number]))
+            found.append(mode_of(species, wavenumber, block.vectors @ vectors[:, number], shares=told))
     return numbered(found, symmetry)
+
+
+def mode_of(species: Species, wavenumber: float, vector: np.ndarray, shares=(), weight: float = 1.0) -> Mode:
+    """Return a mode of a species, not yet numbered; `wavenumber` in cm-1, `vector` (3N,) mass-weighted."""
+    return Mode("", species.label, species.degeneracy, wavenumber, species.infrared, species.raman, species.polarised,
+                shares, weight, vector)
 
 
 def rigid_wavenumbers(symmetry: Symmetry, hessian: np.ndarray) -> np.ndarray:
@@ -134,24 +136,6 @@ def rigid_frame(symmetry: Symmetry) -> np.ndarray:
 def wavenumbers_of(squares: np.ndarray) -> np.ndarray:
     """Return cm-1 of eigenvalues in N/m/u; imaginary ones negative."""
     return np.sign(squares) * WAVENUMBER * np.sqrt(np.abs(squares))
-
-
-def _mode(
-    symmetry: Symmetry, block: SpeciesBlock, square: float, vector: np.ndarray, shares, weight: float = 1.0
-) -> Mode:
-    species = symmetry.group.species_named(block.species)
-    return Mode(
-        "",
-        block.species,
-        block.degeneracy,
-        float(wavenumbers_of(np.array(square))),
-        species.infrared,
-        species.raman,
-        species.polarised,
-        shares,
-        weight,
-        vector,
-    )
 
 
 def _distribution(sets, energies: np.ndarray) -> tuple[tuple[str, float], ...]:

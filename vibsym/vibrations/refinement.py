@@ -7,7 +7,7 @@ what the wavenumbers do not determine.  Isotopologues share the scales and are r
 D. W. Marquardt (1963).
 """
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -18,7 +18,9 @@ from vibsym.vibrations.forcefield import ForceField, plain_name
 from vibsym.vibrations.internal import internal_coordinates
 from vibsym.vibrations.normal_modes import normal_modes
 
-ERROR, SPREAD, ROUNDS, STEP = 0.01, 0.5, 30, 1e-4
+ERROR, SPREAD = 0.01, 0.5       # standard deviations of ln(wavenumber) and of ln(scale)
+STEP = 1e-4                     # of ln(scale), for the derivatives by differences
+MOST_ROUNDS = 30
 
 
 @dataclass(frozen=True)
@@ -34,14 +36,8 @@ class Residual:
 
     def to_dict(self) -> dict:
         """Return the row for JSON."""
-        return {
-            "structure": self.structure,
-            "mode": self.mode,
-            "species": self.species,
-            "observed": self.observed,
-            "before": round(self.before, 2),
-            "after": round(self.after, 2),
-        }
+        return {"structure": self.structure, "mode": self.mode, "species": self.species, "observed": self.observed,
+                "before": round(self.before, 2), "after": round(self.after, 2)}
 
 
 @dataclass(frozen=True, eq=False)
@@ -54,13 +50,13 @@ class Refinement:
 
     def to_dict(self) -> dict:
         """Return what JSON holds."""
-        return {
-            "scales": {name: round(value, 5) for name, value in self.scales.items()},
-            "residuals": [row.to_dict() for row in self.residuals],
-        }
+        return {"scales": {name: round(value, 5) for name, value in self.scales.items()},
+                "residuals": [row.to_dict() for row in self.residuals]}
 
 
 class _Molecule:
+    """A molecule prepared for the loop: its sets and terms, and which modes were observed."""
+
     def __init__(self, symmetry: Symmetry, observed, field: ForceField):
         self.symmetry = symmetry
         self.name = symmetry.structure.formula
@@ -72,13 +68,14 @@ class _Molecule:
         self.seen = _matched(modes, observed, self.name)
 
     def modes(self, field: ForceField, scales: dict[str, float]):
-        rows = np.concatenate(
-            [np.full(len(each) * each.components, scales.get(name, 1.0)) for each, name in zip(self.sets, self.names)]
-        )
+        """Return the modes with the constants scaled set by set."""
+        rows = np.concatenate([np.full(len(each) * each.components, scales.get(name, 1.0))
+                               for each, name in zip(self.sets, self.names)])
         F = field.matrix_of(self.terms, self.given, rows)
         return normal_modes(self.symmetry, self.sets, F, shares=False)
 
     def values(self, field: ForceField, scales: dict[str, float]) -> np.ndarray:
+        """Return the calculated wavenumbers (cm-1) of the modes that were observed, in their order."""
         by_species: dict[str, list[float]] = {}
         for mode in self.modes(field, scales):
             by_species.setdefault(mode.species, []).append(mode.wavenumber)
@@ -93,28 +90,40 @@ def refine(field: ForceField, molecules: Sequence[tuple[Symmetry, Sequence]]) ->
     if not len(observed):
         raise VibsymError("the assignment has no assigned fundamental to refine to")
 
-    def calculated(p):
+    def calculated(p: np.ndarray) -> np.ndarray:
         scales = dict(zip(names, np.exp(p).tolist()))
         return np.concatenate([each.values(field, scales) for each in prepared])
 
-    def cost(p, values):
-        r = (np.log(np.maximum(values, 1e-3)) - observed) / ERROR
+    before = calculated(np.zeros(len(names)))
+    p, values = _least_squares(calculated, before, observed, len(names))
+    rows, start = [], 0
+    for each in prepared:
+        for mode, species, _, value in each.seen:
+            rows.append(Residual(each.name, mode, species, value, float(before[start]), float(values[start])))
+            start += 1
+    scales = dict(zip(names, np.exp(p).tolist()))
+    return Refinement(field.with_scales(scales), scales, tuple(rows))
+
+
+def _least_squares(calculated: Callable, values: np.ndarray, observed: np.ndarray, size: int,
+                   ) -> tuple[np.ndarray, np.ndarray]:
+    """Return ln(scales) (size,) and the wavenumbers they give; `values` are those of scales 1, `observed` logarithms.
+
+    The damping falls after each round that lowers the sum and rises until one does.
+    """
+    def logarithm(values: np.ndarray) -> np.ndarray:
+        return np.log(np.maximum(values, 1e-3))
+
+    def cost(p: np.ndarray, values: np.ndarray) -> tuple[float, np.ndarray]:
+        r = (logarithm(values) - observed) / ERROR
         return float(r @ r + (p @ p) / SPREAD**2), r
 
-    p, damping = np.zeros(len(names)), 1e-3
-    before = values = calculated(p)
+    p, damping = np.zeros(size), 1e-3
     total, r = cost(p, values)
-    for _ in range(ROUNDS):
-        J = (
-            np.array(
-                [
-                    (np.log(np.maximum(calculated(p + STEP * unit), 1e-3)) - np.log(np.maximum(values, 1e-3))) / STEP
-                    for unit in np.eye(len(names))
-                ]
-            ).T
-            / ERROR
-        )
-        normal = J.T @ J + np.eye(len(names)) / SPREAD**2
+    for _ in range(MOST_ROUNDS):
+        slopes = [(logarithm(calculated(p + STEP * unit)) - logarithm(values)) / STEP for unit in np.eye(size)]
+        J = np.array(slopes).T / ERROR
+        normal = J.T @ J + np.eye(size) / SPREAD**2
         slope = J.T @ r + p / SPREAD**2
         while damping < 1e8:
             step = np.linalg.solve(normal + damping * np.diag(np.diag(normal)), -slope).clip(-0.5, 0.5)
@@ -129,13 +138,7 @@ def refine(field: ForceField, molecules: Sequence[tuple[Symmetry, Sequence]]) ->
         damping = max(damping / 5, 1e-9)
         if gain < 1e-6 * total + 1e-9:
             break
-    rows, start = [], 0
-    for each in prepared:
-        for mode, species, _, value in each.seen:
-            rows.append(Residual(each.name, mode, species, value, float(before[start]), float(values[start])))
-            start += 1
-    scales = dict(zip(names, np.exp(p).tolist()))
-    return Refinement(field.with_scales(scales), scales, tuple(rows))
+    return p, values
 
 
 def _matched(modes, observed, name: str) -> list[tuple[str, str, int, float]]:
@@ -149,14 +152,11 @@ def _matched(modes, observed, name: str) -> list[tuple[str, str, int, float]]:
     for species in dict.fromkeys(each.species for each in observed):
         own = sorted((each for each in observed if each.species == species), key=lambda each: -each.wavenumber)
         if species not in counts or len(own) > counts[species]:
-            raise VibsymError(
-                f"{name}: {len(own)} assigned fundamentals of species {species}; "
-                f"the structure has {counts.get(species, 0)}"
-            )
+            raise VibsymError(f"{name}: {len(own)} assigned fundamentals of species {species}; "
+                              f"the structure has {counts.get(species, 0)}")
         known = [places.get(each.name) for each in own]
-        numbered = all(place and place[0] == species for place in known) and len(
-            {place[1] for place in known if place}
-        ) == len(own)
+        distinct = {place[1] for place in known if place}
+        numbered = all(place and place[0] == species for place in known) and len(distinct) == len(own)
         for rank, (each, place) in enumerate(zip(own, known)):
             found.append((each.name, species, place[1] if numbered else rank, float(each.wavenumber)))
     return found
