@@ -24,10 +24,8 @@ class Pin:
 
     def matches(self, band: Band) -> bool:
         """Whether the pin means this band."""
-        return any(
-            abs(value - self.wavenumber) <= NEAR
-            for value in (mean_wavenumber(band), *(line.wavenumber for line in band.lines))
-        )
+        places = (mean_wavenumber(band), *(line.wavenumber for line in band.lines))
+        return any(abs(place - self.wavenumber) <= NEAR for place in places)
 
 
 def parse_pins(texts: Sequence[str], group, modes) -> list[Pin]:
@@ -41,9 +39,8 @@ def parse_pins(texts: Sequence[str], group, modes) -> list[Pin]:
         except ValueError:
             value = float("nan")
         if not equals or not value > 0 or value == float("inf"):
-            raise VibsymError(
-                f"--pin {text}: write a fundamental or a species and a line in cm-1, as in ν4=1306 or T2=1306"
-            )
+            raise VibsymError(f"--pin {text}: write a fundamental or a species and a line in cm-1, as in ν4=1306 or "
+                              "T2=1306")
         number = re.fullmatch(r"(?:ν|v|nu)_?(\d+)(?::(.+))?", left, re.IGNORECASE)
         if number:
             name = f"ν{int(number[1])}"
@@ -76,22 +73,18 @@ def pinned(pins: Sequence[Pin], bands: Sequence[Band], modes) -> np.ndarray | No
         possible = [row for row in rows if reasons[row] is None]
         if not possible:
             raise VibsymError(f"--pin {pin.text}: against the selection rules: {reasons[rows[0]]}")
-        wanted = np.array(
-            [
-                number == pin.mode if pin.mode is not None else each.species == pin.species
-                for number, each in enumerate(modes)
-            ]
-        )
+        wanted = np.array([number == pin.mode if pin.mode is not None else each.species == pin.species
+                           for number, each in enumerate(modes)])
         for row in possible:
             allowed[row] &= wanted
             if not allowed[row].any():
-                raise VibsymError(
-                    f"--pin {pin.text}: the line {bands[row]} is pinned elsewhere too; take one --pin away"
-                )
+                raise VibsymError(f"--pin {pin.text}: the line {bands[row]} is pinned elsewhere too; take one --pin "
+                                  "away")
     return allowed
 
 
 def _forbidden(band: Band, mode) -> str | None:
+    """Return why a band cannot be a mode, None if it can."""
     if band.spectrum == "IR":
         return None if mode.infrared else f"{mode.species} is silent in the infrared, where {band} was seen"
     if not mode.raman:

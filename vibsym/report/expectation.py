@@ -8,6 +8,7 @@ from vibsym.report.document import Facts, Listing, Paragraph, Table
 from vibsym.report.wording import (
     NOTHING,
     about_structure,
+    axes_facts,
     count_text,
     found_within,
     functions_text,
@@ -41,7 +42,7 @@ def parts(result: Expectation, working: bool = False, light: str = "plane", stri
 
         page += gas_parts(result.gas)
     page += _working(result, working)
-    return [*page, *_axes(result), *_beware(result.notes), *_next_rung(result)]
+    return [*page, *axes_facts(result.axes), *_beware(result.notes), *_next_rung(result)]
 
 
 def rows(result: Expectation, **_) -> list[dict]:
@@ -153,14 +154,6 @@ def _oscillators(result: Expectation) -> list:
     from vibsym.report.regions import oscillator_parts
 
     return oscillator_parts(result.oscillators, result.symmetry.group.symbol)
-
-
-def _axes(result: Expectation) -> list:
-    pairs = tuple((name, words) for name, words in result.axes.words.items())
-    if result.axes.exchange:
-        swaps = ", ".join(typeset(each).replace("<->", "↔") for each in result.axes.exchange)
-        pairs += (("other", f"another choice of axes (--axes) exchanges {swaps}"),)
-    return [Facts(pairs, "Axes")] if pairs else []
 
 
 def _beware(notes) -> list:

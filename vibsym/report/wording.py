@@ -3,7 +3,7 @@
 from typing import TYPE_CHECKING
 
 from vibsym.groups.symbols import hermann_mauguin, typeset, typeset_function
-from vibsym.report.document import Title
+from vibsym.report.document import Facts, Title
 from vibsym.structures.symmetry import Symmetry, within
 
 if TYPE_CHECKING:
@@ -52,6 +52,15 @@ def about_structure(structure: "Structure") -> Title:
     """Return the head of a page: formula, source, number of atoms."""
     aside = [structure.source, count_text(len(structure), "atom")]
     return Title(typeset(structure.formula), ", ".join(filter(None, aside)))
+
+
+def axes_facts(choice) -> list[Facts]:
+    """Return where the axes point and what another choice exchanges (`AxisChoice`); nothing where there are none."""
+    pairs = tuple(choice.words.items())
+    if choice.exchange:
+        swaps = ", ".join(typeset(each).replace("<->", "↔") for each in choice.exchange)
+        pairs += (("other", f"another choice of axes (--axes) exchanges {swaps}"),)
+    return [Facts(pairs, "Axes")] if pairs else []
 
 
 def count_text(number: int, word: str) -> str:

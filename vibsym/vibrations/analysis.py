@@ -25,12 +25,8 @@ class NormalModes:
 
     def to_dict(self) -> dict:
         """Return the JSON object."""
-        answer = {
-            "structure": self.symmetry.structure.to_dict(),
-            "point_group": self.symmetry.to_dict(),
-            "modes": [mode.to_dict() for mode in self.modes],
-            "fallback": list(self.fallback),
-        }
+        answer = {"structure": self.symmetry.structure.to_dict(), "point_group": self.symmetry.to_dict(),
+                  "modes": [mode.to_dict() for mode in self.modes], "fallback": list(self.fallback)}
         if self.notes:
             answer["notes"] = list(self.notes)
         if self.refinement is not None:
@@ -38,14 +34,8 @@ class NormalModes:
         return answer
 
 
-def analyse(
-    symmetry: Symmetry,
-    *,
-    constants: str | None = None,
-    hessian: str | None = None,
-    unit: str = "hartree/bohr2",
-    mass_weighted: bool = False,
-) -> NormalModes:
+def analyse(symmetry: Symmetry, *, constants: str | None = None, hessian: str | None = None,
+            unit: str = "hartree/bohr2", mass_weighted: bool = False) -> NormalModes:
     """Return the modes of the tabulated force field, with `constants` (a TOML file) put in, or of a Hessian file."""
     if hessian is None:
         if mass_weighted:
@@ -74,35 +64,30 @@ def estimates_with(symmetry: Symmetry, constants: str | None) -> Estimates:
 
 
 def _field(symmetry: Symmetry, constants: str | None) -> ForceField:
+    """Return the tabulated field, with the constants of a TOML file put in."""
     _need_masses(symmetry)
     if constants is None:
         return standard_field()
     from vibsym.vibrations.constants import read_constants
 
-    return standard_field().with_constants(
-        read_constants(constants, symmetry.structure.symbols, internal_coordinates(symmetry))
-    )
+    own = read_constants(constants, symmetry.structure.symbols, internal_coordinates(symmetry))
+    return standard_field().with_constants(own)
 
 
 def _need_masses(symmetry: Symmetry) -> None:
     structure = symmetry.structure
     if structure.is_dummy.any():
         atom = int(structure.is_dummy.argmax())
-        raise VibsymError(
-            f"{structure.source or structure.formula}: atom {atom + 1} ({structure.symbols[atom]}) is a dummy "
-            "atom without mass; normal modes need real atoms"
-        )
+        raise VibsymError(f"{structure.source or structure.formula}: atom {atom + 1} ({structure.symbols[atom]}) is a "
+                          "dummy atom without mass; normal modes need real atoms")
 
 
 def _by_field(symmetry: Symmetry, field: ForceField) -> NormalModes:
     found = estimate(symmetry, field)
-    notes = [
-        f"{each['set']}: no tabulated constant; Badger's rule gives {each['constant']:.0f} N/m"
-        for each in found.fallback
-    ]
+    notes = [f"{each['set']}: no tabulated constant; Badger's rule gives {each['constant']:.0f} N/m"
+             for each in found.fallback]
     loose = sum(abs(mode.wavenumber) < 1 for mode in found.modes)
     if loose:
-        notes.append(
-            f"{loose} vibrations have no restoring force in this field: no coordinate along bonds describes them"
-        )
+        notes.append(f"{loose} vibrations have no restoring force in this field: no coordinate along bonds describes "
+                     "them")
     return NormalModes(symmetry, found.modes, found.fallback, tuple(notes), field)
