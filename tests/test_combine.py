@@ -156,6 +156,16 @@ def test_the_usual_shift_comes_first():
     assert [each.combination.label for each in found.candidates] == ["2ν1", "ν1 + ν2"]
 
 
+def test_the_nearest_combination_beyond_the_match_is_named():
+    """SO2: ν1 + ν3 is seen 13.6 cm-1 below the sum (Herzberg 1945, from memory); at 3000 nothing is near."""
+    group = point_group("C2v")
+    modes = parse_modes(["v1:A1=1151.4", "v2:A1=517.7", "v3:B2=1361.8"], group)
+    near, far = explain_lines([Line(2499.6, "IR"), Line(3000.0, "IR")], combine(group, modes))
+    assert not near.candidates and near.nearest.combination.label == "ν1 + ν3"
+    assert near.to_dict()["nearest"]["shift"] == pytest.approx(-13.6)
+    assert not far.candidates and far.nearest is None and far.to_dict()["nearest"] is None
+
+
 def test_hot_bands_explain_lines_too():
     """A line below ν2 of CO2 can be 2ν2 - ν2 (7 % of the molecules in ν2); from thinly filled levels nothing is."""
     result = made("Dinfh", DIOXIDE)

@@ -21,6 +21,7 @@ from vibsym.spectra.combinations import Combination, Combinations, HotBand
 DEFAULT_MATCH = 10.0               # cm-1
 DEFAULT_WINDOW = 5.0               # cm-1, between a line and the fundamental that it is
 POPULATED = 0.01                   # share of the molecules in the lower level of a hot band
+BEYOND = 5.0                       # matches: the nearest combination is still named where nothing lies within one
 SLACK = 1.0                        # cm-1; a shift that small has no direction
 
 
@@ -42,16 +43,18 @@ class Candidate:
 
 @dataclass(frozen=True)
 class Explanation:
-    """A line with its candidates, or with the fundamental that it is."""
+    """A line with its candidates, or with the fundamental that it is; without either the `nearest` beyond the match."""
 
     line: Line
     fundamental: str | None
     candidates: tuple[Candidate, ...]
+    nearest: Candidate | None = None
 
     def to_dict(self) -> dict:
         """Return the explanation for JSON."""
         return {"line": self.line.wavenumber, "spectrum": self.line.spectrum, "fundamental": self.fundamental,
-                "candidates": [each.to_dict() for each in self.candidates]}
+                "candidates": [each.to_dict() for each in self.candidates],
+                "nearest": None if self.nearest is None else self.nearest.to_dict()}
 
 
 def explain_lines(lines: Sequence[Line], result: Combinations, match: float = DEFAULT_MATCH,
@@ -68,12 +71,14 @@ def explain_lines(lines: Sequence[Line], result: Combinations, match: float = DE
     found = []
     for line in lines:
         fundamental = _fundamental(line, result, window)
-        low, high = (bisect_left(positions, line.wavenumber + step) for step in (-match - 1e-9, match + 1e-9))
+        reach = BEYOND * match + 1e-9
+        low, high = (bisect_left(positions, line.wavenumber + step) for step in (-reach, reach))
         active = [each for each in known[low:high] if (each.infrared if line.spectrum == "IR" else each.raman)
                   and (not line.polarised or result.group.species[0].label in each.species)]
-        candidates = () if fundamental else tuple(sorted((_candidate(line, each, match) for each in active),
-                                                         key=lambda each: (each.score, each.combination.label)))
-        found.append(Explanation(line, fundamental, candidates))
+        ranked = () if fundamental else tuple(sorted((_candidate(line, each, match) for each in active),
+                                                     key=lambda each: (each.score, each.combination.label)))
+        candidates = tuple(each for each in ranked if abs(each.shift) <= match + 1e-9)
+        found.append(Explanation(line, fundamental, candidates, None if candidates or not ranked else ranked[0]))
     return tuple(found)
 
 

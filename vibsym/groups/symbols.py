@@ -79,11 +79,11 @@ def hermann_mauguin(symbol: str) -> str | None:
 def plain_label(text: str) -> str:
     """Return a species label in its plain form: ASCII primes, T for F, Greek letters as they stand.
 
-    >>> plain_label("F1u"), plain_label("A2″"), plain_label("Sigmag+")
-    ('T1u', "A2''", 'Σg+')
+    >>> plain_label("F1u"), plain_label("A2″"), plain_label("Sigmag+"), plain_label("Pi_u")
+    ('T1u', "A2''", 'Σg+', 'Πu')
     """
     label = text.strip().replace("″", "''").replace("′", "'").replace("’", "'").replace('"', "''").replace("−", "-")
-    label = label.replace("⁺", "+").replace("⁻", "-")
+    label = label.replace("⁺", "+").replace("⁻", "-").replace("_", "")
     label = "".join(chr(ord(c) - 0x2050) if "₀" <= c <= "₉" else c for c in label)
     for word, letter in (("sigma", "Σ"), ("pi", "Π"), ("delta", "Δ"), ("phi", "Φ"), ("gamma", "Γ")):
         if label.lower().startswith(word):

@@ -10,8 +10,10 @@ from vibsym.report.document import Listing, Paragraph, Table
 from vibsym.report.wording import NOTHING, about_structure, axes_facts, count_text, found_within, group_text
 from vibsym.structures.axes import axis_words
 
-EXPLAIN = ("vibsym combine STRUCTURE --assignment FILE looks for overtones, combinations and hot bands among them; "
-           "FILE is this assignment with --format csv.")
+EXPLAIN = (
+    "vibsym combine STRUCTURE --assignment FILE looks for overtones, combinations and hot bands among them; "
+    "FILE is this assignment with --format csv."
+)
 
 
 def parts(result, strip: bool = False, **_) -> list:

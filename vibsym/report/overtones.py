@@ -1,6 +1,6 @@
 """The page, the rows and the object of overtones and combinations (`vibsym combine`)."""
 
-from vibsym.evidence.leftovers import Combined
+from vibsym.evidence.leftovers import Candidate, Combined
 from vibsym.groups.symbols import typeset
 from vibsym.report.document import Listing, Paragraph, Table, Title
 from vibsym.report.wording import NOTHING, about_structure, gamma_plain, gamma_text, group_text
@@ -102,15 +102,21 @@ def _lines(result: Combined) -> list:
         first = f"{each.line.spectrum} {each.line}"
         if each.fundamental:
             rows.append((first, f"fundamental {_text(each.fundamental)}", "", ""))
-        elif not each.candidates:
+        elif not each.candidates and each.nearest is None:
             rows.append((first, "nothing within reach", "", ""))
+        elif not each.candidates:
+            rows.append((first, *_explained(each.nearest, "beyond --match: ")))
         for candidate in each.candidates:
-            combination = candidate.combination
-            rows.append((first, _text(combination.label), f"{candidate.shift:+.1f}".replace("-", "−"),
-                         gamma_text(combination.species)))
+            rows.append((first, *_explained(candidate)))
             first = ""
     head = ("line", "explained by", "shift", "species")
     return [Table(head, tuple(rows), right=frozenset({2}), heading="Lines to explain")] if rows else []
+
+
+def _explained(candidate: Candidate, before: str = "") -> tuple[str, str, str]:
+    """Return the combination, how far the line lies from it, and its species."""
+    return (before + _text(candidate.combination.label), f"{candidate.shift:+.1f}".replace("-", "−"),
+            gamma_text(candidate.combination.species))
 
 
 def _active(species) -> str:

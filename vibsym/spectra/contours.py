@@ -212,7 +212,8 @@ def _notes(symmetry: Symmetry, top: Rotor) -> tuple[str, ...]:
     if not top.by_symmetry:
         notes.append(f"two moments agree within {1e-4:.0e} by chance: a {top.kind} top only in its contours")
     if top.ray is not None and abs(top.ray) > 0.9:
-        notes.append(f"Ray's κ = {top.ray:.3f}: nearly a {'prolate' if top.ray < 0 else 'oblate'} symmetric top")
+        ray = f"{top.ray:.3f}".replace("-", "−")
+        notes.append(f"Ray's κ = {ray}: nearly a {'prolate' if top.ray < 0 else 'oblate'} symmetric top")
     if symmetry.group.symbol in ("C∞v", "D∞h") and spin_weights(symmetry) is None:
         notes.append("a nuclear spin is not in tables/nuclear_spins.csv: no statistical weights")
     return tuple(notes)

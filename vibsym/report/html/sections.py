@@ -207,6 +207,9 @@ def _candidates(explanation) -> str:
         return f"close to {typeset(explanation.fundamental)}"
     names = [f"{typeset(each.combination.label).replace(' - ', ' − ')} at {each.combination.wavenumber:.1f}"
              for each in explanation.candidates[:4]]
+    if not names and (each := explanation.nearest):
+        return (f"the nearest is {typeset(each.combination.label).replace(' - ', ' − ')} at "
+                f"{each.combination.wavenumber:.1f}, {abs(each.shift):.1f} away")
     return "; ".join(names) or "no overtone, sum or difference of two quanta of the assigned fundamentals is near"
 
 
