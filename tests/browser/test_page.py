@@ -38,6 +38,16 @@ def test_layout_and_contrast(browser, pages, name, width, scheme):
         assert asked(browser, probe) == [], f"{probe} at {width} px, {scheme}"
 
 
+@pytest.mark.parametrize("name", ("carbonyl", "flask", "tube"))
+def test_between_the_layouts_nothing_scrolls_sideways(browser, pages, name):
+    """Where one layout takes over from another a column is narrowest."""
+    opened(browser, pages[name])
+    for width in (320, 735, 737, 1100, 1247, 1249, 1280):
+        browser.execute_cdp_cmd("Emulation.setDeviceMetricsOverride",
+                                {"width": width, "height": 900, "deviceScaleFactor": 1, "mobile": False})
+        assert asked(browser, "sideways") == [], f"at {width} px"
+
+
 @pytest.mark.parametrize("name", MOLECULES)
 def test_no_console_error_and_no_network(browser, pages, name):
     browser.get_log("browser")
