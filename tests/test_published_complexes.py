@@ -10,7 +10,7 @@ from pathlib import Path
 
 import pytest
 
-from vibsym.evidence.bandlist import parse_bands, within
+from vibsym.evidence.bandlist import lines_between, parse_bands
 from vibsym.evidence.proposals import screen
 from vibsym.evidence.screening import screen_predictions
 from vibsym.spectra.isomer_bands import list_isomers
@@ -65,7 +65,7 @@ def observed(formula: str, whole: bool = False):
         for place, strength, bracket in LINE.findall(ROWS[formula][column]):
             if whole or float(place) not in LEFT_OUT.get(formula, ()):
                 text += f"{place},{spectrum},{strength},{'p' if ', p)' in bracket else ''}\n"
-    return within(parse_bands(text, formula), None if whole else STRETCHES.get(formula))
+    return lines_between(parse_bands(text, formula), None if whole else STRETCHES.get(formula))
 
 
 def test_the_lists_are_read_as_they_stand():

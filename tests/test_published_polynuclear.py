@@ -10,7 +10,7 @@ from complexes import half_sandwich, piano_stool
 from molecules import TETRAHEDRON, atoms, ring
 from test_published_complexes import ROWS, observed
 
-from vibsym.evidence.bandlist import parse_bands, within
+from vibsym.evidence.bandlist import lines_between, parse_bands
 from vibsym.evidence.proposals import screen
 from vibsym.evidence.screening import screen_predictions
 from vibsym.evidence.whole_molecule import Proposal
@@ -122,7 +122,7 @@ def test_see_saw_and_pentagonal_bipyramid():
             ("SF4", "SS-4", "S", ["F=4"], "C2v", (540, 950)), ("IF7", "PBPY-7", "I", ["F=7"], "D5h", (600, 800))):
         assert formula in ROWS
         entry = list_isomers(symbol, centre, ligands).entries[0]
-        found = screen_predictions([entry.prediction()], within(observed(formula), region)).candidates[0]
+        found = screen_predictions([entry.prediction()], lines_between(observed(formula), region)).candidates[0]
         assert found.prediction.group == group and found.verdict != "excluded", found.excuses
 
 

@@ -8,7 +8,7 @@ import numpy as np
 import pytest
 
 from vibsym.errors import VibsymError
-from vibsym.evidence.bandlist import parse_bands, within
+from vibsym.evidence.bandlist import lines_between, parse_bands
 from vibsym.evidence.proposals import screen
 from vibsym.evidence.screening import ScreenOptions, screen_predictions
 from vibsym.evidence.whole_molecule import Proposal
@@ -208,10 +208,10 @@ def test_a_band_outside_the_range_of_the_other_spectrum_is_not_missing_there():
     answer = screen([bent], outside).candidates[0]
     assert [each.to_dict() for each in answer.unseen] == [{"species": "A1", "infrared": True, "raman": False}]
     assert len(screen([bent], inside).candidates[0].unseen) == 2
-    stated = within(outside, (150, 600))
+    stated = lines_between(outside, (150, 600))
     assert stated.one_sided == frozenset() and stated.whole_range
     assert len(screen([bent], stated).candidates[0].unseen) == 3
-    assert not within(outside, (450, 600)).whole_range
+    assert not lines_between(outside, (450, 600)).whole_range
 
 
 def test_oscillators_of_one_region_are_missing_in_either_spectrum():

@@ -87,7 +87,7 @@ def read_bands(bands: str | None = None, infrared: str | None = None, raman: str
                         tuple(name for name in SPECTRA if any(name in each.spectra for each in lists)),
                         ", ".join(str(path) for path, _ in given), tuple(note for each in lists for note in each.notes),
                         measured=tuple(found for each in lists for found in each.measured))
-    return within(together, between)
+    return lines_between(together, between)
 
 
 def _list_of(path: str, spectrum: str | None, between, light: str) -> BandList:
@@ -120,7 +120,7 @@ def _peaks_of(text: str, path: str, spectrum: str, between) -> BandList:
     return BandList(lines, (spectrum,), str(path), (*found.notes, note), measured=(found,))
 
 
-def within(observed: BandList, between: tuple[float, float] | None) -> BandList:
+def lines_between(observed: BandList, between: tuple[float, float] | None) -> BandList:
     """Return the lines of a region; the spectra that were measured stay the same, even without a line in it.
 
     A band of which only some lines lie inside stays whole.

@@ -8,8 +8,9 @@ import numpy as np
 
 from vibsym.errors import VibsymError
 from vibsym.evidence.whole_molecule import Proposal, bands_within, name_of
+from vibsym.spectra.activity import SetBands
 from vibsym.spectra.bond_ranges import range_of
-from vibsym.spectra.oscillators import LocalSymmetry, OscillatorBands, Oscillators, find_oscillators, oscillators
+from vibsym.spectra.oscillators import LocalSymmetry, Oscillators, find_oscillators, oscillators
 from vibsym.spectra.prediction import SURROUNDINGS, TRUE_GROUP, Prediction, SpeciesBands
 from vibsym.structures.equivalent_bonds import symmetric_bonds
 from vibsym.structures.finder import find_symmetry
@@ -72,7 +73,7 @@ def _of_surroundings(structure: Structure, symmetry: Symmetry, proposal: Proposa
                       local_group=local.symmetry.to_dict(), span=_span(structure, symmetry, proposal))
 
 
-def _blunt(symmetry: Symmetry, found: OscillatorBands) -> tuple[str, ...]:
+def _blunt(symmetry: Symmetry, found: SetBands) -> tuple[str, ...]:
     """Say that --local sees more where the group of the molecule is too low to forbid a band or to make two one."""
     counts = found.counts
     if symmetry.group.infinite or symmetry.group.order > 2 or not 1 < counts.fundamentals == counts.coincident:

@@ -48,7 +48,7 @@ class CharacterTable:
                 "raman": species.raman, "polarised": species.polarised, "hyper_raman": species.hyper_raman}
 
     def _text(self, value) -> str:
-        return value if isinstance(value, str) else exact_text(value, 2 * self.group.order)
+        return value if isinstance(value, str) else character_text(value, 2 * self.group.order)
 
 
 def character_table(symbol: str) -> CharacterTable:
@@ -60,11 +60,11 @@ def character_table(symbol: str) -> CharacterTable:
     return CharacterTable(point_group(symbol))
 
 
-def exact_text(value, turn: int) -> str:
+def character_text(value, turn: int) -> str:
     """Return an exact character (sympy) as text: whole, with one square root, or 2cos(2πk/n), n a divisor of `turn`.
 
     >>> import sympy
-    >>> exact_text(2 * sympy.cos(2 * sympy.pi / 7), 14), exact_text(sympy.sqrt(3), 24)
+    >>> character_text(2 * sympy.cos(2 * sympy.pi / 7), 14), character_text(sympy.sqrt(3), 24)
     ('2cos(2π/7)', '√3')
     """
     terms = value.expand().as_coefficients_dict()

@@ -100,6 +100,7 @@ class _Frame:
         return width, height
 
     def at(self, point) -> tuple[float, float]:
+        """Return the place of a point (Å, in the view) on the page, px."""
         x, y = (np.asarray(point)[:2] - self.middle) * self.scale
         return float(self.centre[0] + x), float(self.centre[1] - y)
 

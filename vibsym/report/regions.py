@@ -3,7 +3,8 @@
 from vibsym.groups.symbols import typeset
 from vibsym.report.document import Facts, Listing, Paragraph, Table
 from vibsym.report.wording import NOTHING, count_text, gamma_text, group_text, within
-from vibsym.spectra.oscillators import LocalSymmetry, OscillatorBands, Oscillators
+from vibsym.spectra.activity import SetBands
+from vibsym.spectra.oscillators import LocalSymmetry, Oscillators
 from vibsym.spectra.regions import Regions
 
 _HEAD = ("infrared", "Raman", "both", "polarised", "Γ")
@@ -43,7 +44,7 @@ def oscillator_parts(found: Oscillators, symbol: str) -> list:
     return page + ([Paragraph("\n".join(found.notes))] if found.notes else [])
 
 
-def _row(name: str, bands: "OscillatorBands") -> tuple[str, ...]:
+def _row(name: str, bands: SetBands) -> tuple[str, ...]:
     counts = bands.counts
     numbers = (counts.infrared, counts.raman, counts.coincident, counts.polarised)
     return (name, *map(str, numbers), gamma_text(bands.gamma))

@@ -6,6 +6,7 @@ Raman line can be polarised if it is totally symmetric (E. B. Wilson, J. C. Deci
 never promises.
 """
 
+from collections.abc import Mapping
 from typing import TYPE_CHECKING, NamedTuple
 
 from vibsym.groups.pointgroup import PointGroup
@@ -28,6 +29,20 @@ class Counts(NamedTuple):
     def to_dict(self) -> dict[str, int]:
         """Return the counts for JSON."""
         return self._asdict()
+
+
+class SetBands(NamedTuple):
+    """A set of coordinates, the species that it has, or its share of them, and the bands that they can show."""
+
+    name: str
+    gamma: dict[str, int]
+    counts: Counts
+
+    def to_dict(self) -> dict:
+        """Return the set for JSON."""
+        counts = self.counts
+        return {"set": self.name, "gamma": dict(self.gamma), "infrared": counts.infrared, "raman": counts.raman,
+                "coincident": counts.coincident, "polarised": counts.polarised}
 
 
 class SpeciesRow(NamedTuple):
@@ -69,3 +84,17 @@ def species_rows(gamma: dict[str, int], group: "PointGroup | InfiniteGroup") -> 
     """Return every species of a finite group, of an infinite one those that occur, each with its multiplicity."""
     return tuple(SpeciesRow(species, gamma.get(species.label, 0)) for species in group.species
                  if gamma.get(species.label, 0) or not group.infinite)
+
+
+def activity_changes(group, lower, correlation: Mapping[str, Mapping[str, int]],
+                     gamma: Mapping[str, int]) -> tuple[dict, ...]:
+    """Return for each species of `gamma` its parts in the lower group, and what becomes infrared or Raman active."""
+    changes = []
+    for label, modes in gamma.items():
+        species = group.species_named(label)
+        parts = [lower.species_named(below) for below in correlation[label]]
+        changes.append({"species": label, "modes": modes, "becomes": dict(correlation[label]),
+                        "splits": sum(correlation[label].values()) > 1,
+                        "infrared": [species.infrared, any(part.infrared for part in parts)],
+                        "raman": [species.raman, any(part.raman for part in parts)]})
+    return tuple(changes)

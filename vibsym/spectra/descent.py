@@ -9,8 +9,7 @@ from functools import cached_property
 from vibsym.errors import VibsymError
 from vibsym.groups.descent import Embedding, all_embeddings, descend_gamma, embeddings
 from vibsym.groups.pointgroup import point_group
-from vibsym.spectra.activity import Counts, count_bands
-from vibsym.spectra.isotopes import activity_changes
+from vibsym.spectra.activity import Counts, activity_changes, count_bands
 from vibsym.structures.symmetry import Symmetry
 from vibsym.vibrations.cartesian import displacements
 

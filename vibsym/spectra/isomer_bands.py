@@ -14,7 +14,7 @@ import numpy as np
 from vibsym.errors import VibsymError
 from vibsym.groups.bases import Basis
 from vibsym.groups.reduction import reduce
-from vibsym.spectra.activity import Counts, count_bands
+from vibsym.spectra.activity import Counts, SetBands, count_bands
 from vibsym.spectra.bond_ranges import range_of
 from vibsym.spectra.prediction import Prediction, bands_of_gamma
 from vibsym.structures.isomers import Isomer, Isomers, isomers
@@ -24,8 +24,8 @@ DEFAULT_LIMIT = 200
 
 
 @dataclass(frozen=True)
-class Oscillators:
-    """A set of stretches (`stretch C-O`) and the colours of the sites that carry one."""
+class SiteStretches:
+    """The oscillators: a set of stretches (`stretch C-O`) and the colours of the sites that carry one."""
 
     name: str
     colours: frozenset[int]
@@ -36,7 +36,7 @@ class IsomerBands:
     """An isomer with the representation and the band counts of its oscillators."""
 
     isomer: Isomer
-    oscillators: Oscillators
+    oscillators: SiteStretches
 
     @cached_property
     def gamma(self) -> dict[str, int]:
@@ -74,13 +74,11 @@ class IsomerBands:
 
     def to_dict(self) -> dict:
         """Return the entry of the JSON list `isomers`."""
-        isomer, counts = self.isomer, self.counts
+        isomer = self.isomer
         answer = {"name": isomer.name, "index": isomer.index, "arrangement": isomer.arrangement,
                   "point_group": isomer.point_group, "chiral": isomer.chiral, "stereoisomers": isomer.stereoisomers,
                   "descriptors": list(isomer.descriptors),
-                  "oscillators": {"set": self.oscillators.name, "gamma": self.gamma,
-                                  "infrared": counts.infrared, "raman": counts.raman,
-                                  "coincident": counts.coincident, "polarised": counts.polarised}}
+                  "oscillators": SetBands(self.oscillators.name, self.gamma, self.counts).to_dict()}
         if len(isomer.indices) > 1:
             answer["index_by_priority"] = {index: [isomer.among.ranking_text(order) for order in orders]
                                            for index, orders in isomer.indices.items()}
@@ -92,7 +90,7 @@ class IsomerList:
     """The isomers of a composition: how many there are, and the bands of the first `limit` of them."""
 
     isomers: Isomers
-    oscillators: Oscillators
+    oscillators: SiteStretches
     limit: int | None = DEFAULT_LIMIT
 
     @property
@@ -154,10 +152,10 @@ def list_isomers(symbol: str, centre: str, ligands: Sequence[str], donors: Seque
     if limit is not None and limit < 1:
         raise VibsymError(f"--limit {limit}: give the number of isomers to list, at least 1")
     found = isomers(symbol, centre, ligands, donors)
-    return IsomerList(found, find_oscillators(found, oscillators), limit)
+    return IsomerList(found, find_stretches(found, oscillators), limit)
 
 
-def find_oscillators(found: Isomers, text: str | None = None) -> Oscillators:
+def find_stretches(found: Isomers, text: str | None = None) -> SiteStretches:
     """Return the set of stretches that `C-O`, `Mo-C-O` or `Mo-Cl` names, or the usual one of the composition.
 
     A bond from the centre names the donor by its element or by its ligand.
@@ -167,12 +165,12 @@ def find_oscillators(found: Isomers, text: str | None = None) -> Oscillators:
     for pair in USUAL:
         colours = _diatomic(found, pair)
         if colours:
-            return Oscillators(f"stretch {'-'.join(pair)}", colours)
+            return SiteStretches(f"stretch {'-'.join(pair)}", colours)
     donor = found.ligands[0].donors[0]
     return _named(found, f"{found.centre}-{donor.element or found.ligands[0].name}")
 
 
-def _named(found: Isomers, text: str) -> Oscillators:
+def _named(found: Isomers, text: str) -> SiteStretches:
     parts = [part.strip() for part in text.strip().replace("–", "-").split("-")]
     if len(parts) == 3 and found.centre in (parts[0], parts[2]):
         parts = parts[1:] if parts[0] == found.centre else parts[:2]
@@ -186,7 +184,7 @@ def _named(found: Isomers, text: str) -> Oscillators:
         possible += [f"{found.centre}-{donor.element or ligand.name}"
                      for ligand in found.ligands for donor in ligand.donors]
         raise VibsymError(f"--oscillators '{text}': no such bond; here are {', '.join(dict.fromkeys(possible))}")
-    return Oscillators("stretch " + "-".join(parts), colours)
+    return SiteStretches("stretch " + "-".join(parts), colours)
 
 
 def _diatomic(found: Isomers, pair: tuple[str, ...]) -> frozenset[int]:

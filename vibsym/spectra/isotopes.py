@@ -8,13 +8,12 @@ fundamental in Fermi resonance must be deperturbed first.  Source: G. Herzberg, 
 II,6.
 """
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import cached_property
 from math import prod
 
-from vibsym.groups.descent import descend_gamma
-from vibsym.spectra.activity import Counts, count_bands
+from vibsym.spectra.activity import Counts, activity_changes, count_bands
 from vibsym.spectra.fermi import Doublet, deperturbed
 from vibsym.spectra.modes import Mode
 from vibsym.structures.isotopes import Substitution, substitution
@@ -144,26 +143,6 @@ def limits(line: ProductLine, pair: Substitution) -> tuple[float, float]:
     high = min(EACH * line.hydrogenic + SPARE, HIGHEST)
     lighter = pair.substituted.structure.masses.sum() < pair.original.structure.masses.sum()
     return (-high, -LOW) if lighter else (LOW, high)
-
-
-def activity_changes(group, lower, correlation: Mapping[str, Mapping[str, int]],
-                     gamma: Mapping[str, int]) -> tuple[dict, ...]:
-    """Return for each species of `gamma` its parts in the lower group, and what becomes infrared or Raman active."""
-    changes = []
-    for label, modes in gamma.items():
-        species = group.species_named(label)
-        parts = [lower.species_named(below) for below in correlation[label]]
-        changes.append({"species": label, "modes": modes, "becomes": dict(correlation[label]),
-                        "splits": sum(correlation[label].values()) > 1,
-                        "infrared": [species.infrared, any(part.infrared for part in parts)],
-                        "raman": [species.raman, any(part.raman for part in parts)]})
-    return tuple(changes)
-
-
-def descended_counts(gamma: Mapping[str, int], correlation, lower) -> tuple[dict[str, int], Counts]:
-    """Return Γ and the band counts after a descent in symmetry."""
-    below = descend_gamma(gamma, correlation, lower)
-    return below, count_bands(below, lower)
 
 
 def _by_species(lines: Sequence[Mode], correlation, group) -> dict[str, list[Mode]]:

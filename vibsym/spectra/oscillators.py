@@ -14,7 +14,7 @@ from functools import cached_property
 import numpy as np
 
 from vibsym.errors import VibsymError
-from vibsym.spectra.activity import Counts, count_bands
+from vibsym.spectra.activity import SetBands, count_bands
 from vibsym.structures.bonds import neighbours
 from vibsym.structures.equivalent_bonds import symmetric_bonds
 from vibsym.structures.periodic import is_metal
@@ -24,21 +24,6 @@ from vibsym.structures.symmetry import LOCAL_TOLERANCE, Symmetry
 from vibsym.vibrations.internal import CoordinateSet
 from vibsym.vibrations.naming import bond_name
 from vibsym.vibrations.representation import coordinate_basis
-
-
-@dataclass(frozen=True)
-class OscillatorBands:
-    """The stretches of a set in a group: their species and the bands each spectrum can show at most."""
-
-    name: str
-    gamma: dict[str, int]
-    counts: Counts
-
-    def to_dict(self) -> dict:
-        """Return the object for JSON."""
-        counts = self.counts
-        return {"set": self.name, "gamma": dict(self.gamma), "infrared": counts.infrared, "raman": counts.raman,
-                "coincident": counts.coincident, "polarised": counts.polarised}
 
 
 @dataclass(frozen=True)
@@ -62,7 +47,7 @@ class LocalSymmetry:
     reduced: ReducedObject
     symmetry: Symmetry
     whole: Symmetry
-    bands: OscillatorBands
+    bands: SetBands
 
     @cached_property
     def ladder(self):
@@ -97,7 +82,7 @@ class LocalSymmetry:
 class Oscillators:
     """A set of stretches beside the whole molecule: their bands in its group and, if asked for, in their own."""
 
-    bands: OscillatorBands
+    bands: SetBands
     local: LocalSymmetry | None
     notes: tuple[str, ...] = ()
 
@@ -132,12 +117,12 @@ def oscillators(symmetry: Symmetry, wanted: str, local: bool = False, tolerance:
     return Oscillators(bands, found, notes)
 
 
-def stretch_bands(symmetry: Symmetry, name: str, pairs: np.ndarray) -> OscillatorBands:
+def stretch_bands(symmetry: Symmetry, name: str, pairs: np.ndarray) -> SetBands:
     """Return the species and the bands of the stretches of bonded pairs (n, 2)."""
     ordered = np.unique(np.sort(np.asarray(pairs, dtype=int), axis=1), axis=0)
     found = coordinate_basis(symmetry, CoordinateSet(name, "stretch", ordered)).reduce()
     gamma = {symmetry.group.image_labels.get(label, label): n for label, n in found.items()}
-    return OscillatorBands(name, gamma, count_bands(gamma, symmetry.group))
+    return SetBands(name, gamma, count_bands(gamma, symmetry.group))
 
 
 def find_oscillators(structure: Structure, bonds: np.ndarray, wanted: str) -> tuple[str, np.ndarray, str | None]:

@@ -9,11 +9,10 @@ a species is what it adds to the rank of B (vibsym/vibrations/redundancy.py).  S
 from collections.abc import Callable
 from dataclasses import dataclass
 from functools import cached_property
-from typing import NamedTuple
 
 import numpy as np
 
-from vibsym.spectra.activity import Counts, count_bands
+from vibsym.spectra.activity import SetBands, count_bands
 from vibsym.structures.equivalent_bonds import symmetric_bonds
 from vibsym.structures.symmetry import Symmetry
 from vibsym.vibrations.internal import internal_coordinates
@@ -21,20 +20,6 @@ from vibsym.vibrations.redundancy import Independence, independence
 
 # Beyond these the regions are left out for time: displacements of one species, atoms, entries of B.
 MOST_DISPLACEMENTS, MOST_ATOMS, MOST_ENTRIES = 900, 1200, 6_000_000
-
-
-class Region(NamedTuple):
-    """A set of coordinates, its share in each species and the bands it can show."""
-
-    name: str
-    gamma: dict[str, int]
-    counts: Counts
-
-    def to_dict(self) -> dict:
-        """Return the region for JSON."""
-        counts = self.counts
-        return {"set": self.name, "gamma": dict(self.gamma), "infrared": counts.infrared, "raman": counts.raman,
-                "coincident": counts.coincident, "polarised": counts.polarised}
 
 
 @dataclass(frozen=True, eq=False, repr=False)
@@ -45,12 +30,12 @@ class Regions:
     symmetry: Symmetry
 
     @cached_property
-    def rows(self) -> tuple[Region, ...]:
+    def rows(self) -> tuple[SetBands, ...]:
         """One region for each set, also those whose coordinates are all redundant."""
         if self.independence is None:
             return ()
         found = self.independence
-        return tuple(Region(each.name, dict(share), count_bands(share, self.symmetry.group))
+        return tuple(SetBands(each.name, dict(share), count_bands(share, self.symmetry.group))
                      for each, share in zip(found.sets, found.shares, strict=True))
 
     @property

@@ -30,6 +30,7 @@ class AxisChoice:
     notes: tuple[str, ...]
 
     def to_dict(self) -> dict:
+        """Return the choice for JSON."""
         return {"axes": dict(self.words), "exchange": list(self.exchange), "decided": self.decided,
                 "notes": list(self.notes)}
 

@@ -13,6 +13,8 @@ from vibsym.tables import table_text
 
 
 class Element(NamedTuple):
+    """A row of `tables/elements.csv`."""
+
     number: int
     symbol: str
     name: str
@@ -24,6 +26,8 @@ class Element(NamedTuple):
 
 
 class Isotope(NamedTuple):
+    """A row of `tables/isotopes.csv`."""
+
     mass_number: int
     mass: float                  # u
     abundance: float             # fraction

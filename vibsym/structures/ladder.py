@@ -55,6 +55,7 @@ class Rung:
 
     @cached_property
     def symmetry(self) -> Symmetry:
+        """The structure placed in this group, with its axes."""
         return self.work_out()
 
 

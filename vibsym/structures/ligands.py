@@ -15,10 +15,10 @@ from functools import cache
 
 from vibsym.errors import VibsymError
 from vibsym.structures.elements import element, elements
+from vibsym.structures.labels import HYDROGEN_ISOTOPES
 from vibsym.tables import read_table
 
 MOST_SITES = 9
-HYDROGEN_ISOTOPES = {"D": 2, "T": 3}
 _CHELATE = re.compile(r"(?P<name>[^\s()\[\],=]+)"
                       r"(?:\((?P<chain>[^()\[\]]*,[^()\[\]]*)\)|\[(?P<ring>[^()\[\]]*,[^()\[\]]*)\])")
 _NAME = re.compile(r"[^\s,=\[\]]+")

@@ -29,11 +29,13 @@ class LinearPlacement:
 
     @cached_property
     def shifts(self) -> np.ndarray:
+        """Distance of each atom from its averaged place, (N,), Å."""
         difference = self.points - self.averaged
         return np.sqrt((difference * difference).sum(axis=1))
 
     @property
     def deviation(self) -> float:
+        """The largest shift, Å."""
         return float(self.shifts.max())
 
 

@@ -49,9 +49,9 @@ def parse(lines: Sequence[str], start: int, name: str) -> Structure:
                           "line, ending in V2000 or V3000); complete the head")
     first_line = None
     if lines[counts].rstrip().endswith("V3000"):
-        from vibsym.structures.molfile_v3000 import read_table
+        from vibsym.structures.molfile_v3000 import read_v3000
 
-        table = read_table(lines, counts, name)
+        table = read_v3000(lines, counts, name)
     else:
         table = _read_v2000(lines, counts, name)
         first_line = counts + 2

@@ -13,7 +13,7 @@ from vibsym.structures.numbers import read_coordinate
 PREFIX = "M  V30 "
 
 
-def read_table(lines: Sequence[str], counts: int, name: str) -> Connections:
+def read_v3000(lines: Sequence[str], counts: int, name: str) -> Connections:
     """Return the connection table below the counts line `lines[counts]`."""
     table = Connections([], [], [], {}, {}, {})
     places: dict[str, int] = {}             # the file's number of an atom -> from 0

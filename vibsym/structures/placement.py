@@ -28,10 +28,12 @@ class Placement:
 
     @property
     def deviation(self) -> float:
+        """The largest shift, Å."""
         return float(self.shifts.max())
 
     @property
     def order(self) -> int:
+        """How many operations the group has."""
         return len(self.matrices)
 
 

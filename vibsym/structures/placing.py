@@ -12,7 +12,8 @@ import numpy as np
 
 from vibsym.errors import VibsymError
 from vibsym.structures.elements import covalent_radius, elements
-from vibsym.structures.ligands import HYDROGEN_ISOTOPES, Ligand, read_ligands
+from vibsym.structures.labels import HYDROGEN_ISOTOPES
+from vibsym.structures.ligands import Ligand, read_ligands
 from vibsym.structures.polyhedra import Shape, shape
 from vibsym.structures.structure import Structure
 

@@ -11,7 +11,8 @@ from collections.abc import Sequence
 
 from vibsym.structures.arrangements import Colour
 from vibsym.structures.elements import atomic_number
-from vibsym.structures.ligands import HYDROGEN_ISOTOPES, Ligand
+from vibsym.structures.labels import HYDROGEN_ISOTOPES
+from vibsym.structures.ligands import Ligand
 
 MOST_RANKINGS = 24              # beyond, no index is worked out: too many donors are unknown
 

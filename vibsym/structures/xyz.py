@@ -18,6 +18,8 @@ MASS_WINDOW = 0.05      # u; how near a fifth column must come to an isotope or 
 
 
 class Columns(NamedTuple):
+    """Where the columns of an atom line begin, from 0; `mass` is None where there is none."""
+
     species: int
     position: int
     mass: int | None

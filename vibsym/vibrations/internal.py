@@ -190,6 +190,7 @@ class _Frame:
         self.passed = {triple[1] for triple, flat in self.triples if flat and len(self.beside[triple[1]]) == 2}
 
     def stretches(self):
+        """Yield (name, atoms) of the bonds."""
         for i, j in self.bonds:
             yield bond_name((self.labels[i], self.labels[j])), (i, j)
 
@@ -201,6 +202,7 @@ class _Frame:
                 for kind, found in (("linear bend", linear), ("bend", bent))]
 
     def wags(self):
+        """Yield (name, atoms, parts) of planar centres with three or more neighbours."""
         for centre, around in enumerate(self.beside):
             if len(around) < 3:
                 continue
@@ -219,6 +221,7 @@ class _Frame:
                 yield name, atoms, parts
 
     def torsions(self):
+        """Yield (name, atoms, parts) of every bond, or straight chain, with neighbours at both ends."""
         for chain in self._chains():
             a, b = chain[0], chain[-1]
             left = [i for i in self.beside[a] if i != chain[1]]

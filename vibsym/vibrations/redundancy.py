@@ -150,6 +150,7 @@ class RankLadder:
 
     @property
     def rank(self) -> int:
+        """The rank of what has come so far."""
         return len(self.found)
 
     def add(self, rows: np.ndarray) -> int:
