@@ -12,6 +12,7 @@ from molecules import atoms, on_axis, ring
 from vibsym.cli.main import cli
 from vibsym.errors import VibsymError
 from vibsym.groups.symbols import plain_label
+from vibsym.report.contours import gas_parts
 from vibsym.spectra.contours import gas_phase, parse_zeta, separation_parallel, separation_spherical
 from vibsym.spectra.expectation import expect
 from vibsym.structures.structure import Structure
@@ -324,3 +325,19 @@ def test_separations_of_asymmetric_tops_name_their_source():
     sulfide = {each.type: each for each in gas_of("hydrogen-sulfide")[0].contours}
     assert sulfide["A"].source == "rigid rotor, summed"  # nearly oblate, the moment in the plane
     assert branch_separation((9.4, 0.3433, 0.3306), 2, 206.0) is None
+
+
+def test_near_prolate_tops_have_q_branches_and_hybrids_a_reason():
+    """HOOH, C2: one species is type C, 2A - B - C apart by K structure; the other A/B, of unknown shares."""
+    places = [[0.7375, 0, 0], [-0.7375, 0, 0], [0.817, 0.5303, 0.7822], [-0.817, 0.5303, -0.7822]]
+    symmetry = expect(Structure.from_atoms(["O", "O", "H", "H"], places)).symmetry
+    gas = gas_phase(symmetry, {"A": 4, "B": 2})
+    a, b, c = gas.rotor.constants
+    whole, hybrid = gas.contours
+    assert whole.type == "C" and whole.separation is None and whole.spacing == pytest.approx(2 * a - b - c)
+    assert hybrid.type == "A/B hybrid" and any("hybrid bands" in note for note in gas.notes)
+    assert "0.000" in render_axes(gas) and "−0.000" not in render_axes(gas)
+
+
+def render_axes(gas):
+    return str([part.pairs for part in gas_parts(gas)[:1]])

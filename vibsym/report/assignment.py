@@ -61,7 +61,8 @@ def _row(row) -> tuple[str, ...]:
 
 
 def _left_over(band) -> str:
-    return f"{band.spectrum} {band} {', '.join(filter(None, {line.strength for line in band.lines}))}".strip()
+    told = dict.fromkeys(each for line in band.lines for each in (line.strength, line.polarisation) if each)
+    return f"{band.spectrum} {band} {', '.join(told)}".strip()
 
 
 def _active(mode) -> str:

@@ -14,7 +14,7 @@ and R maxima, cm-1 (papers from memory):
 The last holds only as far as the top is nearly symmetric about that axis.  So the lines of the rigid rotor are summed
 (vibsym/vibrations/envelope.py): where the formula agrees within 10 % it is given, else the sum, and for type B always
 the sum.  None is given for hybrids, whose shares are not known.  Perpendicular bands of symmetric tops are Q branches
-2[A(1 - ζ) - B] apart.
+2[A(1 - ζ) - B] apart, those of types B and C near the prolate limit 2A - B - C where they leave no two wings.
 """
 
 from collections.abc import Mapping
@@ -33,6 +33,8 @@ EDGELL_MOYNIHAN = "Edgell & Moynihan 1957"
 SETH_PAUL = "Seth-Paul 1969"
 ESTIMATED = "normal"               # Coriolis constants from the normal modes of the valence force field
 RIGID_ROTOR = "rigid rotor, summed"
+NEAR_PROLATE = "Herzberg 1945, near prolate"
+NEARLY = 0.9                       # Ray's κ beyond this: nearly a symmetric top
 TRUSTED = 0.1                      # how far the formula for asymmetric tops may be from the rigid rotor
 
 
@@ -94,7 +96,8 @@ def gas_phase(symmetry: Symmetry, gamma_vib: Mapping[str, int], temperature: flo
             contours.append(_contour(top, species, temperature, zetas.get(label)))
         for name, value in own.get(label, ()):
             contours.append(replace(_contour(top, species, temperature, value), mode=name))
-    return GasPhase(top, temperature, tuple(contours), spin_weights(symmetry), _notes(symmetry, top))
+    notes = _notes(symmetry, top) + _missing(contours)
+    return GasPhase(top, temperature, tuple(contours), spin_weights(symmetry), notes)
 
 
 def separation_parallel(about: float | None, across: float, temperature: float) -> float:
@@ -192,6 +195,9 @@ def _asymmetric(top: Rotor, species, inside: np.ndarray, temperature: float) -> 
     axis = "ABC".index(letters[0])
     branches = "PR" if letters[0] == "B" else "PQR"       # type B: a minimum in the centre
     summed = branch_separation(top.constants, axis, temperature / HC_OVER_K)
+    if summed is None and axis > 0 and top.ray < -NEARLY:
+        spacing = 2 * top.constants[0] - top.constants[1] - top.constants[2]
+        return Contour(species.label, letters[0], branches, None, spacing, source=NEAR_PROLATE)
     if summed is None:
         return Contour(species.label, letters[0], branches)
     about, across = top.constants[axis], sum(value for k, value in enumerate(top.constants) if k != axis) / 2
@@ -211,9 +217,21 @@ def _notes(symmetry: Symmetry, top: Rotor) -> tuple[str, ...]:
     notes = []
     if not top.by_symmetry:
         notes.append(f"two moments agree within {1e-4:.0e} by chance: a {top.kind} top only in its contours")
-    if top.ray is not None and abs(top.ray) > 0.9:
+    if top.ray is not None and abs(top.ray) > NEARLY:
         ray = f"{top.ray:.3f}".replace("-", "−")
         notes.append(f"Ray's κ = {ray}: nearly a {'prolate' if top.ray < 0 else 'oblate'} symmetric top")
     if symmetry.group.symbol in ("C∞v", "D∞h") and spin_weights(symmetry) is None:
         notes.append("a nuclear spin is not in tables/nuclear_spins.csv: no statistical weights")
+    return tuple(notes)
+
+
+def _missing(contours: list[Contour]) -> tuple[str, ...]:
+    """Say why bands have no P-R separation."""
+    without = [each for each in contours if each.separation is None and each.spacing is None]
+    hybrids = [each for each in without if each.type.endswith("hybrid")]
+    notes = []
+    if hybrids:
+        notes.append("no P–R separation of hybrid bands: how much of each type a band holds is not known from symmetry")
+    if len(without) > len(hybrids):
+        notes.append("no P–R separation where the summed lines of the rigid rotor show no two wings")
     return tuple(notes)
