@@ -75,7 +75,7 @@ def test_two_distortions_of_unlike_size():
 
 
 def test_loose_geometry_from_c1_upwards():
-    """The case of needs.md: C1 at 0.02 Å, a higher group within 0.06 and D4h within 0.35."""
+    """A loose rectangle: C1 or a little more at 0.02 Å, D2h higher up."""
     rng = np.random.default_rng(41)
     rectangle = np.array([[0, 0, 0], [0.3, 0, 0], [0, -0.3, 0], [-0.3, 0, 0], [0, 0.3, 0]])
     result = ladder(xef4(rectangle + noise(rng, 5, 0.06)), tolerance=0.02)

@@ -66,8 +66,7 @@ def _sheet(structure, observed, proposal: Proposal, options: ScreenOptions) -> S
         return sheet
     if len(found.structure) > MOST_ATOMS:
         return replace(sheet, omitted=(f"{len(found.structure)} atoms: symmetry coordinates and normal modes are left "
-                                       f"out "
-                                       "of the page; vibsym coordinates and vibsym normal have them",))
+                                       "out of the page; vibsym coordinates and vibsym normal have them",))
     omitted: list[str] = []
     coordinates = _tried(omitted, "Symmetry coordinates", _coordinates, found.symmetry)
     estimates = _tried(omitted, "Normal modes", _estimates, found.symmetry)

@@ -1,9 +1,9 @@
 """Where each axis points, in words a chemist can check, and which labels another choice of axes would exchange.
 
-Labels such as B1 and B2 mean nothing without the axes (conventions.md, "Axes"): words name the atoms and bonds that
-an axis passes through, or the plane it stands on. They are computed only when asked for. Known clashes with print are
-told where they apply: R. S. Mulliken, J. Chem. Phys. 23, 1997 (1955) against T. Shimanouchi, NSRDS-NBS 39 (1972), and
-common practice for porphyrins.
+Labels such as B1 and B2 mean nothing without the axes: words name the atoms and bonds that an axis passes through, or
+the plane it stands on. They are computed only when asked for. Known clashes with print are told where they apply:
+R. S. Mulliken, J. Chem. Phys. 23, 1997 (1955) against T. Shimanouchi, NSRDS-NBS 39 (1972), and common practice for
+porphyrins.
 """
 
 from collections import Counter
@@ -117,7 +117,6 @@ class _View:
         if order == 1:
             return ""
         # in D3d, D5d the axis is named by its rotation, in D2d, D4d, S4, Td by the rotation-reflection
-        # (conventions.md)
         named = self.group.symbol[0] in "ST" or (self.group.symbol[-1] == "d" and order % 2 == 0)
         if named and improper.sum() == order and not self._mirror(direction):
             return f"S{2 * order} axis"

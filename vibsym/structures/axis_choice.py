@@ -1,4 +1,4 @@
-"""Which of the equally good frames of a group labels its species: the ladder of choice (conventions.md, "Axes").
+"""Which of the equally good frames of a group labels its species: the ladder of choice.
 
 Only C2v, D2, D2h, C(2k)v, D(2k), D(2k)h (k >= 2) leave a choice that labels depend on (vibsym/groups/settings.py).
 Between elements of one kind the ladder asks for (1) more atoms on it; (2) more bonds cut by it or lying in it; (3) the

@@ -104,9 +104,8 @@ def _section(number: int, title: str, place: str, text: str) -> str:
 def _foot(report: Report) -> str:
     made = f"<pre><code>{escape(report.command)}</code></pre>" if report.command else ""
     return (f'<section id="made"><h2>How this page was made</h2>{made}<p>vibsym {__version__}. The results stand in '
-            f'this '
-            "file as JSON too (script elements named result-...); the page loads nothing from the "
-            "network.</p></section>")
+            "this file as JSON too (script elements named result-...); the page loads nothing from the network.</p>"
+            "</section>")
 
 
 def _results(report: Report) -> str:

@@ -49,7 +49,7 @@ def _after_verdicts(screening) -> list:
 def _expect(report: Report, sheet: Sheet, prefix: str) -> str:
     """What to expect: the counts as a tally, the species, the representations."""
     before, _, after = _divided(sheet)
-    counts = sheet.expectation.to_dict()["counts"]
+    counts = sheet.expectation.counts.to_dict()
     words = (("fundamentals", "fundamentals", ""), ("infrared", "infrared at most", "▲"),
              ("raman", "Raman at most", "▼"),
              ("coincident", "in both", "◆"), ("polarised", "polarised", "●"), ("silent", "silent", "·"))
@@ -66,6 +66,7 @@ def _expect(report: Report, sheet: Sheet, prefix: str) -> str:
 
 
 def _regions(report: Report, sheet: Sheet, prefix: str) -> str:
+    """Γvib by region; the heading is that of the section."""
     headed = [getattr(part, "heading", "") == "By region" for part in _divided(sheet)[1]]
     return set_html([part._replace(heading="") if own else part for part, own in zip(_divided(sheet)[1], headed)])
 
@@ -80,13 +81,14 @@ def _bands(report: Report, sheet: Sheet, prefix: str) -> str:
         sticks, title = estimate_sticks(sheet.estimates.modes), "Estimated places of the bands"
     else:
         return ""
-    estimated = ("" if report.observed is not None else "<p>No bands were given: these are rough estimates of a "
-                                                        "valence force "
-                 "field, not a spectrum; how strong a band is cannot be told from symmetry.</p>")
+    estimated = "" if report.observed is not None else (
+        "<p>No bands were given: these are rough estimates of a valence force field, not a spectrum; how strong a band "
+        "is cannot be told from symmetry.</p>")
     return estimated + plot(sticks, title, prefix=prefix) + f'<p class="key">{escape(KEY)}</p>'
 
 
 def _assignment(report: Report, sheet: Sheet, prefix: str) -> str:
+    """Which band is which mode, and how firm."""
     found = sheet.assignment
     if found is None:
         return ""
@@ -155,37 +157,36 @@ def _motion_cards(report: Report, sheet: Sheet, prefix: str) -> str:
     if modes:
         shown = modes[:MOST_MODES]
         text += ("<p>Normal modes of the valence force field, numbered as fundamentals; wavenumbers are its rough "
-                 "harmonic "
-                 "estimates. Of a degenerate set one component is drawn. Arrows show where the atoms move; a dot in a "
-                 "ring comes towards you, a cross in a ring goes away.</p>")
+                 "harmonic estimates. Of a degenerate set one component is drawn. Arrows show where the atoms move; a "
+                 "dot in a ring comes towards you, a cross in a ring goes away.</p>")
         text += cards(sheet.scene, shown, skeleton, prefix) + _more(len(modes) - len(shown), "vibsym normal")
         text += _fallback(sheet)
     coordinates = _coordinates(sheet)
     if coordinates:
         shown = coordinates[:MOST_COORDINATES]
         text += ("<details><summary>Symmetry coordinates, set by set</summary><p>The first component of each "
-                 "combination; "
-                 "the atoms are drawn as a force along the coordinate moves them.</p>"
+                 "combination; the atoms are drawn as a force along the coordinate moves them.</p>"
                  + cards(sheet.scene, shown, skeleton, prefix, _formulas(sheet))
                  + _more(len(coordinates) - len(shown), "vibsym coordinates") + "</details>")
     return text
 
 
 def _conventions(report: Report, sheet: Sheet, prefix: str) -> str:
+    """What to beware of, and the rules of labels, counts and numbers."""
     notes = [*sheet.expectation.notes, *sheet.omitted]
     if sheet.assignment is not None:
         notes += sheet.assignment.notes
     if report.observed is not None and report.screening is None:
         notes += report.observed.notes
     rules = ("Species: Mulliken's labels in the axes stated beside the structure; another choice of axes exchanges "
-             "labels "
-             "where that is said there (IUPAC, Pure Appl. Chem. 69, 1641 (1997)).",
+             "labels where that is said there (IUPAC, Pure Appl. Chem. 69, 1641 (1997)).",
              "A degenerate set is one band; counts are of fundamentals and upper bounds. Symmetry permits, it never "
              "promises.",
              "Fundamentals are numbered by species in Herzberg's order and by falling wavenumber within a species.")
     return set_html([Listing(tuple(dict.fromkeys(notes)), "Beware"), Listing(rules, "Conventions")])
 
 
+# Anchor, heading, function of (report, sheet, prefix of ids on the page); an empty text leaves the section out.
 SECTIONS = (("expect", "What to expect", _expect), ("regions", "By region", _regions), ("bands", "Bands", _bands),
             ("assignment", "Which band is which mode", _assignment), ("leftover", "Lines left over", _leftovers),
             ("motions", "How it moves", _motion_cards), ("conventions", "Conventions and cautions", _conventions))

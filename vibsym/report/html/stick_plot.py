@@ -54,9 +54,8 @@ def curve(found) -> str:
 
 
 KEY = ("Infrared stands up on solid sticks, Raman hangs down on broken ones; wavenumbers fall to the right. A full "
-       "disc "
-       "at the tip: polarised, an open one: depolarised, a question mark: left over. Small triangles: estimates of the "
-       "force field. Heights follow the stated strength.")
+       "disc at the tip: polarised, an open one: depolarised, a question mark: left over. Small triangles: estimates "
+       "of the force field. Heights follow the stated strength.")
 
 
 def _polarisation(line) -> str:
