@@ -5,12 +5,10 @@ The predictions of one region (`regional.py`) are named and bounded by the same 
 
 from dataclasses import dataclass
 
-import numpy as np
-
 from vibsym.spectra.expectation import expect
 from vibsym.spectra.prediction import Prediction, SpeciesBands, bands_of_gamma
 from vibsym.structures.structure import Structure
-from vibsym.structures.symmetry import DEFAULT_TOLERANCE, LOCAL_TOLERANCE, Symmetry, within
+from vibsym.structures.symmetry import DEFAULT_TOLERANCE, LOCAL_TOLERANCE, Symmetry, operations_become, within
 
 
 @dataclass(frozen=True)
@@ -41,21 +39,7 @@ def bands_within(gamma: dict[str, int], symmetry: Symmetry, true: Symmetry | Non
     """Return the bands of a representation, with what the lower true group and ligands taken as points let through."""
     if true is None:
         return bands_of_gamma(gamma, symmetry.group, point_like=point_like)
-    return bands_of_gamma(gamma, symmetry.group, true.group, embedding(symmetry, true), point_like)
-
-
-def embedding(higher: Symmetry, lower: Symmetry) -> np.ndarray:
-    """Return (h,) for each operation of the lower group the one of the higher group that it has become.
-
-    Both are compared as they stand in space: the nearest one of the same determinant, since the axes of an approached
-    group lie a little askew.
-    """
-    def in_space(symmetry: Symmetry) -> np.ndarray:
-        return np.einsum("ba,rbc,cd->rad", symmetry.frame, symmetry.group.image.matrices, symmetry.frame)
-    above, below = in_space(higher), in_space(lower)
-    distance = np.linalg.norm(above[None] - below[:, None], axis=(2, 3))
-    distance += 10 * (np.linalg.det(above)[None] * np.linalg.det(below)[:, None] < 0)
-    return distance.argmin(axis=1)
+    return bands_of_gamma(gamma, symmetry.group, true.group, operations_become(true, symmetry), point_like)
 
 
 def name_of(structure: Structure, symmetry: Symmetry | None = None, true: Symmetry | None = None) -> str:

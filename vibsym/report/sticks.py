@@ -1,4 +1,4 @@
-"""Bands as sticks on one wavenumber axis, infrared upwards and Raman downwards; and as a strip of text.
+"""Bands as sticks on one wavenumber axis, infrared upwards and Raman downwards.
 
 What a stick says does not hang on colour: infrared sticks are solid and stand on the axis, Raman sticks are broken and
 hang from it; a polarised line ends in a full disc, one measured depolarised in an open one, a line left over in a

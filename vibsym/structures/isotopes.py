@@ -18,7 +18,7 @@ from vibsym.groups.descent import Correlation, correlation_in_frame, restrict
 from vibsym.structures.finder import find_symmetry
 from vibsym.structures.labels import is_dummy, read_label
 from vibsym.structures.structure import Structure
-from vibsym.structures.symmetry import DEFAULT_TOLERANCE, Symmetry
+from vibsym.structures.symmetry import DEFAULT_TOLERANCE, Symmetry, operations_become
 
 MOST_ARRANGEMENTS = 2**16          # beyond, a listing helps nobody
 
@@ -130,13 +130,9 @@ def correlation_between(symmetry: Symmetry, common: Symmetry) -> Correlation:
     parent, group = symmetry.group, common.group
     if group.infinite:                                    # linear, or one atom: the axis is the same
         return correlation_in_frame(parent, group)
-    frame = common.frame @ symmetry.frame.T               # axes of the lower group in those of the higher
-    turned = np.einsum("ba,cbd,de->cae", frame, group.matrices, frame).reshape(group.order, 1, 9)
     if parent.infinite:
-        return correlation_in_frame(parent, group, frame)
-    # the elements were placed by least squares, each for its own group: the nearest operation is meant
-    places = np.abs(turned - parent.matrices.reshape(1, -1, 9)).max(axis=2).argmin(axis=1)
-    return restrict(parent, group, places)
+        return correlation_in_frame(parent, group, common.frame @ symmetry.frame.T)
+    return restrict(parent, group, operations_become(common, symmetry))
 
 
 def isotopologues(structure: Structure, replacements: str, tolerance: float = DEFAULT_TOLERANCE,

@@ -56,3 +56,16 @@ class Symmetry:
         group = self.group
         return {"symbol": group.symbol, "order": group.order, "tolerance": self.tolerance, "deviation": self.deviation,
                 "chiral": bool(group.chiral), "centrosymmetric": bool(group.centrosymmetric)}
+
+
+def operations_become(lower: Symmetry, higher: Symmetry) -> np.ndarray:
+    """Return (h,) for each operation of a group which one it is in a higher group of the same structure.
+
+    Both are compared as they stand in space.  The elements were placed by least squares, each for its own group, so
+    they lie a little askew: the nearest operation of the same determinant is meant.
+    """
+    above, below = (np.einsum("ba,rbc,cd->rad", each.frame, each.group.image.matrices, each.frame)
+                    for each in (higher, lower))
+    distance = np.linalg.norm(above[None] - below[:, None], axis=(2, 3))
+    distance += 10 * (np.linalg.det(above)[None] * np.linalg.det(below)[:, None] < 0)
+    return distance.argmin(axis=1)
