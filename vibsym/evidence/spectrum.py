@@ -183,7 +183,7 @@ def _finite(x: np.ndarray, y: np.ndarray, source: str, notes: list[str]) -> tupl
         raise VibsymError(f"{source}: {bad} of {len(x)} points are not numbers; export the spectrum again")
     if bad:
         where = ", ".join(f"{value:g}" for value in x[~good][:4]) + (" ..." if bad > 4 else "")
-        notes.append(f"{source}: {bad} points without a finite value were left out (at {where})")
+        notes.append(f"{source}: {bad} point{'s' if bad > 1 else ''} without a finite value left out (at {where})")
     return x[good], y[good]
 
 

@@ -40,7 +40,8 @@ def _axis(rotor: Rotor, place: int) -> str:
     """Constant, moment and direction of a principal axis."""
     direction = rotor.axes[place]
     along = [name for name, part in zip("xyz", direction) if abs(part) > 1 - 1e-6]
-    words = along[0] if along else "(" + ", ".join(f"{round(part, 3) + 0:.3f}" for part in direction).replace("-", "−") + ")"
+    parts = ", ".join(_number(round(part, 3) + 0, 3) for part in direction)        # + 0: no part is −0.000
+    words = along[0] if along else f"({parts})"
     where = "" if rotor.kind == "spherical" else f", axis {words}"
     return f"{rotor.constants[place]:.5g} cm-1, I = {rotor.moments[place]:.4f} u Å²{where}"
 
