@@ -23,7 +23,7 @@ _TERM = r"\d*[ABETGHISPDFΣΠΔΦ][₀-₉]*[gu]?[⁺⁻]?[′″]*"
 _PLAIN = re.compile(r"(?<![\w-])(?:[CD]\d{1,2}[vdh]|S\d{1,2}(?= )|\d*[ABETF][123][gu])(?![\w-])|"
                     r"(?<=\()\d*[ABETGH][12]?'*(?: \+ \d*[ABETGH][12]?'*)+(?=\))")      # ASCII labels in sentences
 _NAMED_GROUP = re.compile(r"(?<=oint group )([CTOIK])([sidh])(?![A-Za-z])")
-_REDUCTION = re.compile(rf"(?:ν[₀-₉]+ )?{_TERM}(?: \+ {_TERM})*")
+_REDUCTION = re.compile(rf"(?:(?:\d+(?:\.\d+)? )?ν[₀-₉]+ )?{_TERM}(?: \+ {_TERM})*")
 # "Ag, Hu: stretch C-C", "No vibrations in Ag, Au"
 _LISTED = re.compile(rf"^{_TERM}(?:, {_TERM})*(?=: (?:stretch|bend|linear|wag|torsion))|"
                      rf"(?<=No vibrations in ){_TERM}(?:, {_TERM})*")
@@ -53,10 +53,10 @@ def set_labels(text: str, formula: bool = False) -> str:
 
 
 def is_reduction(text: str) -> bool:
-    """Tell whether a text is nothing but species, so that `Ag` in it is no silver.
+    """Tell whether a text is nothing but species (of a mode at a place), so that `Ag` in it is no silver.
 
-    >>> is_reduction("2Ag + B₁u"), is_reduction("Ag and Hg")
-    (True, False)
+    >>> is_reduction("2Ag + B₁u"), is_reduction("1799 ν₂ Ag"), is_reduction("Ag and Hg")
+    (True, True, False)
     """
     return _REDUCTION.fullmatch(text) is not None
 
