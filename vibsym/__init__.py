@@ -28,9 +28,7 @@ _OWNERS = {
     "screen": "vibsym.evidence.proposals",
     "write_reduction": "vibsym.groups.reduction",
 }
-__all__ = ["Structure", "VibsymError", "assign", "character_table", "climb", "combine", "descend", "expect",
-           "find_symmetry", "isotopes", "ladder", "point_group", "read", "read_all", "read_bands", "reduce", "screen",
-           "write_reduction"]
+__all__ = list(_OWNERS)
 
 
 def __getattr__(name: str):

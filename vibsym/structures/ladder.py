@@ -1,9 +1,9 @@
 """The ladder: the group found, then the higher groups that the structure approaches, each with its deviation.
 
 Only sets of operations that close are groups, so the rungs are closed sets among the operations found at the largest
-legal tolerance: the smaller of 0.5 Å and half the shortest distance between atoms. A rung has a higher order than the
-one below it, a larger deviation, and holds it. The suggested rung is the one before the largest ratio of successive
-deviations, a deviation below 0.005 Å counting as 0.005 (vibsym's own rule).
+legal tolerance: the smaller of 0.5 Å and half the shortest distance between atoms (less above 300 atoms). A rung has a
+higher order than the one below it, a larger deviation, and holds it. The suggested rung is the one before the largest
+ratio of successive deviations, a deviation below 0.005 Å counting as 0.005 (vibsym's own rule).
 """
 
 from collections.abc import Callable
