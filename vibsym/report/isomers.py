@@ -45,11 +45,11 @@ def as_object(result: IsomerList, **_) -> dict:
 
 
 def composition(result: IsomerList) -> str:
-    """Return the composition as it is written: `Mo(CO)4L2`, brackets around names of more than one letter."""
+    """Return the composition as it is written: `Mo(CO)₄L₂`, brackets around names of more than one letter."""
     text = result.isomers.centre
     for ligand in result.isomers.ligands:
         name = ligand.name if len(ligand.name) == 1 or ligand.form == "atom" else f"({ligand.name})"
-        text += name + (str(ligand.count) if ligand.count > 1 else "")
+        text += name + (chr(ord("₀") + ligand.count) if ligand.count > 1 else "")      # nine at most
     return text
 
 

@@ -25,7 +25,7 @@ _PLAIN = re.compile(r"(?<![\w-])(?:[CD]\d{1,2}[vdh]|S\d{1,2}(?= )|\d*[ABETF][123
 _NAMED_GROUP = re.compile(r"(?<=oint group )([CTOIK])([sidh])(?![A-Za-z])")
 _REDUCTION = re.compile(rf"(?:(?:\d+(?:\.\d+)? )?ν[₀-₉]+ )?{_TERM}(?: \+ {_TERM})*")
 # "Ag, Hu: stretch C-C", "No vibrations in Ag, Au"
-_LISTED = re.compile(rf"^{_TERM}(?:, {_TERM})*(?=: (?:stretch|bend|linear|wag|torsion))|"
+LISTED = re.compile(rf"^{_TERM}(?:, {_TERM})*(?=: (?:stretch|bend|linear|wag|torsion))|"
                      rf"(?<=No vibrations in ){_TERM}(?:, {_TERM})*")
 
 
@@ -43,7 +43,7 @@ def set_labels(text: str, formula: bool = False) -> str:
     if whole:
         text = _SPECIES.sub(r"\1\2<sub>\3</sub>", text)
     elif not formula:
-        text = _LISTED.sub(lambda found: _SPECIES.sub(r"\1\2<sub>\3</sub>", found[0]), text)
+        text = LISTED.sub(lambda found: _SPECIES.sub(r"\1\2<sub>\3</sub>", found[0]), text)
     text = _NAMED_GROUP.sub(r"\1<sub>\2</sub>", text)
     text = _GREEK.sub(_greek, text)
     text = _NUMBERED.sub(lambda found: f"<sub>{found[1].translate(_DIGITS)}{found[2] or ''}</sub>", text)

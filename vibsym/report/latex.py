@@ -8,7 +8,7 @@ import re
 import unicodedata
 
 from vibsym.report.document import Facts, Listing, Paragraph, Preformatted, Table, Title
-from vibsym.report.labels import is_reduction
+from vibsym.report.labels import LISTED, is_reduction
 
 PREAMBLE = "% needs \\usepackage{booktabs,longtable,array,amssymb}; made by vibsym --format latex"
 LONG = 40                      # rows; a longer table may break across pages
@@ -49,7 +49,7 @@ def set_latex(parts) -> str:
 def latex(text: str, formula: bool = False) -> str:
     r"""Return a text with everything that LaTeX would take for markup escaped, and Unicode as commands.
 
-    In a `formula` Ag is silver; elsewhere a text of nothing but species has their indices.
+    In a `formula` Ag is silver; elsewhere a text of nothing but species, or a list of them in front, has their indices.
 
     >>> latex("A₂″ & 50 %")
     '$\\mathrm{A}_{2}^{\\prime\\prime}$ \\& 50 \\%'
@@ -57,15 +57,25 @@ def latex(text: str, formula: bool = False) -> str:
     '$\\nu_{1}$(C--O) in $\\mathrm{D}_{3\\mathrm{h}}$'
     >>> latex("2Ag + Σu⁺"), latex("Ag in D∞h")
     ('2$\\mathrm{A}_{\\mathrm{g}}$ + $\\Sigma_{\\mathrm{u}}^{+}$', 'Ag in $\\mathrm{D}_{\\infty\\mathrm{h}}$')
+    >>> latex("Eu, Ag: stretch C-N"), latex("1151 cm-1")
+    ('$\\mathrm{E}_{\\mathrm{u}}$, $\\mathrm{A}_{\\mathrm{g}}$: stretch C-N', '1151 cm$^{-1}$')
     """
+    if not formula and (listed := LISTED.search(text)):
+        start, end = listed.span()
+        return latex(text[:start]) + _set_labels(text[start:end], _SPECIES) + latex(text[end:])
+    return _set_labels(text, _SPECIES if is_reduction(text) and not formula else _LABEL)
+
+
+def _set_labels(text: str, labels: re.Pattern) -> str:
+    """Return a text escaped, with what the pattern finds in mathematics mode."""
     out, place = [], 0
-    for match in (_SPECIES if is_reduction(text) and not formula else _LABEL).finditer(text):
+    for match in labels.finditer(text):
         out += map(_plain, text[place:match.start()])
         out.append(f"${_formula(match)}$")
         place = match.end()
     out += map(_plain, text[place:])
     joined = re.sub(r"(\\[A-Za-z]+)\$\$(?=[A-Za-z])", r"\1 ", "".join(out))        # \varphi and z stay two words
-    return re.sub(r"(?<!\\)\$\$", "", joined)
+    return re.sub(r"(?<!\\)\$\$", "", joined).replace("cm-1", "cm$^{-1}$")
 
 
 _ENDLESS = r"(?P<letter>[ΣΠΔΦ])(?P<side>[gu]?)(?P<sign>[⁺⁻]?)(?![A-Za-z])|(?P<axis>[CD])∞(?P<plane>[vh]?)(?![A-Za-z])"
