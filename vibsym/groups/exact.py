@@ -3,7 +3,6 @@
 Axial groups are exact by construction: sign × R(2πa/N) diag(1, -1)^flip with whole a and N.  In the polyhedral groups
 every entry is (p + q√5)/16 or √3 (p + q√5)/16 with small whole p, q; it is recognised among these, which lie far apart
 compared with the rounding of a double, and the tests prove the matrices to be a representation in exact arithmetic.
-sympy is imported only here.
 """
 
 from functools import cache

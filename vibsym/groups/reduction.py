@@ -35,14 +35,13 @@ def reduce(characters: Sequence[float], group) -> dict[str, int]:
     if whole.min() < 0:
         raise VibsymError(f"not a representation of {group.symbol}: {image.labels[int(whole.argmin())]} would occur "
                           f"{int(whole.min())} times")
-    return {group.image_labels[label]: int(n) for label, n in zip(image.labels, whole.tolist(), strict=True) if n}
+    found = {label: int(n) for label, n in zip(image.labels, whole.tolist(), strict=True) if n}
+    if group.infinite and not found.keys() <= group.image_labels.keys():
+        raise VibsymError(f"not a representation of {group.symbol} that displacements can carry: {image.symbol} would "
+                          f"have {', '.join(found)}")
+    return {name: found[label] for label, name in group.image_labels.items() if label in found}
 
 
 def write_reduction(gamma: Mapping[str, int]) -> str:
     """Return a representation as it is written: `3A1 + A2 + 2B1 + 3B2`; an empty one is `0`."""
     return " + ".join((f"{n}" if n != 1 else "") + label for label, n in gamma.items() if n) or "0"
-
-
-def total(gamma: Mapping[str, int], group) -> int:
-    """Return the dimension of a representation: species times degeneracy."""
-    return sum(n * group.species_named(label).degeneracy for label, n in gamma.items())

@@ -2,6 +2,7 @@
 
 from typing import TYPE_CHECKING
 
+from vibsym.groups.reduction import write_reduction
 from vibsym.groups.symbols import hermann_mauguin, typeset, typeset_function
 from vibsym.report.document import Facts, Title
 from vibsym.structures.symmetry import Symmetry, within
@@ -18,8 +19,8 @@ def gamma_text(gamma: dict[str, int]) -> str:
 
 
 def gamma_plain(gamma: dict[str, int]) -> str:
-    """Return a representation with plain labels, for CSV."""
-    return " + ".join((str(count) if count > 1 else "") + label for label, count in gamma.items())
+    """Return a representation with plain labels, for CSV; an empty one stays empty."""
+    return write_reduction(gamma) if gamma else ""
 
 
 def functions_text(functions, degeneracy: int) -> str:

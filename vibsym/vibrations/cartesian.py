@@ -65,8 +65,8 @@ def displacements(symmetry: Symmetry) -> Displacements:
     unmoved = (symmetry.permutations[first] == atoms).sum(axis=1)
     if len(atoms) == 1:
         rotation = np.zeros_like(rotation)
-    gamma_3n = _reduce(unmoved * traces, group)
-    gamma_vib = _reduce(unmoved * traces - traces - rotation, group)
+    gamma_3n = reduce(unmoved * traces, group)
+    gamma_vib = reduce(unmoved * traces - traces - rotation, group)
     gamma_translation, gamma_rotation = _rigid_motions(group.symbol)
     return Displacements(group, unmoved, traces, traces, rotation, gamma_3n, gamma_translation,
                          gamma_rotation if len(atoms) > 1 else {}, gamma_vib)
@@ -94,14 +94,4 @@ def _class_characters(symbol: str) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
 def _rigid_motions(symbol: str) -> tuple[dict[str, int], dict[str, int]]:
     group = point_group(symbol)
     _, translation, rotation = _class_characters(symbol)
-    return _reduce(translation, group), _reduce(rotation, group)
-
-
-def _reduce(chi: np.ndarray, group: "PointGroup | InfiniteGroup") -> dict[str, int]:
-    found = reduce(chi, group)
-    return in_table_order(found, group) if group.infinite else found
-
-
-def in_table_order(gamma: dict[str, int], group: "PointGroup | InfiniteGroup") -> dict[str, int]:
-    """Return the species of `gamma` in the order of the group's table."""
-    return {label: gamma[label] for label in group.labels if label in gamma}
+    return reduce(translation, group), reduce(rotation, group)
