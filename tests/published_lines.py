@@ -1,5 +1,6 @@
 """Published fundamentals as band lists without labels, and how many lines an assignment gives the published species."""
 
+from collections import Counter
 from dataclasses import replace
 
 from vibsym.evidence.assignment import assign
@@ -11,20 +12,19 @@ from vibsym.vibrations.calibration import relabellings
 def lines_of(sample, observed, polarisation: bool):
     """Return the band list of a molecule and the published species of every line: {(spectrum, cm-1): labels}.
 
-    Each fundamental is an infrared and a Raman line as its activity allows; fundamentals of one wavenumber are one
-    line.
+    Each fundamental is an infrared and a Raman line as its activity allows.  Fundamentals of one wavenumber are as many
+    lines, and their labels a multiset: nobody can tell which line is which.
     """
-    group, truth = sample.symmetry.group, {}
+    group, lines = sample.symmetry.group, []
+    truth: dict[tuple[str, float], Counter] = {}
     for label, values in observed.items():
         species = group.species_named(label)
         for value in values:
             for name, active in (("IR", species.infrared), ("Raman", species.raman)):
                 if active and value == value:
-                    truth.setdefault((name, value), set()).add(label)
-    lines = []
-    for (name, value), labels in truth.items():
-        polarised = polarisation and name == "Raman" and all(group.species_named(label).polarised for label in labels)
-        lines.append(Line(value, name, polarisation="p" if polarised else "", polarised=polarised))
+                    polarised = polarisation and name == "Raman" and species.polarised
+                    truth.setdefault((name, value), Counter())[label] += 1
+                    lines.append(Line(value, name, polarisation="p" if polarised else "", polarised=polarised))
     return BandList(tuple(lines), ("IR", "Raman")), truth
 
 
@@ -41,17 +41,15 @@ def judged(sample, estimates, polarisation: bool) -> list[tuple[bool, bool, floa
         bands, truth = lines_of(replace(sample, observed=observed), observed, polarisation)
         if not bands.lines:
             continue
-        found = assign(sample.symmetry, bands, estimates=estimates)
-        lines = [
-            (
-                row.mode.species in truth[band.spectrum, band.lines[0].wavenumber],
-                row.firm,
-                min((cost for _, cost in row.alternatives), default=99.0),
-            )
-            for row in found.assigned
-            for band in (row.infrared, row.raman)
-            if band is not None
-        ]
+        found, lines = assign(sample.symmetry, bands, estimates=estimates), []
+        for row in found.assigned:
+            for band in (row.infrared, row.raman):
+                if band is not None:
+                    left = truth[band.spectrum, band.lines[0].wavenumber]
+                    right = left[row.mode.species] > 0
+                    left[row.mode.species] -= right
+                    least = min((cost for _, cost in row.alternatives), default=99.0)
+                    lines.append((right, row.firm, least))
         lines += [(False, False, 0.0)] * len(found.leftover)
         if not best or sum(line[0] for line in lines) > sum(line[0] for line in best):
             best = lines

@@ -18,14 +18,16 @@ from vibsym.evidence.assignment_costs import (
     LEFT_OVER,
     LEFT_OVER_WEAK,
     UNSEEN,
+    estimate_costs,
     mean_wavenumber,
-    pair_costs,
-    single_costs,
+    range_costs,
+    spectrum_costs,
 )
 from vibsym.evidence.bandlist import BandList
 from vibsym.evidence.coincidence import WINDOW, pair_bands
+from vibsym.evidence.common_errors import CommonErrors
 from vibsym.evidence.lines import Band
-from vibsym.evidence.matching import Costs, Matching, cheapest
+from vibsym.evidence.matching import Costs, Matching
 from vibsym.evidence.pins import Pin, parse_pins, pinned
 from vibsym.structures.finder import find_symmetry
 from vibsym.structures.symmetry import Symmetry
@@ -120,27 +122,35 @@ def assign(
     if not estimates.modes:
         raise VibsymError(f"{symmetry.structure.formula}: no vibrations, so there is nothing to assign")
     bands = observed.bands
-    place = {id(band): row for row, band in enumerate(bands)}
-    found = pair_bands(*(tuple(band for band in bands if band.spectrum == name) for name in ("IR", "Raman")), window)
-    candidates = tuple((place[id(item[0])], place[id(item[1])]) for item in found.pairs)
-    together = pair_costs(bands, candidates, estimates)
-    possible = np.isfinite(together).any(axis=1) if len(candidates) else np.zeros(0, bool)
-    pairs = tuple(pair for pair, kept in zip(candidates, possible) if kept)
-    costs = Costs(
-        single_costs(bands, estimates, observed.spectra),
-        together[possible],
-        pairs,
-        np.array([LEFT_OVER_WEAK if band.weak else LEFT_OVER for band in bands]),
-        np.array([_unseen_cost(mode, observed) for mode in estimates.modes]),
-        BROKEN_PAIR,
-    )
     held = parse_pins(pins, symmetry.group, estimates.modes)
     allowed = pinned(held, bands, estimates.modes)
-    best = cheapest(costs, allowed)
+    model = cost_model(observed, estimates, window)
+    best = model.optimum(allowed)
     if best is None:
         raise VibsymError("the pinned lines cannot all be assigned together; take one --pin away")
-    best = _in_order(best, bands, estimates.modes, held)
-    return _result(symmetry, observed, estimates, costs, allowed, best, held)
+    return _result(symmetry, observed, estimates, model, allowed, best, held)
+
+
+def cost_model(observed: BandList, estimates: Estimates, window: float = WINDOW) -> CommonErrors:
+    """Return the costs of `assignment_costs.py` for a band list and its estimates, with their common errors."""
+    bands = observed.bands
+    place = {id(band): row for row, band in enumerate(bands)}
+    found = pair_bands(*(tuple(band for band in bands if band.spectrum == name) for name in ("IR", "Raman")), window)
+    said, alone = spectrum_costs(bands, estimates, observed.spectra)
+    ranges = range_costs(bands, estimates)
+    candidates = [(place[id(item[0])], place[id(item[1])]) for item in found.pairs]
+    pairs = tuple((i, r) for i, r in candidates if np.isfinite(said[i] + said[r]).any())
+    first, second = np.array(pairs, dtype=int).reshape(-1, 2).T
+    leftover = np.array([LEFT_OVER_WEAK if band.weak else LEFT_OVER for band in bands])
+    unseen = np.array([_unseen_cost(mode, observed) for mode in estimates.modes])
+
+    def costs(shifts: np.ndarray) -> Costs:
+        far = estimate_costs(bands, estimates, shifts, model.own) + ranges
+        together = (far[first] + far[second]) / 2 + said[first] + said[second]
+        return Costs(far + said + alone, together, pairs, leftover, unseen, BROKEN_PAIR)
+
+    model = CommonErrors(np.array([mean_wavenumber(band) for band in bands]), estimates, costs)
+    return model
 
 
 def _unseen_cost(mode: Mode, observed: BandList) -> float:
@@ -165,8 +175,9 @@ def _in_order(best: Matching, bands, modes: Sequence[Mode], held: Sequence[Pin])
     return Matching(places, best.whole, best.cost)
 
 
-def _result(symmetry, observed, estimates, costs, allowed, best, held) -> Assignment:
+def _result(symmetry, observed, estimates, model, allowed, found, held) -> Assignment:
     bands, modes = observed.bands, estimates.modes
+    best = _in_order(found[0], bands, modes, held)
     rows: dict[int, dict[str, int]] = {}
     for row, column in enumerate(best.places.tolist()):
         if column >= 0:
@@ -174,7 +185,7 @@ def _result(symmetry, observed, estimates, costs, allowed, best, held) -> Assign
     assigned = []
     for column in sorted(rows):
         seen = rows[column]
-        others = alternatives(costs, allowed, best, list(seen.values()), modes[column].species, modes)
+        others = alternatives(model, allowed, found, list(seen.values()), modes[column].species, modes)
         assigned.append(
             Assigned(
                 modes[column],
@@ -192,23 +203,20 @@ def _result(symmetry, observed, estimates, costs, allowed, best, held) -> Assign
 
 
 def alternatives(
-    costs: Costs, allowed, best: Matching, rows: Sequence[int], species: str, modes
+    model: CommonErrors, allowed, best: tuple[Matching, np.ndarray], rows: Sequence[int], species: str, modes
 ) -> tuple[tuple[str, float], ...]:
     """Return (species, extra cost) of the best assignment with these lines in each other species."""
-    found = []
+    found, single = [], model.costs(model.shifts(best[1])).single
     for label in dict.fromkeys(mode.species for mode in modes):
         if label == species:
             continue
         inside = np.array([mode.species == label for mode in modes])
-        tried = np.ones(costs.single.shape, bool) if allowed is None else allowed.copy()
-        possible = False
-        for row in rows:
-            tried[row] &= inside
-            possible |= bool(np.isfinite(costs.single[row][tried[row]]).any())
-        if possible and all(np.isfinite(costs.single[row][tried[row]]).any() for row in rows):
-            other = cheapest(costs, tried)
-            if other is not None and other.cost - best.cost < TOLD:
-                found.append((label, round(max(other.cost - best.cost, 0.0), 2)))
+        tried = np.ones(single.shape, bool) if allowed is None else allowed.copy()
+        tried[list(rows)] &= inside
+        if all(np.isfinite(single[row][tried[row]]).any() for row in rows):
+            other = model.cheapest(tried, best[1])
+            if other is not None and other[0].cost - best[0].cost < TOLD:
+                found.append((label, round(max(other[0].cost - best[0].cost, 0.0), 2)))
     return tuple(sorted(found, key=lambda pair: pair[1]))
 
 

@@ -3,14 +3,14 @@
 All costs are in the units of χ² (−2 ln of a likelihood):
 
 - estimate: h(z), z = ln(observed/estimate)/s with the spread s of the error model; h(z) = z² up to |z| = 1.5, then
-  3|z| − 2.25;
+  3|z| − 2.25; modes of one set share an error, which `common_errors.py` takes off ln(observed/estimate) at a price;
 - characteristic range (tables/characteristic_wavenumbers.csv) of a set that makes at least 60 % of the mode:
   h(distance/RANGE_WIDTH), at most 3;
 - a line measured depolarised at a totally symmetric fundamental: 3; a Raman line without polarisation there, where
   others have one: 1;
 - strengths: a strong Raman line that is not totally symmetric, a weak one that is: ½;
 - a fundamental active in both spectra but given a line of one, both being measured: 2; a broken pair: 12;
-- a line left over: 24, a weak one 12; an active fundamental not seen: 1.
+- a line left over: 36, a weak one 12; an active fundamental not seen: 1.
 
 Forbidden: a species silent in the spectrum, a polarised line at a species that is not totally symmetric.
 """
@@ -23,7 +23,7 @@ from vibsym.evidence.lines import Band
 from vibsym.tables import read_table
 from vibsym.vibrations.estimates import Estimates, characteristic_name
 
-LEFT_OVER, LEFT_OVER_WEAK, UNSEEN, BROKEN_PAIR, ONE_SPECTRUM = 24.0, 12.0, 1.0, 12.0, 2.0
+LEFT_OVER, LEFT_OVER_WEAK, UNSEEN, BROKEN_PAIR, ONE_SPECTRUM = 36.0, 12.0, 1.0, 12.0, 2.0
 DEPOLARISED, UNMARKED, STRENGTH = 3.0, 1.0, 0.5
 RANGE_WIDTH, RANGE_MOST, RANGE_SHARE = 30.0, 3.0, 0.6  # cm-1, cost, share of the set in the mode
 STRONG = ("vs", "vvs", "s")
@@ -40,20 +40,30 @@ def mean_wavenumber(band: Band) -> float:
     return sum(line.wavenumber for line in band.lines) / len(band.lines)
 
 
-def estimate_costs(bands, estimates: Estimates) -> np.ndarray:
-    """Return (n, f) the cost of the distance between band and estimate, and of characteristic ranges."""
+def estimate_costs(bands, estimates: Estimates, shifts=0.0, own=None) -> np.ndarray:
+    """Return (n, f) the cost of the distance between band and estimate.
+
+    `shifts` (f,) are common errors of ln(observed/estimate) and `own` (f,) the spreads that are left beside them.
+    """
     seen = np.array([mean_wavenumber(band) for band in bands])
     error = np.array([max(line.uncertainty for line in band.lines) for band in bands])
     modes = estimates.modes
     expected = np.array([max(mode.wavenumber, 1.0) for mode in modes])
-    spread = np.array([estimates.spread(mode) for mode in modes])
+    spread = np.array([estimates.spread(mode) for mode in modes]) if own is None else own
     width = np.sqrt(spread**2 + (error / seen)[:, None] ** 2)
-    cost = hump(np.log(seen[:, None] / expected) / width)
-    for column, mode in enumerate(modes):
+    cost = hump((np.log(seen[:, None] / expected) - shifts) / width)
+    return cost
+
+
+def range_costs(bands, estimates: Estimates) -> np.ndarray:
+    """Return (n, f) the cost of lines outside the characteristic range of a fundamental."""
+    seen = np.array([mean_wavenumber(band) for band in bands])
+    cost = np.zeros((len(bands), len(estimates.modes)))
+    for column, mode in enumerate(estimates.modes):
         limits = characteristic_range(mode, estimates)
         if limits:
             outside = np.maximum(np.maximum(limits[0] - seen, seen - limits[1]), 0.0)
-            cost[:, column] += np.minimum(hump(outside / RANGE_WIDTH), RANGE_MOST)
+            cost[:, column] = np.minimum(hump(outside / RANGE_WIDTH), RANGE_MOST)
     return cost
 
 
@@ -76,28 +86,12 @@ def ranges() -> dict[str, tuple[float, float]]:
     return found
 
 
-def single_costs(bands, estimates: Estimates, spectra) -> np.ndarray:
-    """Return (n, f) the cost of a single band at every fundamental, inf where forbidden."""
-    cost = estimate_costs(bands, estimates)
+def spectrum_costs(bands, estimates: Estimates, spectra) -> tuple[np.ndarray, np.ndarray]:
+    """Return (n, f) what the spectrum says of a band at a fundamental, and (f,) what a band of one spectrum costs."""
     marked = any(band.polarised or band.depolarised for band in bands)
-    for row, band in enumerate(bands):
-        for column, mode in enumerate(estimates.modes):
-            cost[row, column] += spectrum_cost(band, mode, marked)
-            if mode.infrared and mode.raman and len(spectra) == 2:
-                cost[row, column] += ONE_SPECTRUM
-    return cost
-
-
-def pair_costs(bands, pairs, estimates: Estimates) -> np.ndarray:
-    """Return (p, f) the cost of a pair: the mean of both estimates' costs, and what each spectrum says."""
-    cost = estimate_costs(bands, estimates)
-    marked = any(band.polarised or band.depolarised for band in bands)
-    table = np.zeros((len(pairs), len(estimates.modes)))
-    for number, (i, r) in enumerate(pairs):
-        for column, mode in enumerate(estimates.modes):
-            both = spectrum_cost(bands[i], mode, marked) + spectrum_cost(bands[r], mode, marked)
-            table[number, column] = (cost[i, column] + cost[r, column]) / 2 + both
-    return table
+    said = np.array([[spectrum_cost(band, mode, marked) for mode in estimates.modes] for band in bands])
+    both = [mode.infrared and mode.raman and len(spectra) == 2 for mode in estimates.modes]
+    return said, ONE_SPECTRUM * np.array(both, dtype=float)
 
 
 def spectrum_cost(band: Band, mode, marked: bool) -> float:

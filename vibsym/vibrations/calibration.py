@@ -35,9 +35,11 @@ FROM_MEMORY = 0.6  # weight of a molecule of the second set
 # Prior value and spread of ln(factor), or of a share, by the beginning of the name; the first that fits counts.
 PRIORS = (
     ("bend shape ", 0.0, 0.5),
+    ("bend centre H$", np.log(0.5), 0.35),  # half an electron pair in each bond of a three-centre bond
     ("bend centre [A-Z][a-z]?$", 0.0, 0.5),
     ("bend centre ", 0.0, 0.2),
     ("bend ends ", 0.0, 0.5),
+    ("bend end Hb$", np.log(0.5), 0.35),  # half an electron pair in each bond, as above
     ("bend end ", 0.0, 0.35),
     ("bend ", 0.0, 0.25),
     ("bend$", np.log(6.0), 1.0),

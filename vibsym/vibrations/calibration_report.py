@@ -29,6 +29,9 @@ from vibsym.vibrations.surroundings import Surroundings
 
 NEGLIGIBLE = 0.005  # of ln(factor) or of a share
 FEWEST = 12  # left-out modes a class needs for a spread of its own
+FEWEST_PAIRS = 60  # pairs of left-out modes a class needs for a correlation of its own
+LEAST_CORRELATION = 0.5  # below, the order of the modes is left to their own errors
+OUTLIER = 2.5  # spreads to which errors are drawn in where their correlation is measured
 
 HEAD = """\
 # Valence force field: factors whose product is a diagonal constant or a 1,3-repulsion, and shares of interactions
@@ -76,8 +79,8 @@ def report(arguments: list[str]) -> None:
             _write("estimate_errors.csv", error_table(made, errors, classes))
 
 
-def leave_out(made: Calibration, p: np.ndarray) -> tuple[dict[int, np.ndarray], dict[int, list[str]]]:
-    """Return ln(calculated/observed) and the class of every mode, by block, each from a fit without its family."""
+def leave_out(made: Calibration, p: np.ndarray) -> tuple[dict[int, np.ndarray], dict[int, list[tuple]]]:
+    """Return ln(calculated/observed) and (class, dominant set) of every mode, by block, fitted without its family."""
     errors, classes = {}, {}
     _, lonely = stretches_of(made)
     for family, q in left_out(made, p):
@@ -167,42 +170,76 @@ def table_text(made: Calibration, p: np.ndarray) -> str:
 
 
 def error_table(made: Calibration, errors: dict, classes: dict) -> str:
-    """Return the text of estimate_errors.csv."""
+    """Return the text of estimate_errors.csv; `classes` holds (class, dominant set) of every mode, by block."""
     found: dict[str, list[float]] = {}
+    together: dict[tuple, list[float]] = {}
     for number, values in errors.items():
-        for value, name in zip(values, classes[number]):
+        for value, (name, owner) in zip(values, classes[number]):
             found.setdefault(name, []).append(float(value))
             found.setdefault("any", []).append(float(value))
+            together.setdefault((name, made.problem.blocks[number].molecule, owner), []).append(float(value))
     rows = [
-        {"class": name, "spread": f"{_spread(values):.4f}", "shift": f"{np.median(values):.4f}", "modes": len(values)}
+        {
+            "class": name,
+            "spread": f"{_spread(values):.4f}",
+            "shift": f"{np.median(values):.4f}",
+            "common": f"{_common([each for key, each in together.items() if key[0] == name]):.2f}",
+            "modes": len(values),
+        }
         for name, values in sorted(found.items())
         if len(values) >= FEWEST
     ]
     head = (
         "# Error model of estimated wavenumbers: half-width of the central 68 % of ln(estimate/observed) by the kind\n"
-        "# of coordinate that dominates the mode, and its median (shift). Measured on molecules left out of the fit\n"
-        "# with all their isotopologues:\n"
+        "# of coordinate that dominates the mode, its median (shift), and the part of its square that modes of one\n"
+        "# set in one molecule share (common: their correlation). Measured on molecules left out of the fit with all\n"
+        "# their isotopologues:\n"
         "# python -m vibsym.vibrations.calibration --leave-out --write\n"
     )
-    return head + _csv(("class", "spread", "shift", "modes"), rows)
+    return head + _csv(("class", "spread", "shift", "common", "modes"), rows)
 
 
-def _classes(made: Calibration, molecule: int, field: ForceField, lonely: set[str]) -> dict[int, list[str]]:
-    """Return the classes of the modes of a molecule left out; a bond that only it has counts as a fall-back."""
-    symmetry = made.samples[molecule].symmetry
-    sets, symbols = internal_coordinates(symmetry), symmetry.structure.symbols
-    around = Surroundings(symbols, symmetry.positions, sets)
-    lacking = {
+def _common(families: list[list[float]]) -> float:
+    """Return the correlation of the errors of one set in one molecule, outliers drawn in; 0 where it means little."""
+    if not families:  # `any`: modes of no set in particular
+        return 0.0
+    everything = np.concatenate(families)
+    most = OUTLIER * _spread(everything)
+    drawn = [np.clip(values, -most, most) for values in families if len(values) > 1]
+    if sum(len(values) * (len(values) - 1) // 2 for values in drawn) < FEWEST_PAIRS:
+        return 0.0
+    products = sum((values.sum() ** 2 - (values**2).sum()) / len(values) for values in drawn)
+    pairs = sum(len(values) - 1 for values in drawn)
+    found = float(products / pairs / np.mean(np.clip(everything, -most, most) ** 2))
+    return found if found >= LEAST_CORRELATION else 0.0
+
+
+def lacking_sets(symmetry, field: ForceField, lonely: set[str]) -> set[str]:
+    """Return the sets that hold a bond whose stretch only this family has: left out, it is a fall-back."""
+    sets = internal_coordinates(symmetry)
+    around = Surroundings(symmetry.structure.symbols, symmetry.positions, sets)
+    return {
         each.name
         for each in sets
         if each.kind == "stretch"
         and any(field.bonds.entry(around, *bond).name in lonely for bond in each.atoms.tolist())
     }
+
+
+def _classes(made: Calibration, molecule: int, field: ForceField, lonely: set[str]) -> dict[int, list[tuple]]:
+    """Return (class, dominant set) of the modes of a molecule left out; a bond that only it has is a fall-back."""
+    symmetry = made.samples[molecule].symmetry
+    sets, symbols = internal_coordinates(symmetry), symmetry.structure.symbols
+    lacking = lacking_sets(symmetry, field, lonely)
     modes = normal_modes(symmetry, sets, field.matrix(symbols, symmetry.positions, sets))
     found = {}
     for number, block in enumerate(made.problem.blocks):
         if block.molecule == molecule and number in made.observed:
-            found[number] = [mode_class(mode, lacking) for mode in modes if mode.species == block.label]
+            found[number] = [
+                (mode_class(mode, lacking), mode.shares[0][0] if mode.shares else "")
+                for mode in modes
+                if mode.species == block.label
+            ]
     return found
 
 

@@ -34,6 +34,10 @@ class Estimates:
         """Return the standard error of ln(estimate) of a mode."""
         return spread_of(mode_class(mode, self.lacking))
 
+    def common(self, mode: Mode) -> float:
+        """Return the part of the squared error that the modes of one set share."""
+        return common_of(mode_class(mode, self.lacking))
+
 
 def estimate(symmetry: Symmetry, field: ForceField | None = None, bonds=None) -> Estimates:
     """Return the modes of a structure by the valence force field (the standard one by default)."""
@@ -87,14 +91,20 @@ def _hydrogen(label: str) -> bool:
 
 
 @cache
-def _spreads() -> dict[str, float]:
-    return {row["class"]: float(row["spread"]) for row in read_table("estimate_errors.csv")}
+def _errors() -> dict[str, tuple[float, float]]:
+    return {row["class"]: (float(row["spread"]), float(row["common"])) for row in read_table("estimate_errors.csv")}
 
 
 def spread_of(name: str) -> float:
     """Return the spread of ln(estimate/observed) of a class; a class without enough cases takes that of all."""
-    spreads = _spreads()
-    return spreads.get(name, spreads["any"])
+    errors = _errors()
+    return errors.get(name, errors["any"])[0]
+
+
+def common_of(name: str) -> float:
+    """Return the part of the squared error of a class that the modes of one set in one molecule share."""
+    errors = _errors()
+    return errors.get(name, errors["any"])[1]
 
 
 def describe(mode: Mode, least: float = 0.15) -> str:

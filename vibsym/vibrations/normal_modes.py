@@ -24,6 +24,7 @@ from vibsym.vibrations.cartesian import displacements
 from vibsym.vibrations.redundancy import species_frames
 from vibsym.vibrations.units import WAVENUMBER
 
+LOOSE = 0.01  # cm-1; below, a vibration has no restoring force
 RIGID = 0.5  # singular value (0 or 1 but for rounding) above which a direction of a species is a rigid motion
 
 
@@ -108,8 +109,10 @@ def normal_modes(symmetry: Symmetry, sets: Sequence, F: np.ndarray, shares: bool
         np.add.at(parts, owner, energy)
         species = symmetry.group.species_named(block.species)
         for column, number in enumerate(keep):
-            told = _distribution(sets, parts[:, column]) if shares else ()
             wavenumber = float(wavenumbers_of(values[number]))
+            if abs(wavenumber) < LOOSE:  # no restoring force: neither a sign nor a distribution
+                wavenumber = 0.0
+            told = _distribution(sets, parts[:, column]) if shares and wavenumber else ()
             found.append(mode_of(species, wavenumber, block.vectors @ vectors[:, number], shares=told))
     return numbered(found, symmetry)
 

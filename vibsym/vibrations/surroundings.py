@@ -81,7 +81,9 @@ class Surroundings:
         return str(min(number, 6))
 
     def end(self, atom: int) -> str:
-        """Return the element of an end of a bend, with `l` where it is itself a straight centre (M-C-O)."""
+        """Return the element of an end of a bend: `l` a straight centre itself (M-C-O), `b` a bridging hydrogen."""
+        if self.symbols[atom] == "H" and len(self.beside[atom]) > 1:
+            return "Hb"
         return self.symbols[atom] + ("l" if atom in self.straight else "")
 
     def elements(self, i: int, j: int) -> str:

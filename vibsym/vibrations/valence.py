@@ -22,6 +22,7 @@ import numpy as np
 from vibsym.vibrations.surroundings import Surroundings, contact, period
 
 STRAIGHT = -0.996  # cosine below which two bonds at a centre are trans
+HYDROGEN = ("H", "Hb")  # ends of bends: terminal, bridging
 SMALL_ANGLE = 0.259  # cosine of 75 degrees: angles inside three-membered rings
 
 
@@ -117,7 +118,7 @@ class _Builder:
             shape += "x3"
         one, two = sorted((around.end(i), around.end(k)))
         element = around.symbols[centre]
-        ends = {0: "XX", 1: "HX", 2: "HH"}[(one == "H") + (two == "H")]
+        ends = {0: "XX", 1: "HX", 2: "HH"}[(one in HYDROGEN) + (two in HYDROGEN)]
         return factors(
             "bend",
             f"bend shape {shape}",
