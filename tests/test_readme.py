@@ -80,4 +80,7 @@ if __name__ == "__main__":
     with tempfile.TemporaryDirectory() as place:
         shutil.copytree(ROOT / "samples", Path(place) / "samples")
         old = README.read_text(encoding="utf-8")
-        README.write_text(BLOCK.sub(lambda found: f"```console\n{renewed(found[1], place)}```", old), encoding="utf-8")
+        new = BLOCK.sub(lambda found: f"```console\n{renewed(found[1], place)}```", old)
+        if "Traceback (most recent call last)" in new:
+            sys.exit("a command ends in a traceback; README.md stays as it is")
+        README.write_text(new, encoding="utf-8")
