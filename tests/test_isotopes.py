@@ -457,3 +457,10 @@ def test_command_json_and_formats(tmp_path):
 def test_command_errors_are_one_line(tmp_path, arguments):
     done = run(write_xyz(tmp_path / "methane.xyz", "methane"), *arguments)
     assert done.exit_code == 1 and done.output.startswith("Error: ") and done.output.count("\n") == 1
+
+
+def test_the_mass_number_stands_raised_in_the_head_of_every_page(tmp_path):
+    path = tmp_path / "dioxide.xyz"
+    path.write_text("3\n\nO 0 0 -1.16\n13C 0 0 0\nO 0 0 1.16\n", encoding="utf-8")
+    for command in ("expect", "group", "normal"):
+        assert CliRunner().invoke(cli, [command, str(path)]).output.startswith("(¹³C)O₂")

@@ -20,7 +20,7 @@ _SPELLED = {"Γ": "Gamma", "Σ": "Sigma", "Π": "Pi", "Δ": "Delta", "Φ": "Phi"
             "…": "...", "°": "deg", "²": "2", "³": "3", "×": "x", "▲": "^", "▼": "v", "◆": "X", "○": "o",
             "│": "|", "⁺": "+", "⁻": "-"}
 _SPELLED |= {chr(0x2080 + digit): str(digit) for digit in range(10)}
-_SPELLED |= {mark: "^" + digit for mark, digit in zip("⁰¹⁴⁵⁶⁷⁸⁹", "01456789")}
+_SPELLED |= dict(zip("⁰¹⁴⁵⁶⁷⁸⁹", "01456789"))
 
 
 def deliver(results: list, view, form: str, output: str | None = None, **options) -> None:

@@ -105,6 +105,16 @@ def typeset(text: str) -> str:
     return re.sub(r"(?<=[ΣSPDFgu])([+-])(?=$|\W)", lambda m: m[1].translate(_SUPERSCRIPT), text)
 
 
+def typeset_formula(text: str) -> str:
+    """Return a chemical formula as it is printed: mass numbers raised before their element.
+
+    >>> typeset_formula("CH2(37Cl)2"), typeset_formula("(13C)O2"), typeset_formula("CD2Cl2")
+    ('CH₂(³⁷Cl)₂', '(¹³C)O₂', 'CD₂Cl₂')
+    """
+    text = re.sub(r"\((\d+)(?=[A-Z])", lambda m: "(" + m[1].translate(_SUPERSCRIPT), text)
+    return re.sub(r"(?<=[A-Za-z)])(\d+)", lambda m: m[1].translate(_SUBSCRIPT), text)
+
+
 def typeset_function(text: str) -> str:
     """Return a function of x, y, z as it is printed: `2z2-x2-y2` as `2z²−x²−y²`."""
     text = re.sub(r"([xyz)])(\d)", lambda m: m[1] + m[2].translate(_SUPERSCRIPT), text)

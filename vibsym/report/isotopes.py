@@ -1,17 +1,13 @@
 """Pages, rows and objects of isotopic substitution (`vibsym isotopes`): one pair, all isotopologues, or satellites."""
 
-import re
 
-from vibsym.groups.symbols import typeset
+from vibsym.groups.symbols import typeset, typeset_formula
 from vibsym.report.descent import changes_table
 from vibsym.report.document import Paragraph, Table
 from vibsym.report.wording import NOTHING, about_structure, gamma_plain, gamma_text, group_text
 from vibsym.spectra.isotopes import IsotopeEffect
 from vibsym.spectra.isotopologues import IsotopologueList
 from vibsym.spectra.satellites import Satellites
-
-_RAISED = str.maketrans("0123456789", "⁰¹²³⁴⁵⁶⁷⁸⁹")
-_LOWERED = str.maketrans("0123456789", "₀₁₂₃₄₅₆₇₈₉")
 
 
 def parts(result, **_) -> list:
@@ -51,10 +47,7 @@ def _pair(result: IsotopeEffect) -> list:
     pair = result.pair
     before, after = result.counts
     page = [about_structure(pair.original.structure),
-            Paragraph(f"{_formula(pair.original.structure)}: {group_text(pair.original.group.symbol)}, "
-                      f"Γvib = {gamma_text(result.gammas[0])}\n"
-                      f"{_formula(pair.substituted.structure)}: {group_text(pair.substituted.group.symbol)}, "
-                      f"Γvib = {gamma_text(result.gammas[1])}"),
+            Paragraph("\n".join(_before_and_after(result))),
             Paragraph(f"Infrared at most {before.infrared} before, {after.infrared} after; "
                       f"Raman at most {before.raman} before, {after.raman} after", strong=True)]
     if pair.common.group.symbol != pair.original.group.symbol:
@@ -63,18 +56,19 @@ def _pair(result: IsotopeEffect) -> list:
     if pair.common.group.symbol != pair.substituted.group.symbol:
         rows = tuple((typeset(label), gamma_text(parts)) for label, parts in pair.correlation_substituted.items()
                      if label in result.gammas[1])
-        page.append(Table(("species", "becomes"), rows, heading=f"{_formula(pair.substituted.structure)} in the common "
-                                                                f"group {typeset(pair.common.group.symbol)}"))
+        page.append(Table(("species", "becomes"), rows,
+                          heading=f"{typeset_formula(pair.substituted.structure.formula)} in the common group "
+                                  f"{typeset(pair.common.group.symbol)}"))
     page.append(_rule(result))
     page.append(Paragraph("Product rule: Π ω(to)/Π ω(from), each degenerate set once (Redlich 1935). Observed products "
                           "normally exceed it a little, because anharmonicity lowers the lighter molecule more."))
     return page
 
 
-def _formula(structure) -> str:
-    """A formula as printed: mass numbers raised before their element, `CH₂(³⁷Cl)₂`."""
-    raised = re.sub(r"\((\d+)(?=[A-Z])", lambda m: "(" + m[1].translate(_RAISED), structure.formula)
-    return re.sub(r"(?<=\))\d+", lambda m: m[0].translate(_LOWERED), typeset(raised))
+def _before_and_after(result: IsotopeEffect) -> list[str]:
+    """Return a line for each of the two molecules: formula, group, Γvib."""
+    return [f"{typeset_formula(each.structure.formula)}: {group_text(each.group.symbol)}, Γvib = {gamma_text(gamma)}"
+            for each, gamma in zip((result.pair.original, result.pair.substituted), result.gammas)]
 
 
 def _rule(result: IsotopeEffect) -> Table:
@@ -98,7 +92,7 @@ def _rule(result: IsotopeEffect) -> Table:
 
 
 def _list(result: IsotopologueList) -> list:
-    rows = tuple((_formula(each.structure), typeset(each.symmetry.group.symbol), str(each.weight),
+    rows = tuple((typeset_formula(each.structure.formula), typeset(each.symmetry.group.symbol), str(each.weight),
                   " ".join(str(site + 1) for site in each.sites) or NOTHING) for each in result.isotopologues)
     return [about_structure(result.structure), Paragraph(f"{len(rows)} distinct isotopologues of {result.arrangements} "
                                                          "arrangements", strong=True),

@@ -5,7 +5,7 @@ draws everything.
 """
 
 from vibsym.errors import VibsymError
-from vibsym.groups.symbols import plain_label, typeset
+from vibsym.groups.symbols import plain_label, typeset_formula
 from vibsym.report.drawing import structure_svg
 from vibsym.report.scene import coordinate_motions, mode_motions, scene_of
 from vibsym.report.sticks import sticks_svg
@@ -19,7 +19,7 @@ def picture(show: str, symmetry, *, modes=None, coordinates=None, assignment=Non
     `modes` (normal modes), `coordinates` (SymmetryCoordinates) and `assignment` are used where given.
     """
     scene = scene_of(symmetry)
-    formula = typeset(symmetry.structure.formula)
+    formula = typeset_formula(symmetry.structure.formula)
     if show == "structure":
         return structure_svg(scene, None, True, *SIZE, title=f"{formula}, structure", alone=True) + "\n"
     if show == "sticks":

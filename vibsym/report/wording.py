@@ -3,7 +3,7 @@
 from typing import TYPE_CHECKING
 
 from vibsym.groups.reduction import write_reduction
-from vibsym.groups.symbols import hermann_mauguin, typeset, typeset_function
+from vibsym.groups.symbols import hermann_mauguin, typeset, typeset_formula, typeset_function
 from vibsym.report.document import Facts, Title
 from vibsym.structures.symmetry import Symmetry, within
 
@@ -52,7 +52,7 @@ def found_within(symmetry: Symmetry) -> str:
 def about_structure(structure: "Structure") -> Title:
     """Return the head of a page: formula, source, number of atoms."""
     aside = [structure.source, count_text(len(structure), "atom")]
-    return Title(typeset(structure.formula), ", ".join(filter(None, aside)))
+    return Title(typeset_formula(structure.formula), ", ".join(filter(None, aside)))
 
 
 def axes_facts(choice) -> list[Facts]:

@@ -9,7 +9,7 @@ from html import escape
 from pathlib import Path
 
 from vibsym import __version__
-from vibsym.groups.symbols import typeset
+from vibsym.groups.symbols import typeset, typeset_formula
 from vibsym.report.collection import Report, Sheet
 from vibsym.report.html.sections import SECTIONS, motions_of, shared_sections
 from vibsym.report.html.structure_view import as_data, plate, skeleton_store
@@ -25,7 +25,7 @@ _ICON = ("data:image/svg+xml,%3Csvg xmlns='http://www.w3.org/2000/svg' viewBox='
 
 def report_page(report: Report, triple: str = "T") -> str:
     """Return the page; `triple` is the letter of triply degenerate species (the JSON inside keeps T)."""
-    titles = [typeset(sheet.expectation.structure.formula) for sheet in report.sheets]
+    titles = [typeset_formula(sheet.expectation.structure.formula) for sheet in report.sheets]
     names = ", ".join(dict.fromkeys(titles))
     body = []
     if len(report.sheets) > 1:
@@ -62,7 +62,7 @@ def _beside(name: str) -> str:
 
 def _cover(report: Report, names: str) -> str:
     """The head of a page on several structures, with what concerns them all."""
-    formulas = [set_labels(typeset(sheet.expectation.structure.formula), True) for sheet in report.sheets]
+    formulas = [set_labels(typeset_formula(sheet.expectation.structure.formula), True) for sheet in report.sheets]
     rows = "".join(f'<li><a href="#sheet-{number}">{formula}</a>, {escape(_file_name(sheet))}</li>'
                    for number, (formula, sheet) in enumerate(zip(formulas, report.sheets)))
     sections = "".join(_section(number, title, f"all-{key}", text)
@@ -75,7 +75,7 @@ def _cover(report: Report, names: str) -> str:
 def _article(report: Report, sheet: Sheet, number: int) -> str:
     found = sheet.expectation
     group = typeset(found.symmetry.group.symbol)
-    formula = typeset(found.structure.formula)
+    formula = typeset_formula(found.structure.formula)
     made = [(key, title, text) for key, title, make in SECTIONS if (text := make(report, sheet, f"s{number}-"))]
     if len(report.sheets) == 1:
         shared = shared_sections(report)
