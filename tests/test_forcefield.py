@@ -78,6 +78,24 @@ def test_badger_is_the_marked_fallback():
     assert not estimate(published("methane")).fallback
 
 
+GALLANE = """Ga 0 1.29 0; Ga 0 -1.29 0; H 0 0 1.15; H 0 0 -1.15
+H 1.3 2.1 0; H -1.3 2.1 0; H 1.3 -2.1 0; H -1.3 -2.1 0"""
+
+
+def test_bridging_hydrogens_are_softer_than_terminal_ones():
+    """Ga2H6: ν(Ga-H) of the bridges at 1273 (B1u) and 1202 cm-1 (B3u), terminal ones near 1990 (C. R. Pulham et al.,
+    J. Am. Chem. Soc. 113, 5149 (1991), from memory); by Badger's rule alone the bridges come out near 1700."""
+    rows = [row.split() for row in GALLANE.replace("\n", ";").split(";")]
+    places = [list(map(float, row[1:])) for row in rows]
+    symmetry = find_symmetry(Structure.from_atoms([row[0] for row in rows], places))
+    found = estimate(symmetry)
+    stretches = [mode.wavenumber for mode in found.modes if mode.shares[0][0] == "stretch Ga-H"]
+    terminal, bridges = [v for v in stretches if v > 1800], [v for v in stretches if v < 1800]
+    assert len(terminal) == len(bridges) == 4
+    assert np.mean(bridges) < 0.75 * np.mean(terminal)
+    assert found.lacking == {"stretch Ga-Ga", "stretch Ga-H"}
+
+
 def test_isotopes_share_the_field():
     for light, heavy in (("methane", "methane-d4"), ("benzene", "benzene-d6")):
         ratio = [mode.wavenumber for mode in estimate(published(heavy)).modes if mode.species in ("A1", "A1g")]

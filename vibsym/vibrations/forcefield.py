@@ -20,6 +20,7 @@ from vibsym.vibrations.surroundings import Surroundings, period
 from vibsym.vibrations.valence import Terms, valence_terms
 
 BADGER = 186.0  # N/m Å³
+BRIDGE = 0.7  # constant of a bridging hydrogen by Badger's rule: half an electron pair a bond; 139 of 199 N/m in B2H6
 
 
 class BondEntry(NamedTuple):
@@ -57,7 +58,8 @@ class BondTable:
         r, shortest = around.distance(i, j), self.shortest(around.symbols[i], around.symbols[j])
         reach = max(r - shortest, 0.2)
         if name not in self.lengths:
-            return BondEntry(name, bond_class, BADGER / reach**3, False)
+            bridge = BRIDGE if bond_class == "Hbr" else 1.0
+            return BondEntry(name, bond_class, bridge * BADGER / reach**3, False)
         return BondEntry(name, bond_class, (max(self.lengths[name] - shortest, 0.2) / reach) ** 3, True)
 
     def badger(self, name: str) -> float:

@@ -107,7 +107,7 @@ class Surroundings:
         """Return the class of a bond among the known ones of its elements (class: length); without any `1`."""
         if "H" in (self.symbols[i], self.symbols[j]):
             wanted = self.hydrogen_class(i, j)
-            if wanted in known or not known:
+            if wanted in known or not known or wanted == "Hbr":  # a bridge is no terminal bond of another length
                 return wanted
         length = self.distance(i, j)
         return min(known, key=lambda name: abs(known[name] - length)) if known else "1"
