@@ -96,7 +96,8 @@ def test_a_doublet_belongs_to_the_nearest_combination():
     assert {pair.combination for pair in pairs} == {"ν2 + ν3", "2ν3"} | {"2ν2"}
     (marked,) = [pair for pair in pairs if pair.doublet]
     assert marked.combination == "2ν2"  # undisturbed at 1324.6
-    assert not any(pair.doublet for pair in made("C2v", modes, doublets=[parse_doublet("1500:1285=1.6")]).fermi)
+    with pytest.raises(VibsymError, match="--doublet 1500:1285"):
+        made("C2v", modes, doublets=[parse_doublet("1500:1285=1.6")])
 
 
 def test_pairs_need_a_common_species():
@@ -331,3 +332,10 @@ def test_many_hot_bands_are_counted():
     modes = [f"ν{k}:A={300 * k}" for k in range(1, 9)]
     page = run("C1", *options(modes)).output
     assert "of the molecules): near each of 8 fundamentals" in page and "ν₂ + ν₁ − ν₁" not in page
+
+
+def test_a_doublet_that_belongs_to_nothing_is_an_error():
+    with pytest.raises(VibsymError, match="--doublet 1500:1200: no fundamental is one of the lines") as error:
+        made("Dinfh", DIOXIDE, doublets=[parse_doublet("1500:1200=1.6")])
+    assert "\n" not in str(error.value)
+    assert made("Dinfh", DIOXIDE, doublets=[parse_doublet("1388.2:1285.4=1.6")]).combinations

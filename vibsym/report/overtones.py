@@ -19,8 +19,9 @@ def parts(result: Combined, **_) -> list:
         page.append(Paragraph(f"Point group {group_text(found.group.symbol)}"))
     page.append(_modes(result))
     silent = [each for each in found.combinations if not (each.infrared or each.raman)]
-    page.append(Paragraph(f"{len(found.combinations)} overtones, sums and differences up to {found.quanta} quanta",
-                          strong=True))
+    number = len(found.combinations)
+    kinds = "overtone, sum or difference" if number == 1 else "overtones, sums and differences"
+    page.append(Paragraph(f"{number} {kinds} up to {found.quanta} quanta", strong=True))
     for title, differences in (("Overtones and sums", False), ("Differences", True)):
         rows = [each for each in found.combinations
                 if each.is_difference == differences and (each.infrared or each.raman)]

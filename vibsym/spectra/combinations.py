@@ -151,6 +151,10 @@ def combine(group, modes: Sequence[Mode | str], quanta: int = 2, *, temperature:
     builder = _Builder(group, modes, temperature)
     found = [builder.combination(vector) for vector in _vectors(modes, quanta)]
     found = _with_fermi(found, modes, resonance, doublets)
+    placed = [pair.doublet for each in found for pair in each.fermi if pair.doublet]
+    for doublet in doublets:
+        if doublet not in placed:
+            raise doublet.unplaced("no fundamental is one of the lines and has a combination of its species near")
     found.sort(key=lambda each: (each.is_difference, -(each.wavenumber or 0.0)))
     return Combinations(group, modes, quanta, temperature, tuple(found), resonance)
 

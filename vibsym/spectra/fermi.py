@@ -46,6 +46,11 @@ class Doublet:
         """Tell whether a line is one of the two."""
         return wavenumber is not None and min(abs(wavenumber - self.upper), abs(wavenumber - self.lower)) <= within
 
+    def unplaced(self, reason: str) -> VibsymError:
+        """Return the error of a doublet that belongs to nothing."""
+        return VibsymError(f"--doublet {self.upper:g}:{self.lower:g}: {reason}; give the fundamental as observed, "
+                           "at one of the two lines")
+
     def to_dict(self) -> dict:
         """Return the doublet for JSON."""
         return {"upper": self.upper, "lower": self.lower, "ratio": self.ratio,

@@ -108,6 +108,9 @@ def isotope_effect(pair: Substitution, lines: Sequence[Mode] = (), lines_substit
     group; `doublets`: Fermi resonances, by which the fundamentals that belong to them are deperturbed.
     """
     rule = product_rule(pair)
+    for doublet in doublets:
+        if not any(doublet.holds(mode.wavenumber) for mode in (*lines, *lines_substituted)):
+            raise doublet.unplaced("no fundamental of either molecule is one of the lines")
     observed = observed_products(pair, rule, lines, lines_substituted, doublets) if lines and lines_substituted else ()
     return IsotopeEffect(pair, rule, observed)
 
