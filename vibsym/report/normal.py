@@ -38,7 +38,8 @@ def _row(mode, imported: bool) -> tuple[str, ...]:
 def _refinement(found) -> list:
     scales = tuple((name.replace("-", "–"), f"{value:.3f}") for name, value in found.scales.items())
     lines = tuple((row.structure, row.mode, typeset(row.species), f"{row.observed:.1f}", f"{row.before:.1f}",
-                   f"{row.after:.1f}", f"{row.observed - row.after:+.1f}".replace("-", "−")) for row in found.residuals)
+                   f"{row.after:.1f}", f"{round(row.observed - row.after, 1) + 0.0:+.1f}".replace("-", "−"))
+                  for row in found.residuals)
     head = ("structure", "mode", "species", "observed", "before", "refined", "left")
     return [Table(("set", "scale of the constant"), scales, right=frozenset({1}), heading="Refined constants"),
             Table(head, lines, right=frozenset({3, 4, 5, 6}), heading="Residuals (cm-1)")]
