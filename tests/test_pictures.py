@@ -210,3 +210,8 @@ def test_latex_typesets_every_page(tmp_path):
     done = subprocess.run(["pdflatex", "-interaction=nonstopmode", "-halt-on-error", "pages.tex"], cwd=tmp_path,
                           capture_output=True, text=True, errors="replace")
     assert done.returncode == 0, done.stdout[-1500:]
+
+
+def test_show_without_a_picture_is_told():
+    done = run("expect", str(SAMPLES / "cylinder-bf3.xyz"), "--show", "v1")
+    assert done.exit_code == 1 and "--picture FILE.svg" in done.output

@@ -1,6 +1,7 @@
 """Options of the commands that can draw: --picture FILE.svg and what to --show."""
 
 import click
+from click.core import ParameterSource
 
 from vibsym.errors import VibsymError
 
@@ -21,6 +22,8 @@ def picture_options(default: str):
 def save_picture(path: str | None, show: str, symmetries, **given) -> None:
     """Draw what was asked for, of the one structure there is, and save it; without a path do nothing."""
     if path is None:
+        if click.get_current_context().get_parameter_source("show") is ParameterSource.COMMANDLINE:
+            raise VibsymError(f"--show {show}: it tells what --picture FILE.svg draws; give the file too")
         return
     if not path.lower().endswith(".svg"):
         raise VibsymError(f"--picture {path}: drawings are SVG; name a file that ends in .svg")
