@@ -15,8 +15,10 @@ from vibsym.evidence.assignment import assign, cost_model
 from vibsym.evidence.assignment_file import parse_assignment
 from vibsym.evidence.bandlist import parse_bands
 from vibsym.evidence.matching import Costs, cheapest
+from vibsym.evidence.near_fundamentals import near_fundamentals
 from vibsym.structures.finder import find_symmetry
 from vibsym.structures.reading import read
+from vibsym.structures.structure import Structure
 from vibsym.vibrations.calibration import samples
 from vibsym.vibrations.estimates import estimate
 
@@ -252,3 +254,14 @@ def test_bad_input_is_one_line(tmp_path, arguments):
     result = run("assign", PUBLISHED / "methane.xyz", "--bands", bands, *arguments)
     assert result.exit_code == 1
     assert result.output.startswith("Error: ") and result.output.count("\n") == 1
+
+
+def test_a_line_just_beyond_the_window_of_a_fundamental_is_named():
+    """CF4, infrared of the gas and Raman of the liquid (invented shifts): 1270 is ν3 again; a polarised line is not."""
+    places = 1.32 / 3 ** 0.5 * np.array([[0, 0, 0], [1, 1, 1], [1, -1, -1], [-1, 1, -1], [-1, -1, 1]], float)
+    symmetry = find_symmetry(Structure.from_atoms(["C", *"FFFF"], places))
+    rows = "wavenumber,spectrum,strength,polarisation\n1283,IR,vs,\n632,IR,s,\n908,Raman,vs,p\n{}\n"
+    for line, told in (("1270,Raman,w,dp", ["Raman 1270 lies 13 cm-1 from IR 1283 (ν3)"]), ("1270,Raman,w,p", [])):
+        result = assign(symmetry, parse_bands(rows.format(line)))
+        found = near_fundamentals(result)
+        assert [each[:each.index(",")] for each in found] == told

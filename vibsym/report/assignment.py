@@ -5,6 +5,7 @@ import csv
 from vibsym.evidence.assignment import FIRM
 from vibsym.evidence.assignment_costs import mean_wavenumber
 from vibsym.evidence.assignment_file import AssignmentFile, AssignmentRow, write_assignment
+from vibsym.evidence.near_fundamentals import near_fundamentals
 from vibsym.groups.symbols import typeset
 from vibsym.report.document import Listing, Paragraph, Table
 from vibsym.report.wording import NOTHING, about_structure, axes_facts, count_text, found_within, group_text
@@ -42,8 +43,8 @@ def parts(result, strip: bool = False, **_) -> list:
         page.append(Table(("mode", "species", "estimate", "active in"), unseen, right=frozenset({2}),
                           heading="Fundamentals not seen"))
     page += axes_facts(axis_words(symmetry))
-    if result.notes:
-        page.append(Listing(result.notes, "Beware"))
+    if notes := (*result.notes, *near_fundamentals(result)):
+        page.append(Listing(notes, "Beware"))
     return page
 
 
