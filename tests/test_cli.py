@@ -266,3 +266,8 @@ def test_a_closed_pipe_is_no_accident():
 
 def test_shell_completion_as_click_gives_it():
     assert b"_vibsym_completion" in started(_VIBSYM_COMPLETE="bash_source").stdout
+
+
+def test_the_package_runs_as_a_module():
+    done = subprocess.run([sys.executable, "-m", "vibsym", "--version"], capture_output=True, text=True, cwd=ROOT)
+    assert done.returncode == 0 and done.stdout.startswith("vibsym ")
