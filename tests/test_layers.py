@@ -43,6 +43,8 @@ def height(module: str) -> int:
     parts = module.split(".")
     if len(parts) == 1 or parts[1] in GROUND:
         return -1
+    if parts[1] == "__main__":                                  # `python -m vibsym`, above all
+        return len(LAYERS)
     return LAYERS.index(parts[1])
 
 
