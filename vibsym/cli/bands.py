@@ -1,8 +1,5 @@
 """Options of the commands that compare with observed bands."""
 
-import sys
-from contextlib import contextmanager
-
 import click
 
 from vibsym.cli.options import light_option
@@ -47,24 +44,3 @@ def refuse_without_bands(**given) -> None:
     for name, value in given.items():
         if value:
             raise VibsymError(f"--{name} needs observed bands: --bands FILE, or --ir FILE and --raman FILE")
-
-
-@contextmanager
-def progress(label: str = "candidates"):
-    """Give a callback (done, all) that draws a bar on a terminal when there is much to do, else None."""
-    if not sys.stderr.isatty():
-        yield None
-        return
-    bars = []
-
-    def told(done: int, total: int) -> None:
-        if total >= LONG_WORK:
-            if not bars:
-                bars.append(click.progressbar(length=total, file=sys.stderr, label=label))
-                bars[0].__enter__()
-            bars[0].update(1)
-    try:
-        yield told
-    finally:
-        for bar in bars:
-            bar.__exit__(None, None, None)

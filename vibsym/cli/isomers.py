@@ -3,8 +3,9 @@
 import click
 
 from vibsym.cli import options
-from vibsym.cli.bands import bands_options, progress, refuse_without_bands
+from vibsym.cli.bands import LONG_WORK, bands_options, refuse_without_bands
 from vibsym.cli.delivery import deliver
+from vibsym.cli.progress import progress
 
 
 @click.command("isomers")
@@ -56,7 +57,7 @@ def screened(listing, limit, bands, infrared, raman, between, window, allow, lig
     from vibsym.evidence.screening import ScreenOptions
 
     observed = read_bands(bands, infrared, raman, between=between, light=light)
-    with progress("isomers") as callback:
+    with progress("isomers", LONG_WORK) as callback:
         return screen_isomers(listing, observed, ScreenOptions(window, allow, mixture), limit, callback)
 
 

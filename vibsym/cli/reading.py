@@ -4,11 +4,12 @@ One unreadable structure does not stop the others; it is told on standard error 
 """
 
 import sys
-from collections.abc import Callable, Iterator
+from collections.abc import Callable
 from dataclasses import replace
 
 import click
 
+from vibsym.cli.progress import counted
 from vibsym.errors import VibsymError
 
 LONG_WORK = 20  # structures; from here on a terminal shows a progress bar
@@ -33,7 +34,7 @@ def results_of(paths, make: Callable, **reading) -> tuple[list, int]:
     `reading` holds the options of `options.reading_options`.
     """
     results, failures = [], 0
-    for path in _with_progress(paths):
+    for path in counted(paths, "structures", LONG_WORK):
         try:
             for structure in read_structures(path, **reading):
                 results.append(make(structure))
@@ -68,11 +69,3 @@ def _frame_number(text: str) -> int:
     if not text.isascii() or not text.isdigit() or int(text) < 1:
         raise VibsymError(f"--frame {text}: give the number of a frame, counted from 1, or all")
     return int(text)
-
-
-def _with_progress(paths) -> Iterator[str]:
-    if len(paths) < LONG_WORK or not sys.stderr.isatty():
-        yield from paths
-        return
-    with click.progressbar(paths, file=sys.stderr, label="structures") as bar:
-        yield from bar

@@ -3,7 +3,8 @@
 import click
 
 from vibsym.cli import options
-from vibsym.cli.bands import bands_options, progress
+from vibsym.cli.bands import LONG_WORK, bands_options
+from vibsym.cli.progress import progress
 from vibsym.cli.reading import finish, read_all_structures
 
 
@@ -35,6 +36,6 @@ def command(structures, bands, infrared, raman, between, window, allow, light, m
 
     observed = read_bands(bands, infrared, raman, between=between, light=light)
     read = read_all_structures(structures, frame, bonds, no_bonds, average_masses)
-    with progress() as callback:
+    with progress("candidates", LONG_WORK) as callback:
         result = screen(read, observed, Proposal(**proposal), ScreenOptions(window, allow, mixture), callback)
     finish([result], 0, view, form, output)
