@@ -151,7 +151,7 @@ def _regions(result: Expectation) -> list:
 def _oscillators(result: Expectation) -> list:
     if result.oscillators is None:
         return []
-    from vibsym.report.regions import oscillator_parts
+    from vibsym.report.oscillators import oscillator_parts
 
     return oscillator_parts(result.oscillators, result.symmetry.group.symbol)
 
