@@ -153,6 +153,17 @@ def test_the_ladder_does_not_depend_on_the_pose(seed, length):
     assert [r.spoilers for r in turned.rungs] == [r.spoilers for r in first.rungs]
 
 
+def test_the_last_rung_stands_apart_when_nothing_follows_for_long():
+    """The rule takes ratios between rungs and never suggests the last one: that it ends a wider gap is told beside."""
+    octahedron = 1.56 * np.concatenate((np.zeros((1, 3)), np.eye(3), -np.eye(3)))
+    rough = octahedron + np.random.default_rng(6).normal(size=(7, 3)) * 0.012
+    result = ladder(Structure.from_atoms(["S"] + ["F"] * 6, rough))
+    assert rungs_of(result)[-1] == "Oh" and result.suggested < len(result.rungs) - 1
+    assert result.stands_apart and result.reach == 0.5
+    assert not ladder(Structure.from_atoms(["S"] + ["F"] * 6, octahedron)).stands_apart
+    assert not ladder(xef4([[0, 0, 0], [0.4, 0, 0], [0, 0, 0], [0, 0, 0], [0, 0, 0]])).stands_apart
+
+
 def test_as_group():
     structure = xef4([[0, 0, 0], [0, 0, 0.12], [0, 0, -0.12], [0, 0, 0.12], [0, 0, -0.12]])
     symmetry = as_group(structure, "D4h")

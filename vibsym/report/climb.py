@@ -15,6 +15,8 @@ def parts(result: Climb, **_) -> list:
     page = [about_structure(result.structure),
             Paragraph(f"Point group {group_text(found.symmetry.group.symbol)}, {found_within(found.symmetry)}"),
             Paragraph(_suggestion(result), strong=True), _rungs(result)]
+    if result.chosen is None and result.ladder.stands_apart:
+        page.append(Paragraph(_apart(result)))
     if found.axes.words:
         page.append(Facts(tuple(found.axes.words.items()), "Axes"))
     notes = tuple(map(sentence, (*result.structure.notes, *found.axes.notes)))
@@ -47,6 +49,13 @@ def _suggestion(result: Climb) -> str:
     if len(result.ladder.rungs) == 1:
         return f"{name} is the only rung: no higher group within reach."
     return f"Suggested: {name}, within {within(suggested.deviation)} Å: the largest gap of the ladder lies above it."
+
+
+def _apart(result: Climb) -> str:
+    last = result.ladder.rungs[-1]
+    name = typeset(last.symbol)
+    return (f"Above {name} ({within(last.deviation)} Å) no rung follows up to {result.ladder.reach:.2f} Å, a wider gap "
+            f"still: if the ideal shape is {name}, --as {last.symbol} works in it.")
 
 
 def _rungs(result: Climb) -> Table:

@@ -39,7 +39,8 @@ class Climb:
                   "spoilers": list(rung.spoilers), "counts": each.counts.to_dict()}
                  for rung, each in zip(self.ladder.rungs, self.expectations, strict=True)]
         answer = {"structure": self.structure.to_dict(), "point_group": self.found.symmetry.to_dict(),
-                  "axes": dict(self.found.axes.words), "rungs": rungs, "suggested": self.suggested.group.symbol}
+                  "axes": dict(self.found.axes.words), "rungs": rungs, "suggested": self.suggested.group.symbol,
+                  "reach": self.ladder.reach}
         return answer | ({"chosen": self.chosen.to_dict()} if self.chosen is not None else {})
 
 

@@ -61,15 +61,26 @@ class Rung:
 
 @dataclass(frozen=True)
 class Ladder:
-    """Rungs from the group found upwards, and the place of the suggested one."""
+    """Rungs from the group found upwards, the place of the suggested one, and how far (Å) rungs were sought."""
 
     rungs: tuple[Rung, ...]
     suggested: int
+    reach: float
 
     @property
     def next(self) -> Rung | None:
         """The rung above the group found, None when there is none."""
         return self.rungs[1] if len(self.rungs) > 1 else None
+
+    @property
+    def stands_apart(self) -> bool:
+        """Whether the last rung is not the suggested one although nothing follows it for a wider gap still.
+
+        The rule takes ratios between rungs, so it never suggests the last; how far none follows is only known up to
+        `reach`.
+        """
+        last = max(self.rungs[-1].deviation, SMALLEST_DEVIATION)
+        return len(self.rungs) > 1 and self.reach / last > max(_ratios([rung.deviation for rung in self.rungs]))
 
 
 def ladder(structure, tolerance: float = DEFAULT_TOLERANCE, axes: str | None = None, bonds=None,
@@ -91,7 +102,8 @@ def ladder(structure, tolerance: float = DEFAULT_TOLERANCE, axes: str | None = N
         return replace(symmetry, tolerance=_tolerance_of(symmetry.deviation, tolerance, centred.most))
 
     return Ladder(tuple(Rung(symbol_of(placement), deviation, atoms, partial(worked_out, placement))
-                        for placement, deviation, atoms in zip(rungs, deviations, spoilers)), _suggested(deviations))
+                        for placement, deviation, atoms in zip(rungs, deviations, spoilers)), _suggested(deviations),
+                  max(tolerance, largest_tolerance(centred)))
 
 
 def as_group(structure, symbol: str, tolerance: float = DEFAULT_TOLERANCE, axes: str | None = None,
@@ -229,6 +241,11 @@ def _spoilers(shifts, tolerance: float) -> tuple[int, ...]:
 
 def _suggested(deviations) -> int:
     """Return the place of the rung before the largest ratio of successive deviations; 0 where there is one rung."""
-    counted = [max(value, SMALLEST_DEVIATION) for value in deviations]
-    ratios = [upper / lower for lower, upper in pairwise(counted)]
+    ratios = _ratios(deviations)
     return int(np.argmax(ratios)) if ratios else 0
+
+
+def _ratios(deviations) -> list[float]:
+    """Return each deviation over the one before; below SMALLEST_DEVIATION a deviation counts as that."""
+    counted = [max(value, SMALLEST_DEVIATION) for value in deviations]
+    return [upper / lower for lower, upper in pairwise(counted)]
