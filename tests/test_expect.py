@@ -14,6 +14,7 @@ from molecules import MOLECULES, turned
 from orbits import FAMILIES, orbit_structure
 
 from vibsym import Structure, VibsymError, expect, find_symmetry, read
+from vibsym.report import expectation, render
 from vibsym.vibrations.working import working
 
 REFERENCE = Path(__file__).parent / "reference"
@@ -215,6 +216,7 @@ def test_two_conjugate_species_are_one_band():
     # out of it 7 - 3 = 4 = 2A'' + E''
     assert result.gamma_vib == {"A'": 3, "E'": 4, "A''": 2, "E''": 1}
     assert result.counts.fundamentals == 10
+    assert "E′, E″: two complex-conjugate species" in render([result], expectation)      # set as in the table above it
 
 
 def test_analysis_in_a_group_of_the_ladder():

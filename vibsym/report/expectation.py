@@ -3,6 +3,8 @@
 Counts first, then the species with their activity, then how the axes lie and what to beware of.
 """
 
+import re
+
 from vibsym.groups.symbols import typeset
 from vibsym.report.document import Facts, Listing, Paragraph, Table
 from vibsym.report.wording import (
@@ -157,7 +159,10 @@ def _oscillators(result: Expectation) -> list:
 
 
 def _beware(notes) -> list:
-    return [Listing(tuple(notes), "Beware")] if notes else []
+    """The notes, with primed species set as on the rest of the page; B1 and the like could be atoms and stay."""
+    primed = re.compile(r"(?<![A-Za-z])[AE]\d?'{1,2}(?![A-Za-z])")
+    notes = tuple(primed.sub(lambda label: typeset(label[0]), note) for note in notes)
+    return [Listing(notes, "Beware")] if notes else []
 
 
 def _next_rung(result: Expectation) -> list:
