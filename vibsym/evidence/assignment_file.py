@@ -8,7 +8,6 @@ kept as they are. A fundamental is the mean of its two lines.
 
 import csv
 import io
-from collections.abc import Sequence
 from dataclasses import dataclass, field
 from pathlib import Path
 
@@ -147,11 +146,6 @@ def write_assignment(assignment: AssignmentFile) -> str:
         cells = [_cell(getattr(row, name)) for name in COLUMNS]
         writer.writerow(cells + [row.extra.get(name, "") for name in extra])
     return stream.getvalue()
-
-
-def modes_of_files(paths: Sequence[str], group) -> tuple[Mode, ...]:
-    """Return the fundamentals of one or several assignment files of one molecule."""
-    return tuple(mode for path in paths for mode in read_assignment(path).modes(group))
 
 
 def _cell(value) -> str:

@@ -38,7 +38,7 @@ def parts(result, strip: bool = False, **_) -> list:
     if result.leftover:
         page += [Listing(tuple(map(_left_over, result.leftover)), "Lines left over"), Paragraph(EXPLAIN)]
     if result.unseen:
-        unseen = tuple((mode.name, typeset(mode.species), f"{mode.wavenumber:.0f}", _active(mode))
+        unseen = tuple((typeset(mode.name), typeset(mode.species), f"{mode.wavenumber:.0f}", _active(mode))
                        for mode in result.unseen)
         page.append(Table(("mode", "species", "estimate", "active in"), unseen, right=frozenset({2}),
                           heading="Fundamentals not seen"))
@@ -57,7 +57,7 @@ def _row(row) -> tuple[str, ...]:
         firmness = "firm"
     else:
         firmness = ", ".join(f"{typeset(label)} +{cost:.1f}" for label, cost in row.alternatives[:2])
-    return (row.mode.name, typeset(row.mode.species), infrared, raman, polarised, f"{row.mode.wavenumber:.0f}",
+    return (typeset(row.mode.name), typeset(row.mode.species), infrared, raman, polarised, f"{row.mode.wavenumber:.0f}",
             firmness, row.description)
 
 

@@ -30,8 +30,8 @@ def parts(result, **_) -> list:
 
 def _row(mode, imported: bool) -> tuple[str, ...]:
     told = f"{mode.weight:.3f}{' doubtful' if mode.weight < DOUBTFUL else ''}" if imported else describe(mode)
-    return (mode.name, typeset(mode.species), f"{mode.wavenumber:.1f}", "active" if mode.infrared else NOTHING,
-            ("polarised" if mode.polarised else "active") if mode.raman else NOTHING,
+    return (typeset(mode.name), typeset(mode.species), f"{mode.wavenumber:.1f}", "active" if mode.infrared else NOTHING,
+            ("polarised" if mode.polarised else "depolarised") if mode.raman else NOTHING,
             f"{told} {'imaginary' if mode.imaginary else ''}".strip())
 
 
